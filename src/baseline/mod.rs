@@ -1,0 +1,1 @@
+//! Smooth level counts: the Weyl expansion with corners, curvature and symmetry classes.

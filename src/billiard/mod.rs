@@ -1,0 +1,25 @@
+//! Walls, outline, symmetry group and bounce map of a flat domain.
+
+mod domain;
+pub(crate) mod quadrature;
+mod symmetry;
+mod wall;
+
+pub use domain::{Domain, GeometryError, Role, Vertex, VertexKind, WallLoop};
+pub use symmetry::{Element, Irrep, Symmetry};
+pub use wall::{Arc, Condition, Curve, Frame, Line, PlaneCurve, Shape, Wall};
+
+/// A point or a vector of the plane.
+pub type Vec2 = nalgebra::Vector2<f64>;
+/// A linear map of the plane.
+pub type Mat2 = nalgebra::Matrix2<f64>;
+
+/// z component of the cross product.
+pub(crate) fn cross(a: Vec2, b: Vec2) -> f64 {
+    a.x * b.y - a.y * b.x
+}
+
+/// Rotates a vector by a quarter turn to the left.
+pub(crate) fn left(a: Vec2) -> Vec2 {
+    Vec2::new(-a.y, a.x)
+}

@@ -1,0 +1,1 @@
+//! Level lists and their smoothed staircase.

@@ -1,0 +1,25 @@
+//! Level counts and level densities of wave cavities and quantum wells from classical periodic orbits.
+//!
+//! The pipeline, left to right:
+//!
+//! ```text
+//! system file -> System -> orbits and families -> terms -> sum at the wanted k -> density, staircase
+//!                     \-> baseline (Weyl) ---------------------------------------/
+//!                     \-> levels (a list that was given) ------------------------/
+//! ```
+//!
+//! * [`system`] reads and validates a system file.
+//! * [`billiard`] holds walls, outline, symmetry group and the bounce map.
+//! * [`orbit`] finds periodic orbits and families and turns them into terms.
+//! * [`baseline`] counts levels smoothly (Weyl).
+//! * [`trace`] smooths and sums the terms.
+//! * [`levels`] reads level lists and smooths their staircase.
+//! * [`report`] draws pictures.
+
+pub mod baseline;
+pub mod billiard;
+pub mod levels;
+pub mod orbit;
+pub mod report;
+pub mod system;
+pub mod trace;

@@ -1,0 +1,1 @@
+//! Periodic orbits and families: search, refinement, index, terms.

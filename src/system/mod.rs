@@ -1,0 +1,1 @@
+//! From a system file to a validated model.
