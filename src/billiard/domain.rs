@@ -130,7 +130,7 @@ pub enum GeometryError {
 
 /// Signed area of the closed chain of walls (counter-clockwise positive).
 #[must_use]
-pub fn signed_area(walls: &[Wall]) -> f64 {
+pub(crate) fn signed_area(walls: &[Wall]) -> f64 {
     walls
         .iter()
         .map(|wall| super::quadrature::along(wall, |frame| 0.5 * cross(frame.point, frame.tangent)))
