@@ -5,6 +5,7 @@ pub(crate) mod quadrature;
 mod symmetry;
 mod wall;
 
+pub(crate) use domain::signed_area;
 pub use domain::{Domain, GeometryError, Role, Vertex, VertexKind, WallLoop};
 pub use symmetry::{Element, Irrep, Symmetry};
 pub use wall::{Arc, Condition, Curve, Frame, Line, PlaneCurve, Shape, Wall};
