@@ -1,11 +1,16 @@
 //! Walls, outline, symmetry group and bounce map of a flat domain.
 
+mod bounce;
+mod curve_hit;
 mod domain;
+mod isometry;
 pub(crate) mod quadrature;
 mod symmetry;
 mod wall;
 
+pub use bounce::{Event, Hit, Origin, Ray, Tracer, flight, incidence, reflection};
 pub use domain::{Domain, GeometryError, Role, Vertex, VertexKind, WallLoop};
+pub use isometry::Isometry;
 pub use symmetry::{Element, Irrep, Symmetry};
 pub use wall::{Arc, Condition, Curve, Frame, Line, PlaneCurve, Shape, Wall};
 
