@@ -1,12 +1,14 @@
 //! Walls, outline, symmetry group and bounce map of a flat domain.
 
+mod detect;
 mod domain;
 pub(crate) mod quadrature;
 mod symmetry;
 mod wall;
 
+pub use detect::{detect, is_rotationally_invariant};
 pub use domain::{Domain, GeometryError, Role, Vertex, VertexKind, WallLoop};
-pub use symmetry::{Element, Irrep, Symmetry};
+pub use symmetry::{Element, Irrep, Symmetry, SymmetryError, check_declared};
 pub use wall::{Arc, Condition, Curve, Frame, Line, PlaneCurve, Shape, Wall};
 
 /// A point or a vector of the plane.
