@@ -2,6 +2,7 @@
 
 mod bounce;
 mod curve_hit;
+mod detect;
 mod domain;
 mod isometry;
 pub(crate) mod quadrature;
@@ -9,9 +10,10 @@ mod symmetry;
 mod wall;
 
 pub use bounce::{Event, Hit, Origin, Ray, Tracer, flight, incidence, reflection};
+pub use detect::{detect, is_rotationally_invariant};
 pub use domain::{Domain, GeometryError, Role, Vertex, VertexKind, WallLoop};
 pub use isometry::Isometry;
-pub use symmetry::{Element, Irrep, Symmetry};
+pub use symmetry::{Element, Irrep, Symmetry, SymmetryError, check_declared};
 pub use wall::{Arc, Condition, Curve, Frame, Line, PlaneCurve, Shape, Wall};
 
 /// A point or a vector of the plane.
