@@ -1,9 +1,12 @@
 //! Orbit counts of the stadium.
+
 use orbitsum::billiard::*;
 use orbitsum::orbit::*;
 use std::f64::consts::PI;
 
-fn stadium() -> Domain {
+/// Stadium.
+#[allow(unreachable_pub)]
+pub fn stadium() -> Domain {
     let line = |a: [f64; 2], b: [f64; 2]| {
         Wall::new(
             Shape::Line(Line { start: Vec2::new(a[0], a[1]), end: Vec2::new(b[0], b[1]) }),
@@ -40,9 +43,19 @@ fn counts() {
             println!("{pass:?}");
         }
         let count = catalogue.orbits.iter().filter(|o| o.kind != OrbitKind::Joint).count();
-        println!("{length} {bounces}: {count} {}", catalogue.orbits.len());
+        println!("{length} {bounces}: {count} {} partner2 {}", catalogue.orbits.len(), catalogue.orbits.iter().filter(|o| o.partner==2).count());
+        for partner in [1u8, 2] {
+            let on = |o: &&Orbit| o.points.iter().any(|p| p.point.x.abs() < 1e-9 || p.point.y.abs() < 1e-9);
+            let ony = |o: &&Orbit| o.points.iter().any(|p| p.point.x.abs() < 1e-9);
+            let onx = |o: &&Orbit| o.points.iter().any(|p| p.point.y.abs() < 1e-9);
+            let center = |o: &&Orbit| (0..o.points.len()).any(|i| { let p = o.points[i]; (p.point.x*p.direction.y-p.point.y*p.direction.x).abs()<1e-9});
+            let v: Vec<Orbit> = catalogue.orbits.iter().filter(|o| o.kind == OrbitKind::Isolated && o.partner == partner).cloned().collect();
+            println!("STAT {length} {bounces} partner {partner}: {} onaxis {} x0 {} y0 {} center {} twice-copies {:?}", v.len(), v.iter().filter(on).count(), v.iter().filter(ony).count(), v.iter().filter(onx).count(), v.iter().filter(center).count(), [1,2,4].map(|c| v.iter().filter(|o| o.copies==c).count()));
+            let same: Vec<String> = v.windows(2).filter(|w| (w[0].length-w[1].length).abs()<1e-8).map(|w| format!("{:.6}", w[0].length)).collect();
+            println!("STAT same {same:?}");
+        }
         if length == 10.0 {
-            for orbit in catalogue.orbits.iter().take(14) {
+            for orbit in catalogue.orbits.iter() {
                 println!("{} {:.9} n={} tr={:.4} det-1={:.1e} mu={:?} {:?} p{} g={} copies={} res={:.1e}", orbit.word, orbit.length, orbit.bounces(), orbit.trace(), orbit.monodromy.determinant()-1.0, orbit.index(), orbit.kind, orbit.partner, symmetry.elements[orbit.symmetry].name, orbit.copies, orbit.residual);
             }
         }

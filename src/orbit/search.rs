@@ -179,9 +179,9 @@ fn is_chosen_copy(symmetry: &Symmetry, point: Vec2) -> bool {
 }
 
 /// The periodic point may lie this many source spacings away.
-const FAR_SPACINGS: f64 = 1.5;
+const FAR_SPACINGS: f64 = 8.0;
 /// The periodic direction may differ by this angle (radians).
-const FAR_ANGLE: f64 = 0.3;
+const FAR_ANGLE: f64 = 1.5;
 
 fn from_source(setting: &Setting, source: &Source, resolution: &Resolution) -> (Vec<Orbit>, usize) {
     let reach = Reach {
