@@ -138,17 +138,18 @@ pub(super) fn escape(text: &str) -> String {
     out
 }
 
-/// Width of a text in points, estimated from the usual proportions of a sans-serif face (within a tenth or so, on the wide
-/// side).
+/// Width of a text in points, estimated from the proportions of the widest of the faces that pictures name (a narrower one
+/// leaves some space).
 pub(super) fn text_width(text: &str, size: f64) -> f64 {
     let width = |letter: char| match letter {
-        'i' | 'j' | 'l' | '\'' | '|' => 0.25,
-        ' ' | '.' | ',' | ':' | ';' | '!' | 'f' | 't' | 'I' | '/' | '(' | ')' | '[' | ']' => 0.31,
-        'r' | '-' => 0.36,
-        'm' | 'w' | 'M' | 'W' | '@' | '%' => 0.87,
-        'A'..='Z' | '+' | '=' | '\u{2212}' | '\u{d7}' | '\u{b1}' | '<' | '>' => 0.68,
-        '\u{2070}'..='\u{207f}' | '\u{b2}' | '\u{b3}' | '\u{b9}' => 0.37,
-        letter if u32::from(letter) < 0x2e80 => 0.57,
+        'i' | 'j' | 'l' | '\'' => 0.28,
+        ' ' | '.' | ',' | ':' | ';' | '!' | '|' | 'I' | '/' => 0.34,
+        'f' | 't' | 'r' | '-' | '(' | ')' | '[' | ']' => 0.41,
+        'm' | 'w' | 'M' | 'W' | '@' | '%' => 0.98,
+        '+' | '=' | '\u{2212}' | '\u{d7}' | '\u{b1}' | '<' | '>' | '#' => 0.84,
+        '\u{2070}'..='\u{207f}' | '\u{b2}' | '\u{b3}' | '\u{b9}' => 0.41,
+        'A'..='Z' => 0.72,
+        letter if u32::from(letter) < 0x2e80 => 0.635,
         _ => 1.0,
     };
     text.chars().map(width).sum::<f64>() * size

@@ -170,11 +170,11 @@ fn staircase_panel(canvas: &mut Canvas, curves: &DensityCurves<'_>, x: Axis, top
     let sparse = inside.len() as f64 * SPARSE <= WIDTH - LEFT - RIGHT;
     let marked = sparse && !inside.is_empty();
     if marked {
-        entries.push((Sample::Rug(RUG_STROKE), format!("{} levels", inside.len())));
+        entries.push((Sample::Rug(RUG_STROKE), counted(inside.len())));
     } else if !sparse {
         entries.push((
-            Sample::Area("none"),
-            format!("{} levels, too dense to mark", inside.len()),
+            Sample::Nothing,
+            format!("{}, too dense to mark", counted(inside.len())),
         ));
     }
     let mut y = Axis::around(values(&drawn).chain([0.0]))
@@ -192,6 +192,11 @@ fn staircase_panel(canvas: &mut Canvas, curves: &DensityCurves<'_>, x: Axis, top
     let last = curves.residual.is_none();
     let name = ["staircase".into(), "fluctuation (levels)".into()];
     finish_panel(canvas, &panel, &drawn, &name, last) + if last { 0.0 } else { 6.0 }
+}
+
+/// A number of levels in words.
+fn counted(levels: usize) -> String {
+    format!("{levels} level{}", if levels == 1 { "" } else { "s" })
 }
 
 fn residual_panel(canvas: &mut Canvas, curves: &DensityCurves<'_>, x: Axis, top: f64) -> f64 {

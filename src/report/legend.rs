@@ -26,6 +26,8 @@ pub(super) enum Sample {
     Rug(Stroke),
     /// A filled area.
     Area(&'static str),
+    /// Nothing: the text speaks for itself.
+    Nothing,
 }
 
 /// Marks that differ by their form.
@@ -84,14 +86,18 @@ pub(super) fn legend(
     }
     let (mut x, mut y) = (left, top);
     for (sample, text) in entries {
-        let width = SAMPLE + NEAR + text_width(text, TEXT);
+        let indent = match sample {
+            Sample::Nothing => 0.0,
+            _ => SAMPLE + NEAR,
+        };
+        let width = indent + text_width(text, TEXT);
         if x > left && x + width > right {
             x = left;
             y += ROW;
         }
         draw(canvas, *sample, x, y + 0.5 * ROW);
         canvas.text(
-            Vec2::new(x + SAMPLE + NEAR, y + 0.5 * ROW + 0.35 * TEXT),
+            Vec2::new(x + indent, y + 0.5 * ROW + 0.35 * TEXT),
             Lettering::plain(Anchor::Start),
             text,
         );
@@ -103,6 +109,7 @@ pub(super) fn legend(
 fn draw(canvas: &mut Canvas, sample: Sample, x: f64, y: f64) {
     let (from, to) = (Vec2::new(x, y), Vec2::new(x + SAMPLE, y));
     match sample {
+        Sample::Nothing => {}
         Sample::Line(stroke) => canvas.line(from, to, stroke),
         Sample::Band(stroke) => {
             let half = Vec2::new(0.0, 3.5);

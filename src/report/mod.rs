@@ -1,8 +1,8 @@
 //! Pictures, written as SVG: the shape, its orbits, density and staircase.
 //!
 //! Plain data goes in, the text of a self-contained SVG document comes out; nothing here writes files. One unit of a
-//! picture is one point (1/72 inch), and every picture is [`canvas::WIDTH`] wide, which is 180 mm: the text width of a
-//! printed page. Numbers are written with a fixed format, so equal data gives equal bytes.
+//! picture is one point (1/72 inch), and every picture is 180 mm wide: the text width of a printed
+//! page. Numbers are written with a fixed format, so equal data gives equal bytes.
 //!
 //! What matters is never told by colour alone: lines differ in width, lightness and dashes, corners in the form of their
 //! marks.

@@ -1,18 +1,29 @@
 //! Small multiples: one outline and one orbit in each panel.
 
 use super::canvas::{
-    Anchor, BORDER, Canvas, LEADING, Lettering, Stroke, TEXT, WIDTH, palette, polyline, wrap,
+    Anchor, BORDER, Canvas, LEADING, Lettering, Stroke, TEXT, WIDTH, number, palette, polyline,
+    wrap,
 };
 use super::legend::{Sample, legend};
-use super::outline::{View, bounds, closed};
+use super::outline::{View, bounds};
 use crate::billiard::{Domain, Role, Vec2};
+use std::collections::{BTreeMap, BTreeSet};
 
 /// Orbits that one picture holds; further ones are left out, and the picture says so.
 pub const LARGEST_GRID: usize = 24;
 /// Space between two panels, points.
 const GAP: f64 = 12.0;
-/// Largest height of one outline, points: four of them and their labels fit on a page.
-const LARGEST_HEIGHT: f64 = 150.0;
+/// Largest height of one outline, points: an orbit is easy to follow at this size.
+const LARGEST_HEIGHT: f64 = 115.0;
+/// Height of the whole grid, points, that still fits on a printed page (240 mm).
+const PAGE: f64 = 680.0;
+/// Panels beside each other, at most: with more, labels of ordinary length do not fit below them.
+const MOST_COLUMNS: usize = 5;
+/// Part of the largest possible size that an outline may give up for a picture with fewer rows.
+const NEARLY: f64 = 0.85;
+/// White border around an outline within its panel, points.
+const RIM: f64 = 2.0;
+
 /// Bounces above which no dots are drawn: they would hide the orbit.
 const MOST_DOTS: usize = 40;
 
@@ -57,7 +68,7 @@ impl OrbitStroke {
 /// One orbit to be drawn.
 #[derive(Clone, Debug)]
 pub struct OrbitDrawing<'a> {
-    /// What is written below it, such as `#3 L = 4.8284, 4 bounces`.
+    /// What is written below it, such as `#3  L = 4.8284\n4 bounces`; a line too long for its panel is broken.
     pub label: String,
     /// Bounce points of the full orbit, in order; the last one is joined to the first.
     pub path: &'a [Vec2],
@@ -97,18 +108,21 @@ pub fn orbits_picture(domain: &Domain, orbits: &[OrbitDrawing<'_>], title: &str)
 /// Draws the panels row by row; returns the height of the lower edge.
 fn draw_grid(canvas: &mut Canvas, domain: &Domain, orbits: &[OrbitDrawing<'_>], top: f64) -> f64 {
     let frame = bounds(domain);
-    let columns = columns(frame, orbits.len());
-    let cell = (WIDTH - 2.0 * BORDER - GAP * (columns - 1) as f64) / columns as f64;
-    let scale = View::scale_for(frame, cell - 4.0, LARGEST_HEIGHT);
-    let height = (frame.1.y - frame.0.y) * scale + 4.0;
+    let grid = Grid::for_labels(frame, orbits);
+    let height = (frame.1.y - frame.0.y) * grid.scale + 2.0 * RIM;
     let mut top = top;
-    for row in orbits.chunks(columns) {
+    for row in orbits.chunks(grid.columns) {
         let mut lines = 0;
         for (column, orbit) in row.iter().enumerate() {
-            let left = BORDER + column as f64 * (cell + GAP);
-            let center = Vec2::new(left + 0.5 * cell, top + 0.5 * height);
-            draw_orbit(canvas, domain, orbit, &View::centered(frame, scale, center));
-            let label = wrap(&orbit.label, cell + 0.5 * GAP, TEXT);
+            let left = BORDER + column as f64 * (grid.cell + GAP);
+            let center = Vec2::new(left + 0.5 * grid.cell, top + 0.5 * height);
+            draw_orbit(
+                canvas,
+                domain,
+                orbit,
+                &View::centered(frame, grid.scale, center),
+            );
+            let label = label_lines(&orbit.label, grid.cell);
             lines = lines.max(label.len());
             for (index, line) in label.iter().enumerate() {
                 let base = top + height + TEXT + 2.0 + index as f64 * LEADING * TEXT;
@@ -124,21 +138,55 @@ fn draw_grid(canvas: &mut Canvas, domain: &Domain, orbits: &[OrbitDrawing<'_>], 
     top - GAP
 }
 
-/// Panels beside each other: four, or fewer where the domain is much wider than high or there are fewer orbits.
-fn columns((low, high): (Vec2, Vec2), count: usize) -> usize {
-    let aspect = (high.x - low.x) / (high.y - low.y);
-    let most = if aspect > 4.0 {
-        2
-    } else if aspect > 2.5 {
-        3
-    } else {
-        4
-    };
-    // Two rows of three look better than one of four and one of two.
-    if (5..=6).contains(&count) {
-        most.min(3)
-    } else {
-        most.min(count.max(1))
+/// Lines of a label below a panel of some width.
+fn label_lines(label: &str, cell: f64) -> Vec<String> {
+    label
+        .lines()
+        .flat_map(|line| wrap(line, cell + 0.5 * GAP, TEXT))
+        .collect()
+}
+
+/// How the panels share the sheet.
+#[derive(Clone, Copy, Debug, PartialEq)]
+struct Grid {
+    /// Panels beside each other.
+    columns: usize,
+    /// Width of one, points.
+    cell: f64,
+    /// Points per unit of length.
+    scale: f64,
+}
+
+impl Grid {
+    /// The largest number of columns with which the outlines become (nearly) as large as one page allows.
+    fn for_labels(frame: (Vec2, Vec2), orbits: &[OrbitDrawing<'_>]) -> Self {
+        let columns = orbits.len().clamp(1, MOST_COLUMNS);
+        let grids: Vec<Self> = (1..=columns)
+            .map(|columns| Self::with_columns(columns, frame, orbits))
+            .collect();
+        let largest = grids.iter().map(|grid| grid.scale).fold(0.0, f64::max);
+        let compact = grids
+            .into_iter()
+            .rev()
+            .find(|grid| grid.scale >= NEARLY * largest);
+        compact.unwrap_or_else(|| Self::with_columns(1, frame, orbits))
+    }
+
+    fn with_columns(columns: usize, frame: (Vec2, Vec2), orbits: &[OrbitDrawing<'_>]) -> Self {
+        let cell = (WIDTH - 2.0 * BORDER - GAP * (columns - 1) as f64) / columns as f64;
+        let rows = orbits.len().div_ceil(columns).max(1) as f64;
+        let lines = orbits
+            .iter()
+            .map(|orbit| label_lines(&orbit.label, cell).len())
+            .max();
+        let below = 2.0 + lines.unwrap_or(0) as f64 * LEADING * TEXT + GAP;
+        // However long the labels, an outline keeps the height of two lines of text.
+        let height = (PAGE / rows - below - 2.0 * RIM).clamp(2.0 * TEXT, LARGEST_HEIGHT);
+        Self {
+            columns,
+            cell,
+            scale: View::scale_for(frame, cell - 2.0 * RIM, height),
+        }
     }
 }
 
@@ -156,17 +204,46 @@ fn draw_orbit(canvas: &mut Canvas, domain: &Domain, orbit: &OrbitDrawing<'_>, vi
         .filter(|point| point.x.is_finite() && point.y.is_finite())
         .map(|point| view.place(*point))
         .collect();
-    let data = if points.len() > 2 {
-        closed(&points)
-    } else {
-        polyline(&points)
-    };
-    canvas.path(&data, orbit.stroke.stroke());
+    canvas.path(&trail(&points), orbit.stroke.stroke());
     if points.len() <= MOST_DOTS {
-        for point in &points {
-            canvas.circle(*point, 1.7, orbit.stroke.stroke().color, None);
+        let dots: BTreeMap<Place, Vec2> =
+            points.iter().map(|point| (spot(*point), *point)).collect();
+        for dot in dots.values() {
+            canvas.circle(*dot, 1.7, orbit.stroke.stroke().color, None);
         }
     }
+}
+
+/// A point as it is written.
+type Place = (String, String);
+
+fn spot(point: Vec2) -> Place {
+    (number(point.x), number(point.y))
+}
+
+/// Path data of a closed orbit, every chord once: dashes of a chord that runs there and back would fill each other's gaps.
+fn trail(points: &[Vec2]) -> String {
+    let mut chords: BTreeSet<(Place, Place)> = BTreeSet::new();
+    let mut data = String::new();
+    let mut runs: Vec<Vec<Vec2>> = Vec::new();
+    let mut joined = false;
+    for index in 0..points.len() {
+        let (from, to) = (points[index], points[(index + 1) % points.len()]);
+        let (a, b) = (spot(from), spot(to));
+        let chord = if a <= b { (a, b) } else { (b, a) };
+        if !chords.insert(chord) {
+            joined = false;
+        } else if let (true, Some(run)) = (joined, runs.last_mut()) {
+            run.push(to);
+        } else {
+            runs.push(vec![from, to]);
+            joined = true;
+        }
+    }
+    for run in runs {
+        data.push_str(&polyline(&run));
+    }
+    data
 }
 
 fn description(shown: &[OrbitDrawing<'_>], count: usize) -> String {
@@ -197,7 +274,7 @@ mod tests {
     fn drawing(path: &[Vec2], index: usize) -> OrbitDrawing<'_> {
         OrbitDrawing {
             label: format!(
-                "#{}  L = {:.4}, {} bounces",
+                "#{}  L = {:.4}\n{} bounces",
                 index + 1,
                 4.0 + 0.2 * index as f64,
                 path.len()
@@ -226,6 +303,36 @@ mod tests {
         let picture = orbits_picture(&stadium(), &orbits[..5], "five");
         keep("orbits-five", &picture);
         checked(&picture);
+    }
+
+    #[test]
+    fn grids_fit_on_a_page() {
+        let path = star(5);
+        for (low, high) in [
+            ([0.0, 0.0], [1.0, 1.0]),
+            ([0.0, 0.0], [9.0, 1.0]),
+            ([0.0, 0.0], [1.0, 9.0]),
+        ] {
+            let frame = (Vec2::from(low), Vec2::from(high));
+            for count in 1..=LARGEST_GRID {
+                let orbits: Vec<_> = (0..count).map(|index| drawing(&path, index)).collect();
+                let grid = Grid::for_labels(frame, &orbits);
+                let rows = count.div_ceil(grid.columns) as f64;
+                let row = high[1] * grid.scale + 2.0 * (RIM + 1.0 + LEADING * TEXT) + GAP;
+                assert!(rows * row <= PAGE + 1e-9, "{count}: {grid:?}");
+                assert!(high[0] * grid.scale <= grid.cell);
+            }
+        }
+    }
+
+    #[test]
+    fn chords_run_there_and_back_are_drawn_once() {
+        let [a, b, c] = [[0.0, 0.0], [1.0, 0.0], [1.0, 2.0]].map(Vec2::from);
+        assert_eq!(trail(&[a, b]), "M0 0L1 0");
+        assert_eq!(trail(&[a, b, c, b]), "M0 0L1 0 1 2");
+        assert_eq!(trail(&[a, b, c]), "M0 0L1 0 1 2 0 0");
+        assert_eq!(trail(&[a, b, a, c]), "M0 0L1 0M0 0L1 2");
+        assert_eq!(trail(&[]), "");
     }
 
     #[test]

@@ -11,7 +11,9 @@ const TICK: f64 = 4.0;
 /// Space that a label along x wants, points.
 const LABEL_WIDTH: f64 = 55.0;
 /// Space that a label along y wants, points.
-const LABEL_HEIGHT: f64 = 24.0;
+const LABEL_HEIGHT: f64 = 18.0;
+/// Intervals between ticks along y, however high the panel.
+const MOST_INTERVALS: usize = 8;
 /// Height of the ticks that mark positions along the lower edge, points.
 const RUG: f64 = 7.0;
 
@@ -174,10 +176,10 @@ impl Panel {
         canvas.flat_path(&path, RUG_STROKE);
     }
 
-    /// Says in the middle of the panel why it is empty.
+    /// Says in the upper part of the panel why it is empty (a line at zero may run through its middle).
     pub(super) fn remark(&self, canvas: &mut Canvas, text: &str) {
-        let middle = self.corner + 0.5 * self.size;
-        canvas.text(middle, Lettering::plain(Anchor::Middle), text);
+        let place = self.corner + Vec2::new(0.5 * self.size.x, 0.3 * self.size.y);
+        canvas.text(place, Lettering::plain(Anchor::Middle), text);
     }
 
     fn most_x(&self) -> usize {
@@ -185,6 +187,6 @@ impl Panel {
     }
 
     fn most_y(&self) -> usize {
-        ((self.size.y / LABEL_HEIGHT) as usize).max(2)
+        ((self.size.y / LABEL_HEIGHT) as usize).clamp(2, MOST_INTERVALS)
     }
 }
