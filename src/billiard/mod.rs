@@ -1,5 +1,6 @@
 //! Walls, outline, symmetry group and bounce map of a flat domain.
 
+mod crossings;
 mod detect;
 mod domain;
 pub(crate) mod quadrature;
