@@ -11,7 +11,8 @@ mod boundary;
 
 use super::symmetry::{build, exact_cos_sin};
 use super::{Condition, Domain, Mat2, Role, Shape, Symmetry, Vec2, Wall, left};
-use boundary::{Boundary, same_direction};
+pub(crate) use boundary::Boundary;
+use boundary::same_direction;
 use num_complex::Complex64;
 use std::f64::consts::PI;
 

@@ -2,6 +2,7 @@
 
 mod bounce;
 mod curve_hit;
+mod crossings;
 mod detect;
 mod domain;
 mod isometry;

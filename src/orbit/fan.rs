@@ -118,10 +118,14 @@ pub(crate) fn follow_direction(
     track
 }
 
-/// Shoots a refined fan from one source over angles 0 to pi/2 and shows every ray to `visit`.
+/// Angle beyond the normal, radians, to which a fan reaches on the other side: an orbit that leaves its wall along the
+/// normal next to a joint or a corner may have its neighbours on one side only.
+const BEYOND_NORMAL: f64 = 0.15;
+
+/// Shoots a refined fan from one source over angles from a little below 0 to pi/2 and shows every ray to `visit`.
 ///
-/// Only one side of the normal is needed: an orbit that leaves the source on the other side is, run backwards, one that
-/// leaves it on this side.
+/// The other side of the normal is not needed: an orbit that leaves the source there is, run backwards, one that leaves it
+/// on this side.
 pub(crate) fn shoot(
     domain: &Domain,
     tracer: &Tracer,
@@ -130,7 +134,8 @@ pub(crate) fn shoot(
     resolution: &Resolution,
     visit: &mut dyn FnMut(&Track),
 ) {
-    let angle = |i: usize| FRAC_PI_2 * (i as f64 + 0.5) / resolution.rays as f64;
+    let width = (FRAC_PI_2 + BEYOND_NORMAL) / resolution.rays as f64;
+    let angle = |i: usize| (i as f64 + 0.5) * width - BEYOND_NORMAL;
     let at = |angle: f64| follow(domain, tracer, source, angle, reach);
     let mut near = (angle(0), at(angle(0)));
     visit(&near.1);
