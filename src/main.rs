@@ -1,1 +1,3 @@
+//! Command line of orbitsum.
+
 fn main() {}

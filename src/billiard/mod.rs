@@ -1,13 +1,21 @@
 //! Walls, outline, symmetry group and bounce map of a flat domain.
 
+mod bounce;
+mod curve_hit;
+mod crossings;
+mod detect;
 mod domain;
+mod isometry;
 pub(crate) mod quadrature;
 mod symmetry;
 mod wall;
 
 pub(crate) use domain::signed_area;
+pub use bounce::{Event, Hit, Origin, Ray, Tracer, flight, incidence, reflection};
+pub use detect::{detect, is_rotationally_invariant};
 pub use domain::{Domain, GeometryError, Role, Vertex, VertexKind, WallLoop};
-pub use symmetry::{Element, Irrep, Symmetry};
+pub use isometry::Isometry;
+pub use symmetry::{Element, Irrep, Symmetry, SymmetryError, check_declared};
 pub use wall::{Arc, Condition, Curve, Frame, Line, PlaneCurve, Shape, Wall};
 
 /// A point or a vector of the plane.

@@ -1,1 +1,15 @@
 //! Level lists and their smoothed staircase.
+//!
+//! * [`read`] reads a [`LevelList`] from csv or white-space text.
+//! * [`staircase`] and [`density`] convolve levels with a Gaussian.
+//! * [`residual_rms`] measures what is left between levels and a prediction.
+
+mod list;
+mod parse;
+mod residual;
+mod smooth;
+
+pub use list::{LevelList, ListColumn, ListError, ListNote};
+pub use parse::read;
+pub use residual::{Residual, ResidualWindow, residual_rms};
+pub use smooth::{density, staircase};

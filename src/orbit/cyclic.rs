@@ -1,0 +1,174 @@
+//! Symmetric cyclic tridiagonal matrices: the Hessian of a closed path's length.
+
+/// Pivots smaller than this fraction of the largest entry are replaced by it: the inertia of a matrix that is not itself
+/// nearly singular is unchanged by so small a shift.
+const SMALLEST_PIVOT: f64 = 1e-14;
+
+/// A symmetric matrix with entries on the diagonal, beside it, and in the two corners: `off[i]` couples i and i + 1, the
+/// last one couples the last index with 0. For one index the coupling counts twice on the diagonal, for two indices the two
+/// couplings add.
+#[derive(Clone, Debug)]
+pub(crate) struct Cyclic {
+    pub(crate) diagonal: Vec<f64>,
+    pub(crate) off: Vec<f64>,
+}
+
+/// Elimination with the last index as border: pivots of the tridiagonal part, and the last pivot.
+struct Elimination {
+    pivots: Vec<f64>,
+    last: f64,
+    border: Vec<f64>,
+}
+
+impl Cyclic {
+    /// The same matrix repeated `times` times around the cycle, the closing coupling multiplied by `sign`.
+    pub(crate) fn repeated(&self, times: usize, sign: f64) -> Self {
+        let mut off = self.off.repeat(times);
+        if let Some(closing) = off.last_mut() {
+            *closing *= sign;
+        }
+        Self {
+            diagonal: self.diagonal.repeat(times),
+            off,
+        }
+    }
+
+    fn scale(&self) -> f64 {
+        self.diagonal
+            .iter()
+            .chain(&self.off)
+            .fold(f64::MIN_POSITIVE, |largest, x| largest.max(x.abs()))
+    }
+
+    /// Diagonal and couplings with the cases of one and two indices folded in.
+    fn border(&self) -> Vec<f64> {
+        let n = self.diagonal.len();
+        let mut border = vec![0.0; n - 1];
+        if n >= 2 {
+            border[0] += self.off[n - 1];
+            border[n - 2] += self.off[n - 2];
+        }
+        border
+    }
+
+    fn last_diagonal(&self) -> f64 {
+        let n = self.diagonal.len();
+        let twice = if n == 1 { 2.0 * self.off[0] } else { 0.0 };
+        self.diagonal[n - 1] + twice
+    }
+
+    fn eliminate(&self) -> Elimination {
+        let n = self.diagonal.len();
+        let smallest = SMALLEST_PIVOT * self.scale();
+        let mut border = self.border();
+        let mut pivots = Vec::with_capacity(n - 1);
+        let mut last = self.last_diagonal();
+        for i in 0..n - 1 {
+            let mut pivot = self.diagonal[i];
+            if i > 0 {
+                let factor = self.off[i - 1] / pivots[i - 1];
+                pivot -= factor * self.off[i - 1];
+                border[i] -= factor * border[i - 1];
+            }
+            if pivot.abs() < smallest {
+                pivot = smallest;
+            }
+            last -= border[i] * border[i] / pivot;
+            pivots.push(pivot);
+        }
+        Elimination {
+            pivots,
+            last,
+            border,
+        }
+    }
+
+    /// Number of negative eigenvalues (Sylvester's law of inertia).
+    pub(crate) fn negative(&self) -> usize {
+        let elimination = self.eliminate();
+        elimination
+            .pivots
+            .iter()
+            .chain(std::iter::once(&elimination.last))
+            .filter(|&&pivot| pivot < 0.0)
+            .count()
+    }
+
+    /// Determinant.
+    #[cfg(test)]
+    pub(crate) fn determinant(&self) -> f64 {
+        let elimination = self.eliminate();
+        elimination.pivots.iter().product::<f64>() * elimination.last
+    }
+
+    /// Solves matrix * x = right in O(n); `None` if the matrix is singular to rounding.
+    pub(crate) fn solve(&self, right: &[f64]) -> Option<Vec<f64>> {
+        let n = right.len();
+        let Elimination {
+            pivots,
+            last,
+            border,
+        } = self.eliminate();
+        if last.abs() <= SMALLEST_PIVOT * self.scale() {
+            return None;
+        }
+        let mut x = right.to_vec();
+        for i in 1..n.saturating_sub(1) {
+            x[i] -= self.off[i - 1] / pivots[i - 1] * x[i - 1];
+        }
+        let carried: f64 = (0..n - 1).map(|i| border[i] * x[i] / pivots[i]).sum();
+        x[n - 1] = (right[n - 1] - carried) / last;
+        for i in (0..n - 1).rev() {
+            let next = if i + 1 < n - 1 {
+                self.off[i] * x[i + 1]
+            } else {
+                0.0
+            };
+            x[i] = (x[i] - next - border[i] * x[n - 1]) / pivots[i];
+        }
+        Some(x)
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use proptest::prelude::*;
+
+    fn dense(matrix: &Cyclic) -> nalgebra::DMatrix<f64> {
+        let n = matrix.diagonal.len();
+        let mut full = nalgebra::DMatrix::zeros(n, n);
+        for i in 0..n {
+            full[(i, i)] += matrix.diagonal[i];
+            full[(i, (i + 1) % n)] += matrix.off[i];
+            full[((i + 1) % n, i)] += matrix.off[i];
+        }
+        full
+    }
+
+    proptest! {
+        /// Against nalgebra's dense symmetric eigenvalues and determinant.
+        #[test]
+        fn inertia_and_solution_agree_with_dense_algebra(
+            entries in prop::collection::vec((-3.0..3.0f64, -2.0..2.0f64), 1..12),
+            right in prop::collection::vec(-1.0..1.0f64, 12),
+        ) {
+            let matrix = Cyclic {
+                diagonal: entries.iter().map(|e| e.0).collect(),
+                off: entries.iter().map(|e| e.1).collect(),
+            };
+            let full = dense(&matrix);
+            let values = full.clone().symmetric_eigenvalues();
+            prop_assume!(values.iter().all(|v| v.abs() > 1e-3));
+            prop_assert_eq!(matrix.negative(), values.iter().filter(|v| **v < 0.0).count());
+            let determinant = full.determinant();
+            prop_assert!((matrix.determinant() - determinant).abs() < 1e-8 * (1.0 + determinant.abs()));
+            let n = entries.len();
+            let x = matrix.solve(&right[..n]).expect("not singular");
+            let back = full * nalgebra::DVector::from_vec(x);
+            for i in 0..n {
+                prop_assert!((back[i] - right[i]).abs() < 1e-7);
+            }
+        }
+    }
+}

@@ -1,0 +1,171 @@
+//! Fans of rays from one point of a wall, refined until neighbouring rays tell the same story.
+
+use crate::billiard::{
+    Domain, Event, Mat2, Origin, Ray, Tracer, Vec2, flight, incidence, left, reflection,
+};
+use std::f64::consts::FRAC_PI_2;
+
+/// How far rays are followed.
+#[derive(Clone, Copy, Debug)]
+pub(crate) struct Reach {
+    pub(crate) length: f64,
+    pub(crate) bounces: usize,
+    /// Stop at the first curved wall (the search for strips).
+    pub(crate) straight_only: bool,
+}
+
+/// How finely a fan is resolved.
+#[derive(Clone, Copy, Debug)]
+pub(crate) struct Resolution {
+    /// Rays before refinement.
+    pub(crate) rays: usize,
+    /// Neighbours whose bounce points lie further apart than this are refined.
+    pub(crate) spread: f64,
+    /// Neighbours closer than this angle (radians) are not refined further.
+    pub(crate) smallest_gap: f64,
+}
+
+/// One bounce of a ray.
+#[derive(Clone, Copy, Debug)]
+pub(crate) struct Step {
+    pub(crate) wall: usize,
+    pub(crate) t: f64,
+    pub(crate) point: Vec2,
+    /// Direction after the bounce.
+    pub(crate) direction: Vec2,
+    /// Length from the start.
+    pub(crate) length: f64,
+    /// Linearised map from the start.
+    pub(crate) map: Mat2,
+}
+
+/// A ray followed from a wall.
+#[derive(Clone, Debug)]
+pub(crate) struct Track {
+    pub(crate) direction: Vec2,
+    pub(crate) steps: Vec<Step>,
+    /// The ray ran into a corner or along a wall before its limits.
+    stopped: bool,
+}
+
+/// A point of a wall from which fans are shot.
+#[derive(Clone, Copy, Debug)]
+pub(crate) struct Source {
+    pub(crate) wall: usize,
+    pub(crate) t: f64,
+    pub(crate) point: Vec2,
+    pub(crate) tangent: Vec2,
+    /// Distance to the neighbouring sources along the wall.
+    pub(crate) spacing: f64,
+}
+
+/// Follows the ray that leaves `source` at `angle` from the normal towards the tangent.
+pub(crate) fn follow(
+    domain: &Domain,
+    tracer: &Tracer,
+    source: &Source,
+    angle: f64,
+    reach: &Reach,
+) -> Track {
+    let direction = left(source.tangent) * angle.cos() + source.tangent * angle.sin();
+    follow_direction(domain, tracer, source, direction, reach)
+}
+
+/// Follows the ray that leaves `source` along `direction`.
+pub(crate) fn follow_direction(
+    domain: &Domain,
+    tracer: &Tracer,
+    source: &Source,
+    direction: Vec2,
+    reach: &Reach,
+) -> Track {
+    let mut ray = Ray {
+        point: source.point,
+        direction,
+        origin: Origin::Wall {
+            wall: source.wall,
+            t: source.t,
+        },
+    };
+    let mut track = Track {
+        direction,
+        steps: Vec::new(),
+        stopped: false,
+    };
+    let mut length = 0.0;
+    let mut map = Mat2::identity();
+    while track.steps.len() < reach.bounces {
+        let Event::Wall(hit) = tracer.next(&ray) else {
+            track.stopped = true;
+            break;
+        };
+        length += hit.distance;
+        let cosine = incidence(ray.direction, &hit);
+        if length > reach.length || (reach.straight_only && !domain.walls[hit.wall].is_straight()) {
+            break;
+        }
+        map = reflection(hit.curvature, cosine) * (flight(hit.distance) * map);
+        ray = Tracer::reflect(ray.direction, &hit);
+        track.steps.push(Step {
+            wall: hit.wall,
+            t: hit.t,
+            point: hit.point,
+            direction: ray.direction,
+            length,
+            map,
+        });
+    }
+    track
+}
+
+/// Angle beyond the normal, radians, to which a fan reaches on the other side: an orbit that leaves its wall along the
+/// normal next to a joint or a corner may have its neighbours on one side only.
+const BEYOND_NORMAL: f64 = 0.15;
+
+/// Shoots a refined fan from one source over angles from a little below 0 to pi/2 and shows every ray to `visit`.
+///
+/// The other side of the normal is not needed: an orbit that leaves the source there is, run backwards, one that leaves it
+/// on this side.
+pub(crate) fn shoot(
+    domain: &Domain,
+    tracer: &Tracer,
+    source: &Source,
+    reach: &Reach,
+    resolution: &Resolution,
+    visit: &mut dyn FnMut(&Track),
+) {
+    let width = (FRAC_PI_2 + BEYOND_NORMAL) / resolution.rays as f64;
+    let angle = |i: usize| (i as f64 + 0.5) * width - BEYOND_NORMAL;
+    let at = |angle: f64| follow(domain, tracer, source, angle, reach);
+    let mut near = (angle(0), at(angle(0)));
+    visit(&near.1);
+    for i in 1..resolution.rays {
+        let last = (angle(i), at(angle(i)));
+        visit(&last.1);
+        // Rays still to be compared with `near`, the nearest one on top.
+        let mut waiting = vec![last];
+        while let Some((high, track)) = waiting.pop() {
+            if high - near.0 > resolution.smallest_gap && differ(&near.1, &track, resolution.spread)
+            {
+                let middle = 0.5 * (near.0 + high);
+                let between = at(middle);
+                visit(&between);
+                waiting.push((high, track));
+                waiting.push((middle, between));
+            } else {
+                near = (high, track);
+            }
+        }
+    }
+}
+
+fn differ(a: &Track, b: &Track, spread: f64) -> bool {
+    let apart = a
+        .steps
+        .iter()
+        .zip(&b.steps)
+        .any(|(x, y)| x.wall != y.wall || (x.point - y.point).norm_squared() > spread * spread);
+    let cut_short =
+        |short: &Track, long: &Track| short.stopped && short.steps.len() < long.steps.len();
+    apart || cut_short(a, b) || cut_short(b, a)
+}

@@ -1,0 +1,186 @@
+//! Closed paths and their length as a function of the bounce points.
+//!
+//! Only bounces on curved walls are variables. Straight walls are unfolded: a flight that is reflected by straight walls on
+//! its way is one straight chord to the image of the next curved bounce. That makes the length smooth also where the path
+//! runs into a corner of angle pi/n between straight walls, since the reflections in either order give the same image. A
+//! straight bounce adds a positive direction to the full Hessian, so the number of negative eigenvalues is unchanged.
+
+use super::cyclic::Cyclic;
+use crate::billiard::{Domain, Frame, Isometry, Mat2, flight, reflection};
+
+/// A bounce on a curved wall.
+#[derive(Clone, Copy, Debug)]
+pub(crate) struct Bounce {
+    pub(crate) wall: usize,
+    /// Parameter on the wall.
+    pub(crate) t: f64,
+}
+
+/// What lies between a curved bounce and the next: the straight walls met in order, and the isometry that takes the next
+/// bounce to its unfolded image (with the closing group element in the last link).
+#[derive(Clone, Debug)]
+pub(crate) struct Link {
+    pub(crate) straight: Vec<usize>,
+    pub(crate) unfold: Isometry,
+}
+
+/// A path closed by a group element.
+#[derive(Clone, Debug)]
+pub(crate) struct ClosedPath {
+    pub(crate) bounces: Vec<Bounce>,
+    pub(crate) links: Vec<Link>,
+    /// Group element that takes the first point to the last one.
+    pub(crate) element: usize,
+}
+
+/// Length of a closed path with its derivatives with respect to arc length at the bounces.
+#[derive(Clone, Debug)]
+pub(crate) struct LengthForm {
+    pub(crate) frames: Vec<Frame>,
+    /// Unfolded chord lengths.
+    pub(crate) chords: Vec<f64>,
+    /// Cosine of the angle of incidence at each bounce.
+    pub(crate) cosines: Vec<f64>,
+    pub(crate) gradient: Vec<f64>,
+    pub(crate) hessian: Cyclic,
+}
+
+impl LengthForm {
+    pub(crate) fn length(&self) -> f64 {
+        self.chords.iter().sum()
+    }
+
+    pub(crate) fn residual(&self) -> f64 {
+        self.gradient
+            .iter()
+            .fold(0.0, |largest, g| largest.max(g.abs()))
+    }
+}
+
+impl ClosedPath {
+    /// Length, gradient and Hessian; `None` if two consecutive points coincide.
+    pub(crate) fn form(&self, domain: &Domain) -> Option<LengthForm> {
+        let n = self.bounces.len();
+        let frames: Vec<Frame> = self
+            .bounces
+            .iter()
+            .map(|bounce| domain.walls[bounce.wall].frame(bounce.t))
+            .collect();
+        let mut form = LengthForm {
+            chords: Vec::with_capacity(n),
+            cosines: vec![0.0; n],
+            gradient: vec![0.0; n],
+            hessian: Cyclic {
+                diagonal: vec![0.0; n],
+                off: vec![0.0; n],
+            },
+            frames,
+        };
+        for i in 0..n {
+            form.add_chord(i, (i + 1) % n, &self.links[i].unfold, domain.size)?;
+        }
+        Some(form)
+    }
+
+    /// Number of bounces on all walls.
+    pub(crate) fn count(&self) -> usize {
+        self.bounces.len()
+            + self
+                .links
+                .iter()
+                .map(|link| link.straight.len())
+                .sum::<usize>()
+    }
+
+    /// Linearised map along the path, from just after the first bounce to just after its image, in (transverse
+    /// displacement, transverse angle); `determinant` is that of the closing group element.
+    pub(crate) fn monodromy(&self, form: &LengthForm, determinant: f64) -> Mat2 {
+        let n = self.bounces.len();
+        let mut map = Mat2::identity() * determinant;
+        for i in 0..n {
+            let next = (i + 1) % n;
+            let flips = if self.links[i].straight.len() % 2 == 0 {
+                1.0
+            } else {
+                -1.0
+            };
+            let step = reflection(form.frames[next].curvature, form.cosines[next])
+                * flight(form.chords[i]);
+            map = step * map * flips;
+        }
+        map
+    }
+}
+
+/// Chords shorter than this fraction of the size have no direction.
+const SHORTEST_CHORD: f64 = 1e-10;
+
+impl LengthForm {
+    /// Adds the chord from bounce i to the unfolded image of bounce j: l = |E q_j - q_i|, its first and second derivatives
+    /// along the walls.
+    fn add_chord(&mut self, i: usize, j: usize, unfold: &Isometry, size: f64) -> Option<()> {
+        let (from, to) = (self.frames[i], self.frames[j]);
+        let chord = unfold.apply(to.point) - from.point;
+        let length = chord.norm();
+        if length.is_nan() || length < SHORTEST_CHORD * size {
+            return None;
+        }
+        let e = chord / length;
+        let (near, far) = (from.tangent, unfold.linear * to.tangent);
+        let (near_along, far_along) = (e.dot(&near), e.dot(&far));
+        let near_normal = e.dot(&from.normal());
+        let far_normal = e.dot(&(unfold.linear * to.normal()));
+        self.gradient[i] -= near_along;
+        self.gradient[j] += far_along;
+        self.hessian.diagonal[i] +=
+            (1.0 - near_along * near_along) / length - from.curvature * near_normal;
+        self.hessian.diagonal[j] +=
+            (1.0 - far_along * far_along) / length + to.curvature * far_normal;
+        self.hessian.off[i] -= (near.dot(&far) - near_along * far_along) / length;
+        self.cosines[i] = near_normal;
+        self.chords.push(length);
+        Some(())
+    }
+}
+
+/// Largest residual gradient of an orbit that counts as found.
+pub(crate) const LARGEST_RESIDUAL: f64 = 1e-11;
+/// Newton steps; convergence is quadratic, so more only help a start that is far off.
+const LARGEST_STEPS: usize = 14;
+/// Longest step of a bounce point, as a fraction of the domain's size: longer ones leave the region where the quadratic
+/// form means anything.
+const LONGEST_STEP: f64 = 0.12;
+/// A bounce point may leave its wall by this fraction of the wall during the iteration.
+const OVERSHOOT: f64 = 0.25;
+
+/// Newton's method on the length function; `None` if it does not converge to a path on the walls.
+pub(crate) fn refine(domain: &Domain, path: &mut ClosedPath) -> Option<LengthForm> {
+    let mut polished = false;
+    for _ in 0..LARGEST_STEPS {
+        let form = path.form(domain)?;
+        // One more step after the residual is small takes it to rounding.
+        if form.residual() < LARGEST_RESIDUAL && polished {
+            return Some(form);
+        }
+        polished = form.residual() < LARGEST_RESIDUAL;
+        let step = form.hessian.solve(&form.gradient)?;
+        let longest = step.iter().fold(0.0f64, |largest, s| largest.max(s.abs()));
+        if !longest.is_finite() {
+            return None;
+        }
+        let damping = (LONGEST_STEP * domain.size / longest).min(1.0);
+        for (i, s) in step.iter().enumerate() {
+            let bounce = &mut path.bounces[i];
+            let wall = &domain.walls[bounce.wall];
+            let extent = wall.extent();
+            bounce.t -= damping * s / form.frames[i].speed;
+            if domain.next(bounce.wall) == bounce.wall {
+                bounce.t = bounce.t.rem_euclid(extent);
+            } else if bounce.t < -OVERSHOOT * extent || bounce.t > (1.0 + OVERSHOOT) * extent {
+                return None;
+            }
+        }
+    }
+    let form = path.form(domain)?;
+    (form.residual() < LARGEST_RESIDUAL).then_some(form)
+}

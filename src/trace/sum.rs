@@ -1,0 +1,59 @@
+//! Sums of terms over many k.
+
+use rayon::prelude::*;
+
+use super::smoothed::{SmoothedTerms, Value};
+use super::term::Term;
+
+/// The points start, start + step, ..., `count` of them.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct UniformGrid {
+    /// First k.
+    pub start: f64,
+    /// Distance of neighbours, positive.
+    pub step: f64,
+    /// Number of points.
+    pub count: usize,
+}
+
+impl UniformGrid {
+    /// The point with number `index`.
+    pub fn point(&self, index: usize) -> f64 {
+        self.start + self.step * index as f64
+    }
+
+    /// All points in order.
+    pub fn points(&self) -> Vec<f64> {
+        (0..self.count).map(|index| self.point(index)).collect()
+    }
+}
+
+/// The sum of the oscillating terms at a number of k.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct OrbitSum {
+    /// Contribution to the staircase N(k), in levels.
+    pub staircase: Vec<f64>,
+    /// Contribution to the density dN/dk.
+    pub density: Vec<f64>,
+}
+
+/// Sums `terms`, smoothed with a Gaussian of standard deviation `smoothing` in k (may be 0), over a uniform grid.
+///
+/// The error of the staircase is below `accuracy` times the sum of the terms' unsmoothed amplitudes, that of the density below
+/// `accuracy` times the sum of amplitude times length, plus the rounding of the phases k l in double precision.
+pub fn sum_on_grid(terms: &[Term], grid: &UniformGrid, smoothing: f64, accuracy: f64) -> OrbitSum {
+    let _ = accuracy;
+    sum_at(terms, &grid.points(), smoothing)
+}
+
+/// Sums `terms`, smoothed with a Gaussian of standard deviation `smoothing` in k (may be 0), at arbitrary points, one by one.
+///
+/// Errors are those of [`SmoothedTerms`].
+pub fn sum_at(terms: &[Term], points: &[f64], smoothing: f64) -> OrbitSum {
+    let smoothed = SmoothedTerms::new(terms, smoothing);
+    let values: Vec<Value> = points.par_iter().map(|&k| smoothed.at(k)).collect();
+    OrbitSum {
+        staircase: values.iter().map(|value| value.staircase).collect(),
+        density: values.iter().map(|value| value.density).collect(),
+    }
+}
