@@ -1,8 +1,8 @@
 //! Walls, outline, symmetry group and bounce map of a flat domain.
 
 mod bounce;
-mod curve_hit;
 mod crossings;
+mod curve_hit;
 mod detect;
 mod domain;
 mod isometry;
@@ -10,9 +10,9 @@ pub(crate) mod quadrature;
 mod symmetry;
 mod wall;
 
-pub(crate) use domain::signed_area;
 pub use bounce::{Event, Hit, Origin, Ray, Tracer, flight, incidence, reflection};
 pub use detect::{detect, is_rotationally_invariant};
+pub(crate) use domain::signed_area;
 pub use domain::{Domain, GeometryError, Role, Vertex, VertexKind, WallLoop};
 pub use isometry::Isometry;
 pub use symmetry::{Element, Irrep, Symmetry, SymmetryError, check_declared};

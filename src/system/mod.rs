@@ -43,7 +43,7 @@ const TOP_KEYS: &[&str] = &[
     "units",
 ];
 
-/// Words for `symmetry` beside C2, C3, ... and 5-gon, 6-gon, ...
+/// Words for `symmetry` beside further C5, ..., 7-gon, ... and sigma(45), the reflection at an axis of that angle.
 const SYMMETRIES: &[&str] = &[
     "none",
     "reflection",
@@ -55,7 +55,8 @@ const SYMMETRIES: &[&str] = &[
     "square",
     "5-gon",
     "6-gon",
-    "disk",
+    "x->-x",
+    "y->-y",
 ];
 /// Highest order of a rotation group that can be declared.
 const LARGEST_ORDER: u32 = 64;
@@ -198,6 +199,10 @@ fn read_system(
     let units = unit_reader::read(top.get("units"), reader)?;
     let folder = path.parent().unwrap_or(Path::new(""));
     let drawn = outline::read(top, reader, folder)?;
+    drawn
+        .domain
+        .check_crossings()
+        .map_err(|error| outline::locate(&error, &drawn.spans))?;
     Ok(System {
         name,
         about,
@@ -291,7 +296,11 @@ fn symmetry(value: Value<'_>) -> Result<(String, Span), SystemError> {
             .is_some_and(|digits| order(digits, 2))
         || word
             .strip_suffix("-gon")
-            .is_some_and(|digits| order(digits, 5));
+            .is_some_and(|digits| order(digits, 3))
+        || word
+            .strip_prefix("sigma(")
+            .and_then(|rest| rest.strip_suffix(')'))
+            .is_some_and(|angle| angle.parse::<f64>().is_ok_and(f64::is_finite));
     if known {
         return Ok((word.to_owned(), span(value)));
     }

@@ -10,6 +10,9 @@ mod parse;
 mod tape;
 mod token;
 
+#[cfg(test)]
+mod tests;
+
 pub use function::Function;
 pub use number::{Jet, Number};
 pub use parse::Builder;
