@@ -1,6 +1,6 @@
 //! Plane curves given by formulas, and cubic splines.
 
-use super::formula::{Function, Jet, Number, Tape};
+use super::formula::{Jet, Number, Tape};
 use crate::billiard::{PlaneCurve, Vec2};
 
 /// x(t) and y(t) as formulas.
@@ -32,9 +32,12 @@ impl PlaneCurve for Parametric {
 
 impl PlaneCurve for Polar {
     fn derivatives(&self, u: f64) -> [Vec2; 4] {
-        let t = Jet::variable(u);
-        let [r] = self.tape.evaluate(&[t]);
-        let (x, y) = (r * t.apply(Function::Cos), r * t.apply(Function::Sin));
+        let [r] = self.tape.evaluate(&[Jet::variable(u)]);
+        let (sin, cos) = u.sin_cos();
+        let (x, y) = (
+            r * Jet([cos, -sin, -cos, sin]),
+            r * Jet([sin, cos, -sin, -cos]),
+        );
         vectors(x.offset(self.center.x), y.offset(self.center.y))
     }
 }

@@ -221,7 +221,7 @@ pub enum Problem {
         found: Vec<&'static str>,
     },
     /// A number outside its range.
-    #[error("{what} is {value}, it must be {must}")]
+    #[error("{what} is {value:?}, it must be {must}")]
     Range {
         /// What it is for.
         what: &'static str,
@@ -288,7 +288,7 @@ pub enum Problem {
     #[error("this row has no two finite numbers x and y")]
     PointRow,
     /// Too few points.
-    #[error("{found} points are not enough, there must be at least {least}")]
+    #[error("too few points: {found}, at least {least} are needed")]
     FewPoints {
         /// How many there are.
         found: usize,
@@ -326,6 +326,12 @@ pub enum Problem {
         /// What was found.
         found: String,
     },
+    /// A curve that crosses itself.
+    #[error("this wall crosses itself at ({}, {})", at.x, at.y)]
+    CrossesItself {
+        /// Where.
+        at: Vec2,
+    },
     /// The walls do not bound a domain.
     #[error("{0}")]
     Geometry(GeometryError),
@@ -352,8 +358,8 @@ impl Problem {
                 format!("write {example}")
             }
             Self::Formula(error) => return error.problem.help(),
-            Self::ParameterName { .. } => {
-                "a name is a letter or _ followed by letters, digits or _".to_owned()
+            Self::WrongType { what, .. } if what.starts_with("[[") => {
+                format!("write {what} with two brackets: there may be several")
             }
             Self::UnknownSetting { known, .. } if known.is_empty() => {
                 "it has no parameters at all".to_owned()
@@ -379,14 +385,15 @@ impl Problem {
             Self::Symmetry { found, .. } => {
                 format!("write symmetry = \"{found}\", or leave it out")
             }
-            Self::Geometry(error) => geometry_help(error),
+            Self::NoArea => "its walls must go around the shape, not back on themselves".to_owned(),
+            Self::Geometry(error) => return geometry_help(error).map(str::to_owned),
             _ => return None,
         })
     }
 }
 
-fn geometry_help(error: &GeometryError) -> String {
-    match error {
+fn geometry_help(error: &GeometryError) -> Option<&'static str> {
+    Some(match error {
         GeometryError::Open { .. } => "the last wall must lead back to the start",
         GeometryError::NoLength { .. } => {
             "leave it out, or check the parameters that its ends depend on"
@@ -398,9 +405,7 @@ fn geometry_help(error: &GeometryError) -> String {
         GeometryError::Outside { .. } => {
             "holes and slits must lie inside the outline, and not inside each other"
         }
-        GeometryError::Irregular { .. } => {
-            "split the wall there: a curve may come to rest at its ends only"
-        }
-    }
-    .to_owned()
+        // What is irregular says itself what would be right.
+        GeometryError::Irregular { .. } => return None,
+    })
 }

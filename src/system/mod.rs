@@ -11,6 +11,8 @@ mod outline;
 mod points;
 mod reader;
 mod regularity;
+#[cfg(test)]
+mod tests;
 mod unit_reader;
 mod units;
 mod walls;
@@ -270,7 +272,7 @@ fn setting_value(name: &str, text: &str, scope: &Scope) -> Result<f64, SystemErr
 
 fn check_name(name: &str) -> Result<(), Problem> {
     let why = if !formula::is_name(name) {
-        "it does not have the form of a name"
+        "a name is a letter or _ followed by letters, digits or _"
     } else if formula::is_reserved(name) {
         "it has a meaning in formulas already"
     } else {

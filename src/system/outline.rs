@@ -40,7 +40,7 @@ pub(super) fn read(
         ("slit", "[[slit]]", Role::Slit),
     ] {
         if let Some(value) = top.get(key) {
-            for table in tables(value, title, KEYS)? {
+            for table in tables(value, title, title, KEYS)? {
                 chains.push(chain(table, role, reader, folder)?);
             }
         }
@@ -91,7 +91,7 @@ fn chain(
 fn wall_tables<'t>(table: Table<'t>) -> Result<Vec<Table<'t>>, SystemError> {
     const EXAMPLE: &str = "wall = [ { line = [1, 0] }, ... ]";
     let value: Value<'t> = table.require("wall", EXAMPLE)?;
-    let list = tables(value, "a wall", walls::KEYS)?;
+    let list = tables(value, "`wall`", "a wall", walls::KEYS)?;
     if list.is_empty() {
         let problem = Problem::Missing {
             key: "wall",
@@ -190,6 +190,9 @@ pub(super) fn locate(error: &GeometryError, spans: &[Span]) -> SystemError {
     match error {
         GeometryError::Crossing { other, .. } if place(*other) != place(wall) => {
             located.beside(place(*other), "the other wall")
+        }
+        GeometryError::Crossing { wall, other, at } if wall == other => {
+            SystemError::at(place(*wall), Problem::CrossesItself { at: *at })
         }
         _ => located,
     }

@@ -50,6 +50,11 @@ impl<'t> Table<'t> {
         }
     }
 
+    /// The same table under another name for people.
+    pub(super) fn called(self, title: &'static str) -> Self {
+        Self { title, ..self }
+    }
+
     pub(super) fn deny_unknown(&self, known: &'static [&'static str]) -> Result<(), SystemError> {
         let unknown = self
             .keys()
@@ -166,13 +171,14 @@ pub(super) fn list<'t>(
     }
 }
 
-/// The value as a list of tables.
+/// The value of `key` as a list of tables, each called `title`.
 pub(super) fn tables<'t>(
     value: Value<'t>,
+    key: &str,
     title: &'static str,
     known: &'static [&'static str],
 ) -> Result<Vec<Table<'t>>, SystemError> {
-    list(value, title)?
+    list(value, key)?
         .iter()
         .map(|item| Table::of(item, title, known))
         .collect()

@@ -86,7 +86,9 @@ fn check_rest(curve: &Curve, whole: Span) -> Result<(), SystemError> {
                 GeometryError::Irregular {
                     wall: 0,
                     t,
-                    what: format!("the curve comes to rest inside the wall, at t = {t}"),
+                    what: format!(
+                        "the curve comes to rest at t = {t}: split it there, it may rest at its ends only"
+                    ),
                 },
             ));
         }

@@ -100,7 +100,9 @@ impl WallReader<'_> {
 
     fn arc(&self, table: Table<'_>, value: Value<'_>, start: Vec2) -> Result<Shape, SystemError> {
         let end = self.reader.point(value, "the end of an arc")?;
-        let center = table.require("center", "arc = [x, y], center = [x, y]")?;
+        let center = table
+            .called("an arc")
+            .require("center", "arc = [x, y], center = [x, y]")?;
         let center = self.reader.point(center, "center")?;
         let turn = table
             .get("turn")

@@ -24,6 +24,12 @@ pub trait Number:
     #[must_use]
     fn power(&self, exponent: f64) -> Self;
 
+    /// Sine and cosine.
+    #[must_use]
+    fn sin_cos(&self) -> (Self, Self) {
+        (self.apply(Function::Sin), self.apply(Function::Cos))
+    }
+
     /// Product with a constant.
     #[must_use]
     fn scale(&self, factor: f64) -> Self {
@@ -126,6 +132,10 @@ impl Number for f64 {
         power(*self, exponent)
     }
 
+    fn sin_cos(&self) -> (Self, Self) {
+        f64::sin_cos(*self)
+    }
+
     fn power_of(&self, exponent: &Self) -> Self {
         power(*self, *exponent)
     }
@@ -221,6 +231,14 @@ impl Number for Jet {
 
     fn apply(&self, function: Function) -> Self {
         self.compose(function.derivatives(self.0[0]))
+    }
+
+    fn sin_cos(&self) -> (Self, Self) {
+        let (sin, cos) = self.0[0].sin_cos();
+        (
+            self.compose([sin, cos, -sin, -cos]),
+            self.compose([cos, -sin, -cos, sin]),
+        )
     }
 
     fn power(&self, exponent: f64) -> Self {

@@ -101,6 +101,20 @@ impl<'a> Builder<'a> {
         self.variables.len() + offset
     }
 
+    /// Slot of a function; sine and cosine come in pairs.
+    fn push_function(&mut self, function: Function, slot: usize, origin: Origin) -> usize {
+        if !matches!(function, Function::Sin | Function::Cos) {
+            return self.push(Operation::Apply(function, slot), origin);
+        }
+        let sine = self.push(Operation::Sine(slot), origin);
+        let cosine = self.push(Operation::Cosine(slot), origin);
+        if function == Function::Sin {
+            sine
+        } else {
+            cosine
+        }
+    }
+
     fn slot(&mut self, operand: Operand, origin: Origin) -> usize {
         match operand {
             Operand::Constant(value) => self.push(Operation::Constant(value), origin),
@@ -344,8 +358,9 @@ impl<'b, 'a> Parser<'b, 'a> {
             }),
             Operand::Slot(slot) => {
                 let origin = self.origin(span);
-                let slot = self.builder.push(Operation::Apply(function, slot), origin);
-                Ok(Operand::Slot(slot))
+                Ok(Operand::Slot(
+                    self.builder.push_function(function, slot, origin),
+                ))
             }
         }
     }

@@ -49,6 +49,9 @@ pub(super) enum Operation {
     Offset(usize, f64),
     Power(usize, f64),
     Apply(Function, usize),
+    /// Sine; the cosine of the same slot always follows, so that both are computed at once.
+    Sine(usize),
+    Cosine(usize),
     Binary(Binary, usize, usize),
 }
 
@@ -119,8 +122,12 @@ impl Tape {
         variables: &[N],
     ) -> [N; OUTPUTS] {
         slots[..self.variables].clone_from_slice(variables);
-        for (offset, operation) in self.operations.iter().enumerate() {
-            slots[self.variables + offset] = step(*operation, slots);
+        for (slot, operation) in (self.variables..).zip(&self.operations) {
+            match *operation {
+                Operation::Sine(a) => (slots[slot], slots[slot + 1]) = slots[a].sin_cos(),
+                Operation::Cosine(_) => {}
+                other => slots[slot] = step(other, slots),
+            }
         }
         std::array::from_fn(|output| slots[self.outputs[output]].clone())
     }
@@ -180,6 +187,8 @@ fn step<N: Number>(operation: Operation, slots: &[N]) -> N {
         Operation::Offset(a, summand) => slots[a].offset(summand),
         Operation::Power(a, exponent) => slots[a].power(exponent),
         Operation::Apply(function, a) => slots[a].apply(function),
+        Operation::Sine(a) => slots[a].apply(Function::Sin),
+        Operation::Cosine(a) => slots[a].apply(Function::Cos),
         Operation::Binary(binary, a, b) => binary.evaluate(&slots[a], &slots[b]),
     }
 }
