@@ -1,8 +1,8 @@
 //! Walls, outline, symmetry group and bounce map of a flat domain.
 
 mod bounce;
-mod curve_hit;
 mod crossings;
+mod curve_hit;
 mod detect;
 mod domain;
 mod isometry;
