@@ -8,7 +8,9 @@ mod path;
 mod periodic;
 mod phase;
 mod search;
+mod strip;
 
 pub use catalogue::{Catalogue, Limits};
 pub use periodic::{Closure, Fixing, Orbit, OrbitKind, OrbitPoint};
 pub use search::Pass;
+pub use strip::{Strip, StripEdge};
