@@ -45,8 +45,8 @@ const LARGEST_HARMONIC: usize = 4 * LARGEST_ORDER;
 const POINTS_PER_SIZE: f64 = 1024.0;
 /// Midpoints on one wall at most.
 const LARGEST_POINTS: f64 = 4096.0;
-/// Moments smaller than this fraction of the largest possible one are rounding of the quadrature.
-const SMALLEST_MOMENT: f64 = 1e-7;
+/// Moments smaller than this fraction of the largest possible one are rounding.
+const SMALLEST_MOMENT: f64 = 1e-12;
 /// Walls that are circles about the centre to within this (squared) ratio say nothing about an axis.
 const SMALLEST_LEVER: f64 = 1e-20;
 /// Gauss-Newton steps for an axis: quadratic convergence from 1e-2 needs four.
@@ -71,7 +71,7 @@ struct Corner {
 ///
 /// The disk and the annulus (each circle with one condition) have infinitely many; they are left with the identity, see
 /// [`is_rotationally_invariant`]. Walls may miss their images by 1e-9 of the domain's size. Axes within that error of a
-/// multiple of 15 degrees, and a centre within it of the origin, are taken to be there exactly.
+/// multiple of 15 degrees, and coordinates of the centre within 1e-10 of zero, are taken to be there exactly.
 #[must_use]
 pub fn detect(domain: &Domain) -> Symmetry {
     if is_rotationally_invariant(domain) {

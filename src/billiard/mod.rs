@@ -1,5 +1,6 @@
 //! Walls, outline, symmetry group and bounce map of a flat domain.
 
+pub(crate) use detect::Boundary;
 mod crossings;
 mod detect;
 mod domain;
