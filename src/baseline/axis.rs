@@ -2,7 +2,9 @@
 //! levels of the character of g.
 
 use super::boundary::{curvatures, is_cusp};
-use crate::billiard::{Boundary, Condition, Domain, Shape, Symmetry, Vec2, Vertex, cross, left};
+use crate::billiard::{
+    Boundary, Condition, Domain, Interior, Shape, Symmetry, Vec2, Vertex, cross, left,
+};
 use std::f64::consts::PI;
 
 /// A point within this fraction of the domain's size of an axis, or of a wall, lies on it: ten times the error that
@@ -200,12 +202,13 @@ impl AxisSection<'_> {
 
     /// Length of the axis inside the domain, without the parts along thin walls.
     fn length(&self, ends: &[End]) -> f64 {
+        let interior = Interior::new(self.domain);
         ends.windows(2)
             .map(|pair| {
                 let gap = pair[1].place - pair[0].place;
                 let middle = 0.5 * (pair[0].place + pair[1].place);
                 let point = self.center + self.axis * middle;
-                let open = self.domain.contains(point) && !self.is_blocked(middle);
+                let open = interior.contains(point) && !self.is_blocked(middle);
                 if open { gap } else { 0.0 }
             })
             .sum()

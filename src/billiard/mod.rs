@@ -8,6 +8,7 @@ pub(crate) mod quadrature;
 mod symmetry;
 mod wall;
 
+pub use crossings::Interior;
 pub use detect::{detect, is_rotationally_invariant};
 pub use domain::{Domain, GeometryError, Role, Vertex, VertexKind, WallLoop};
 pub use symmetry::{Element, Irrep, Symmetry, SymmetryError, check_declared};
