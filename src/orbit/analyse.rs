@@ -105,6 +105,7 @@ pub(crate) fn finish(
         points,
     };
     orbit.closures = closures(setting, &orbit, curved.map(|(_, form)| form));
+    orbit.chain = curved.and_then(|(path, form)| chain(setting, &orbit, path, form));
     orbit
 }
 
@@ -239,15 +240,17 @@ pub(crate) fn is_primitive(setting: &Setting, points: &[OrbitPoint]) -> bool {
         .all(|&later| setting.comparison.element(here[0], later).is_none())
 }
 
-/// The elements that fix every point and direction of the orbit, and the reflection across the walls that it runs along.
+/// The elements that fix every point of the orbit, and the reflection across the walls that it runs along.
 fn fixing(setting: &Setting, points: &[OrbitPoint], element: usize) -> Vec<Fixing> {
     let symmetry = setting.symmetry;
     let near = SLACK * setting.domain.size;
+    let end = symmetry.apply(element, points[0].point);
     let fixes = |h: usize| {
-        points.iter().all(|p| {
-            (symmetry.apply(h, p.point) - p.point).norm() < near
-                && (symmetry.turn(h, p.direction) - p.direction).norm() < SLACK
-        })
+        points
+            .iter()
+            .map(|point| point.point)
+            .chain([end])
+            .all(|point| (symmetry.apply(h, point) - point).norm() < near)
     };
     let mut fixed: Vec<Fixing> = (0..symmetry.order())
         .filter(|&h| fixes(h))
@@ -343,6 +346,19 @@ fn closures(setting: &Setting, orbit: &Orbit, form: Option<&LengthForm>) -> Vec<
         }
     }
     found
+}
+
+/// The parameter of the chain coefficients, if the orbit hits one joint per period and, with the curved wall replaced by the
+/// straight one that it joins, belongs to a strip.
+fn chain(setting: &Setting, orbit: &Orbit, path: &ClosedPath, form: &LengthForm) -> Option<f64> {
+    let flips = if orbit.bounces().is_multiple_of(2) {
+        1.0
+    } else {
+        -1.0
+    };
+    let flat = flips * setting.symmetry.elements[orbit.symmetry].det();
+    let single = path.bounces.len() == 1 && at_joint(setting.domain, form.frames[0].point);
+    (single && flat > 0.0).then(|| form.length() * form.frames[0].curvature / form.cosines[0])
 }
 
 /// Wall numbers from 1, starting where the sequence is smallest.
