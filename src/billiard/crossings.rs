@@ -6,6 +6,7 @@ mod piece;
 
 use super::{Domain, GeometryError, Role, Vec2};
 use contact::Contacts;
+pub use inside::Interior;
 use piece::{Bounds, Piece};
 
 /// Walls that come closer than this fraction of the domain's size touch: the same error up to which a loop may stay open.
@@ -67,6 +68,7 @@ impl Domain {
 
     /// Loops do not cross: one point of each decides where it lies.
     fn check_nesting(&self) -> Result<(), GeometryError> {
+        let interior = Interior::new(self);
         for (index, chain) in self.loops.iter().enumerate() {
             let point = self.walls[chain.walls.start].start();
             for (other, outer) in self.loops.iter().enumerate() {
@@ -74,7 +76,7 @@ impl Domain {
                     continue;
                 }
                 let must_be_inside = outer.role == Role::Outer;
-                if chain.role != Role::Outer && self.encloses(other, point) != must_be_inside {
+                if chain.role != Role::Outer && interior.encloses(other, point) != must_be_inside {
                     return Err(GeometryError::Outside {
                         wall: chain.walls.start,
                     });

@@ -45,8 +45,8 @@ const LARGEST_HARMONIC: usize = 4 * LARGEST_ORDER;
 const POINTS_PER_SIZE: f64 = 1024.0;
 /// Midpoints on one wall at most.
 const LARGEST_POINTS: f64 = 4096.0;
-/// Moments smaller than this fraction of the largest possible one are rounding of the quadrature.
-const SMALLEST_MOMENT: f64 = 1e-7;
+/// Moments smaller than this fraction of the largest possible one are rounding.
+const SMALLEST_MOMENT: f64 = 1e-12;
 /// Walls that are circles about the centre to within this (squared) ratio say nothing about an axis.
 const SMALLEST_LEVER: f64 = 1e-20;
 /// Gauss-Newton steps for an axis: quadratic convergence from 1e-2 needs four.
@@ -71,7 +71,7 @@ struct Corner {
 ///
 /// The disk and the annulus (each circle with one condition) have infinitely many; they are left with the identity, see
 /// [`is_rotationally_invariant`]. Walls may miss their images by 1e-9 of the domain's size. Axes within that error of a
-/// multiple of 15 degrees, and a centre within it of the origin, are taken to be there exactly.
+/// multiple of 15 degrees, and coordinates of the centre within 1e-10 of zero, are taken to be there exactly.
 #[must_use]
 pub fn detect(domain: &Domain) -> Symmetry {
     if is_rotationally_invariant(domain) {
@@ -167,7 +167,7 @@ impl<'a> Search<'a> {
         let image = |point: Vec2| self.center + matrix * (point - self.center);
         let corners_agree = self.corners.iter().all(|corner| {
             self.nearest_corner(corner, image(corner.point), turn, agreement)
-                .is_some_and(|other| (other - image(corner.point)).norm() < tolerance)
+                .is_some()
         });
         corners_agree
             && self.samples.iter().all(|sample| {
@@ -182,7 +182,7 @@ impl<'a> Search<'a> {
             })
     }
 
-    /// The nearest corner to the image of a corner that is like it.
+    /// The nearest corner to the image of a corner that agrees with it.
     fn nearest_corner(
         &self,
         corner: &Corner,
@@ -190,6 +190,7 @@ impl<'a> Search<'a> {
         turn: f64,
         agreement: Agreement,
     ) -> Option<Vec2> {
+        let reach = agreement.distance * self.domain.size;
         let like = |other: &&Corner| {
             let (before, after) = if turn > 0.0 {
                 (other.before, other.after)
@@ -198,29 +199,56 @@ impl<'a> Search<'a> {
             };
             (before, after) == (corner.before, corner.after)
                 && (other.angle - corner.angle).abs() < agreement.sine
+                && (other.point - image).norm() < reach
         };
-        let points = self.corners.iter().filter(like).map(|other| other.point);
-        points.min_by(|a, b| (a - image).norm().total_cmp(&(b - image).norm()))
+        let first = self
+            .corners
+            .partition_point(|other| other.point.x < image.x - reach);
+        self.corners[first..]
+            .iter()
+            .take_while(|other| other.point.x <= image.x + reach)
+            .filter(like)
+            .map(|other| other.point)
+            .min_by(|a, b| (a - image).norm().total_cmp(&(b - image).norm()))
     }
 
     /// Number of rotations in the group.
+    ///
+    /// Besides the smallest rotation its powers 2, 4, 8, ... are tried: near a circle the small one alone moves the walls by less than the
+    /// tolerance.
     fn rotations(&self) -> usize {
         (2..=LARGEST_ORDER)
             .rev()
             .find(|&order| {
-                let (cos, sin) = exact_cos_sin(1.0 / order as f64);
-                self.holds(&Mat2::new(cos, -sin, sin, cos), EXACT)
+                std::iter::successors(Some(1), |power| Some(2 * power))
+                    .take_while(|&power| power < order)
+                    .all(|power| {
+                        let (cos, sin) = exact_cos_sin(power as f64 / order as f64);
+                        self.holds(&Mat2::new(cos, -sin, sin, cos), EXACT)
+                    })
             })
             .unwrap_or(1)
     }
 
     /// Angle of one axis, in turns, if there is one.
     fn axis(&self, rotations: usize) -> Option<f64> {
-        let (harmonic, moment) = self.largest_moment(rotations)?;
-        let first = moment.arg() / harmonic as f64;
-        (0..harmonic / rotations)
-            .map(|j| first + j as f64 * PI / harmonic as f64)
-            .find_map(|angle| self.fitted(angle))
+        self.largest_moment(rotations)
+            .and_then(|(harmonic, moment)| {
+                let first = moment.arg() / harmonic as f64;
+                (0..harmonic / rotations)
+                    .map(|j| first + j as f64 * PI / harmonic as f64)
+                    .find_map(|angle| self.fitted(angle))
+            })
+            .or_else(|| self.axis_by_corners())
+    }
+
+    /// An axis of a shape whose moments vanish up to the largest harmonic (a regular polygon of very many corners): it lies half way
+    /// between the first corner and its image.
+    fn axis_by_corners(&self) -> Option<f64> {
+        let arms = self.corners.iter().map(|corner| corner.point - self.center);
+        let first = self.corners.first()?.point - self.center;
+        arms.filter(|arm| (arm.norm() - first.norm()).abs() < EXACT.distance * self.domain.size)
+            .find_map(|arm| self.fitted(0.5 * (first.y.atan2(first.x) + arm.y.atan2(arm.x))))
     }
 
     /// The largest moment and its harmonic h.
@@ -367,8 +395,9 @@ fn samples_of(wall: &Wall) -> Vec<Sample> {
         .collect()
 }
 
+/// Corners, sorted along x.
 fn corners_of(domain: &Domain) -> Vec<Corner> {
-    domain
+    let mut corners: Vec<Corner> = domain
         .vertices
         .iter()
         .map(|vertex| Corner {
@@ -378,7 +407,9 @@ fn corners_of(domain: &Domain) -> Vec<Corner> {
             after: domain.walls[vertex.after].condition,
         })
         .filter(|corner| corner.before != corner.after || (corner.angle - PI).abs() > EXACT.sine)
-        .collect()
+        .collect();
+    corners.sort_by(|a, b| a.point.x.total_cmp(&b.point.x));
+    corners
 }
 
 /// Reflection across an axis, from cosine and sine of twice the axis' angle.

@@ -1,6 +1,7 @@
 //! Walls, outline, symmetry group and bounce map of a flat domain.
 
 mod bounce;
+pub(crate) use detect::Boundary;
 mod crossings;
 mod curve_hit;
 mod detect;
@@ -11,6 +12,7 @@ mod symmetry;
 mod wall;
 
 pub use bounce::{Event, Hit, Origin, Ray, Tracer, flight, incidence, reflection};
+pub use crossings::Interior;
 pub use detect::{detect, is_rotationally_invariant};
 pub(crate) use domain::signed_area;
 pub use domain::{Domain, GeometryError, Role, Vertex, VertexKind, WallLoop};

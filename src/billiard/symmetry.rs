@@ -48,7 +48,7 @@ pub struct Symmetry {
     pub center: Vec2,
     /// Elements, the identity first.
     pub elements: Vec<Element>,
-    /// product[a][b] is the index of the element a after b.
+    /// `product[a][b]` is the index of the element a after b.
     pub product: Vec<Vec<usize>>,
     /// Irreducible representations; the weights of all classes add to |G| on the identity and to 0 elsewhere.
     pub irreps: Vec<Irrep>,

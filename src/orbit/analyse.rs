@@ -105,6 +105,7 @@ pub(crate) fn finish(
         points,
     };
     orbit.closures = closures(setting, &orbit, curved.map(|(_, form)| form));
+    orbit.chain = curved.and_then(|(path, form)| chain(setting, &orbit, path, form));
     orbit
 }
 
@@ -127,44 +128,71 @@ fn bounce_points(
         }
         let from = form.frames[i].point;
         let target = path.links[i].unfold.apply(form.frames[(i + 1) % n].point);
-        let mut direction = (target - from) / form.chords[i];
-        let mut here = from;
+        let direction = (target - from) / form.chords[i];
         points.push(OrbitPoint {
             wall: bounce.wall,
             t: bounce.t,
-            point: here,
+            point: from,
             direction,
         });
-        for &wall in &path.links[i].straight {
-            let Shape::Line(line) = &domain.walls[wall].shape else {
-                return None;
-            };
-            let tangent = (line.end - line.start).normalize();
-            let facing = cross(tangent, direction);
-            if facing > -GRAZING {
-                return None;
-            }
-            let distance = cross(tangent, line.start - here) / facing;
-            let along = tangent.dot(&(here + direction * distance - line.start));
-            if distance < -slack || along < -slack || along > domain.lengths[wall] + slack {
-                return None;
-            }
-            here += direction * distance;
-            let normal = left(tangent);
-            direction -= normal * (2.0 * direction.dot(&normal));
-            points.push(OrbitPoint {
-                wall,
-                t: along,
-                point: here,
-                direction,
-            });
-        }
+        extend_along(domain, &mut points, &path.links[i].straight)?;
     }
     Some(points)
 }
 
+/// Bounce points of a path that leaves a wall at parameter t along `direction` and meets the straight `walls` in order, or
+/// `None` if it misses one. Corners are no obstacle: several bounces may lie in one point.
+pub(crate) fn bounce_along(
+    domain: &Domain,
+    wall: usize,
+    t: f64,
+    direction: Vec2,
+    walls: &[usize],
+) -> Option<Vec<OrbitPoint>> {
+    let mut points = vec![OrbitPoint {
+        wall,
+        t,
+        point: domain.walls[wall].point(t),
+        direction,
+    }];
+    extend_along(domain, &mut points, walls)?;
+    Some(points)
+}
+
+/// Follows the last of `points` along straight walls.
+fn extend_along(domain: &Domain, points: &mut Vec<OrbitPoint>, walls: &[usize]) -> Option<()> {
+    let slack = SLACK * domain.size;
+    for &wall in walls {
+        let OrbitPoint {
+            point, direction, ..
+        } = *points.last()?;
+        let Shape::Line(line) = &domain.walls[wall].shape else {
+            return None;
+        };
+        let tangent = (line.end - line.start).normalize();
+        let facing = cross(tangent, direction);
+        if facing > -GRAZING {
+            return None;
+        }
+        let distance = cross(tangent, line.start - point) / facing;
+        let here = point + direction * distance;
+        let t = tangent.dot(&(here - line.start));
+        if distance < -slack || t < -slack || t > domain.lengths[wall] + slack {
+            return None;
+        }
+        let normal = left(tangent);
+        points.push(OrbitPoint {
+            wall,
+            t,
+            point: here,
+            direction: direction - normal * (2.0 * direction.dot(&normal)),
+        });
+    }
+    Some(())
+}
+
 /// Does every chord run through the interior, without meeting a wall before its end?
-fn chords_are_free(setting: &Setting, points: &[OrbitPoint], element: usize) -> bool {
+pub(crate) fn chords_are_free(setting: &Setting, points: &[OrbitPoint], element: usize) -> bool {
     let slack = SLACK * setting.domain.size;
     let n = points.len();
     (0..n).all(|i| {
@@ -205,22 +233,24 @@ fn origin(domain: &Domain, from: OrbitPoint) -> Origin {
     }
 }
 
-fn is_primitive(setting: &Setting, points: &[OrbitPoint]) -> bool {
+pub(crate) fn is_primitive(setting: &Setting, points: &[OrbitPoint]) -> bool {
     let here = phases(points);
     here[1..]
         .iter()
         .all(|&later| setting.comparison.element(here[0], later).is_none())
 }
 
-/// The elements that fix every point and direction of the orbit, and the reflection across the walls that it runs along.
+/// The elements that fix every point of the orbit, and the reflection across the walls that it runs along.
 fn fixing(setting: &Setting, points: &[OrbitPoint], element: usize) -> Vec<Fixing> {
     let symmetry = setting.symmetry;
     let near = SLACK * setting.domain.size;
+    let end = symmetry.apply(element, points[0].point);
     let fixes = |h: usize| {
-        points.iter().all(|p| {
-            (symmetry.apply(h, p.point) - p.point).norm() < near
-                && (symmetry.turn(h, p.direction) - p.direction).norm() < SLACK
-        })
+        points
+            .iter()
+            .map(|point| point.point)
+            .chain([end])
+            .all(|point| (symmetry.apply(h, point) - point).norm() < near)
     };
     let mut fixed: Vec<Fixing> = (0..symmetry.order())
         .filter(|&h| fixes(h))
@@ -278,7 +308,7 @@ pub(crate) fn at_joint(domain: &Domain, point: Vec2) -> bool {
 }
 
 /// Smallest m for which g^m takes the first phase point to itself.
-fn copies(setting: &Setting, here: &[(Vec2, Vec2)], element: usize) -> usize {
+pub(crate) fn copies(setting: &Setting, here: &[(Vec2, Vec2)], element: usize) -> usize {
     let mut power = element;
     let mut count = 1;
     while !setting.comparison.takes(power, here[0], here[0]) && count <= setting.symmetry.order() {
@@ -318,8 +348,21 @@ fn closures(setting: &Setting, orbit: &Orbit, form: Option<&LengthForm>) -> Vec<
     found
 }
 
+/// The parameter of the chain coefficients, if the orbit hits one joint per period and, with the curved wall replaced by the
+/// straight one that it joins, belongs to a strip.
+fn chain(setting: &Setting, orbit: &Orbit, path: &ClosedPath, form: &LengthForm) -> Option<f64> {
+    let flips = if orbit.bounces().is_multiple_of(2) {
+        1.0
+    } else {
+        -1.0
+    };
+    let flat = flips * setting.symmetry.elements[orbit.symmetry].det();
+    let single = path.bounces.len() == 1 && at_joint(setting.domain, form.frames[0].point);
+    (single && flat > 0.0).then(|| form.length() * form.frames[0].curvature / form.cosines[0])
+}
+
 /// Wall numbers from 1, starting where the sequence is smallest.
-fn word(points: &[OrbitPoint]) -> String {
+pub(crate) fn word(points: &[OrbitPoint]) -> String {
     let walls: Vec<usize> = points.iter().map(|point| point.wall + 1).collect();
     let n = walls.len();
     let best = (0..n)

@@ -3,7 +3,8 @@
 use super::analyse::Setting;
 use super::periodic::Orbit;
 use super::phase::Comparison;
-use super::search::{Pass, curved_orbits};
+use super::search::{Pass, curved_orbits, insert, sort};
+use super::strip::{Strip, flat_orbits};
 use crate::billiard::{Domain, Symmetry, Tracer};
 
 /// How far orbits are looked for. Both bound the reduced orbit.
@@ -22,8 +23,12 @@ pub struct Catalogue {
     pub limits: Limits,
     /// Isolated orbits, shortest first.
     pub orbits: Vec<Orbit>,
-    /// What the passes of the search did.
+    /// Strips of parallel orbits, shortest first.
+    pub strips: Vec<Strip>,
+    /// What the passes of the search from curved walls did.
     pub passes: Vec<Pass>,
+    /// What the passes of the search for strips and flat orbits did.
+    pub flat_passes: Vec<Pass>,
 }
 
 impl Catalogue {
@@ -39,11 +44,18 @@ impl Catalogue {
             max_length: limits.max_length,
             max_bounces: limits.max_bounces,
         };
-        let (orbits, passes) = curved_orbits(&setting);
+        let (mut orbits, passes) = curved_orbits(&setting);
+        let flat = flat_orbits(&setting);
+        for orbit in flat.orbits {
+            insert(&setting, &mut orbits, orbit);
+        }
+        sort(&mut orbits);
         Self {
             limits,
             orbits,
+            strips: flat.strips,
             passes,
+            flat_passes: flat.passes,
         }
     }
 }

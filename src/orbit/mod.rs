@@ -2,13 +2,18 @@
 
 mod analyse;
 mod catalogue;
+mod chain;
 mod cyclic;
 mod fan;
 mod path;
 mod periodic;
 mod phase;
 mod search;
+mod strip;
+mod terms;
 
 pub use catalogue::{Catalogue, Limits};
 pub use periodic::{Closure, Fixing, Orbit, OrbitKind, OrbitPoint};
 pub use search::Pass;
+pub use strip::{Strip, StripEdge};
+pub use terms::{ClassWeights, orbit_terms, strip_terms, terms};

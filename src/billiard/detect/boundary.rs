@@ -6,6 +6,8 @@ use crate::billiard::{Condition, Domain, Frame, Shape, Vec2, Wall, cross};
 const PIECES: usize = 64;
 /// Newton steps for a foot point; three suffice from a neighbouring piece, a cusp needs a few more.
 const NEWTON_STEPS: usize = 12;
+/// Rounding of a length, relative.
+const ROUNDING: f64 = 1e-12;
 /// A foot point that moves by less than this fraction of the curve's parameter range has arrived.
 const ARRIVED: f64 = 1e-15;
 
@@ -17,33 +19,49 @@ struct Piece {
     radius: f64,
 }
 
-/// The walls of a domain with what makes distances quick: a disk around each wall and around each piece of a curve.
+/// A disk around one wall.
+struct Disk {
+    wall: usize,
+    middle: Vec2,
+    radius: f64,
+}
+
+/// The walls of a domain with what makes distances quick: a disk around each wall, sorted along x, and around each piece
+/// of a curve.
 pub(crate) struct Boundary<'a> {
     domain: &'a Domain,
-    disks: Vec<(Vec2, f64)>,
+    disks: Vec<Disk>,
+    largest_radius: f64,
     pieces: Vec<Vec<Piece>>,
 }
 
 impl<'a> Boundary<'a> {
     pub(crate) fn new(domain: &'a Domain) -> Self {
         let pieces: Vec<Vec<Piece>> = domain.walls.iter().map(cut).collect();
-        let disks = domain
+        let mut disks: Vec<Disk> = domain
             .walls
             .iter()
             .zip(&domain.lengths)
-            .map(|(wall, length)| {
-                // No point of a wall is farther from its middle than the longer of its halves.
-                let middle = wall.point(0.5 * wall.extent());
-                let radius = match wall.shape {
-                    Shape::Curve(_) => *length,
-                    _ => 0.5 * length,
+            .enumerate()
+            .map(|(index, (wall, length))| {
+                // No point of a line or an arc is farther from its middle than half of its length.
+                let part = match wall.shape {
+                    Shape::Curve(_) => 1.0,
+                    _ => 0.5,
                 };
-                (middle, radius)
+                Disk {
+                    wall: index,
+                    middle: wall.point(0.5 * wall.extent()),
+                    radius: part * length * (1.0 + ROUNDING),
+                }
             })
             .collect();
+        disks.sort_by(|a, b| a.middle.x.total_cmp(&b.middle.x));
+        let largest_radius = disks.iter().map(|disk| disk.radius).fold(0.0, f64::max);
         Self {
             domain,
             disks,
+            largest_radius,
             pieces,
         }
     }
@@ -57,11 +75,17 @@ impl<'a> Boundary<'a> {
     ) -> Option<Frame> {
         let mut best = None;
         let mut reach = limit;
-        for (index, wall) in self.domain.walls.iter().enumerate() {
-            let (middle, radius) = self.disks[index];
-            if (point - middle).norm() > reach + radius * (1.0 + 1e-12) {
+        let first = self
+            .disks
+            .partition_point(|disk| disk.middle.x < point.x - limit - self.largest_radius);
+        for disk in &self.disks[first..] {
+            if disk.middle.x > point.x + reach + self.largest_radius {
+                break;
+            }
+            if (point - disk.middle).norm() > reach + disk.radius {
                 continue;
             }
+            let (index, wall) = (disk.wall, &self.domain.walls[disk.wall]);
             for frame in self.feet(index, wall, point, reach) {
                 let distance = (frame.point - point).norm();
                 if distance <= reach && admits(wall.condition, &frame) {

@@ -1,0 +1,149 @@
+//! From orbits and strips to terms of the sum, for the whole domain or one symmetry class.
+
+use super::catalogue::Catalogue;
+use super::chain::chain_coefficient;
+use super::periodic::{Closure, Fixing, Orbit};
+use super::strip::{Strip, StripEdge};
+use crate::billiard::{Irrep, Symmetry};
+use crate::trace::{Amplitude, Term};
+use num_complex::Complex64;
+use std::f64::consts::{FRAC_PI_2, PI};
+
+/// Weights of the group elements in a class: dimension times character, or |G| times the delta at the identity for the
+/// whole domain.
+#[derive(Clone, Debug)]
+pub struct ClassWeights<'a> {
+    symmetry: &'a Symmetry,
+    weights: Vec<f64>,
+}
+
+impl<'a> ClassWeights<'a> {
+    /// Weights of one class, or of all levels.
+    #[must_use]
+    pub fn new(symmetry: &'a Symmetry, class: Option<&Irrep>) -> Self {
+        let order = symmetry.order();
+        let weights = class.map_or_else(
+            || {
+                (0..order)
+                    .map(|g| if g == 0 { order as f64 } else { 0.0 })
+                    .collect()
+            },
+            |irrep| irrep.weights.clone(),
+        );
+        Self { symmetry, weights }
+    }
+
+    fn power(&self, element: usize, exponent: u32) -> usize {
+        (0..exponent).fold(0, |product, _| self.symmetry.product[element][product])
+    }
+
+    /// Weight of g^r closed by h.
+    fn closed(&self, element: usize, repetition: u32, fixing: Fixing) -> f64 {
+        let power = self.power(element, repetition);
+        match fixing {
+            Fixing::Element(h) => self.weights[self.symmetry.product[h][power]],
+            Fixing::Wall(sign) => sign * self.weights[power],
+        }
+    }
+
+    fn repeated(&self, element: usize, repetition: u32) -> f64 {
+        self.weights[self.power(element, repetition)]
+    }
+}
+
+/// All terms of a catalogue.
+#[must_use]
+pub fn terms(catalogue: &Catalogue, weights: &ClassWeights) -> Vec<Term> {
+    let isolated = catalogue
+        .orbits
+        .iter()
+        .flat_map(|orbit| orbit_terms(orbit, weights));
+    let strips = catalogue
+        .strips
+        .iter()
+        .flat_map(|strip| strip_terms(strip, weights, catalogue.limits.max_length));
+    isolated
+        .chain(strips)
+        .filter(|term| term.coefficient.norm() > 0.0)
+        .collect()
+}
+
+/// Terms of one orbit, all repetitions.
+#[must_use]
+pub fn orbit_terms(orbit: &Orbit, weights: &ClassWeights) -> Vec<Term> {
+    orbit
+        .closures
+        .iter()
+        .filter_map(|closure| closure_term(orbit, closure, weights))
+        .collect()
+}
+
+/// N(k) = (weight / (pi r |K|)) w(h g^r) |det(h g^r M^r - 1)|^(-1/2) sin(r k L - (pi/2) mu), for each of the `partner`
+/// directions (Gutzwiller 1971; with symmetry Robbins 1989, Lauritzen 1991).
+fn closure_term(orbit: &Orbit, closure: &Closure, weights: &ClassWeights) -> Option<Term> {
+    let r = closure.repetition;
+    let share = f64::from(orbit.partner) * weights.closed(orbit.symmetry, r, closure.fixing)
+        / (PI * f64::from(r) * orbit.fixed_by.len() as f64);
+    let index = (closure.negative + 2 * orbit.dirichlet * r as usize) as f64;
+    let amplitude = match orbit.chain {
+        // The chain coefficient replaces amplitude and the phase of the Hessian; the wall signs stay.
+        Some(c) => {
+            let sign = if (orbit.dirichlet * r as usize).is_multiple_of(2) {
+                1.0
+            } else {
+                -1.0
+            };
+            chain_coefficient(r, c)? * sign
+        }
+        None => Complex64::from_polar(
+            orbit.weight / closure.determinant.sqrt(),
+            -FRAC_PI_2 * index,
+        ),
+    };
+    Some(Term {
+        length: orbit.length * f64::from(r),
+        // sin x = Re[-i e^(i x)]
+        coefficient: amplitude * share * Complex64::new(0.0, -1.0),
+        amplitude: Amplitude::Constant,
+        repetition: r,
+    })
+}
+
+/// Terms of one strip, all repetitions up to a length: N(k) = sigma^r w(g^r) (width / (2 pi r)) k J1(r k L) per direction,
+/// and for an edge along a wall of sign eps: eps sigma^r w(g^r) sin(r k L)/(4 pi r).
+#[must_use]
+pub fn strip_terms(strip: &Strip, weights: &ClassWeights, max_length: f64) -> Vec<Term> {
+    let repetitions = (max_length / strip.length * (1.0 + 1e-12)).floor() as u32;
+    let walls: f64 = strip
+        .edges
+        .iter()
+        .map(|edge| match edge {
+            StripEdge::Wall(sign) => *sign,
+            _ => 0.0,
+        })
+        .sum();
+    (1..=repetitions)
+        .flat_map(|r| {
+            let times = f64::from(r);
+            let share = f64::from(strip.partner)
+                * weights.repeated(strip.symmetry, r)
+                * strip.sign.powi(r as i32);
+            let term = |coefficient, amplitude| Term {
+                length: strip.length * times,
+                coefficient,
+                amplitude,
+                repetition: r,
+            };
+            [
+                term(
+                    Complex64::from(share * strip.width / (2.0 * PI * times)),
+                    Amplitude::Strip,
+                ),
+                term(
+                    Complex64::new(0.0, -share * walls / (4.0 * PI * times)),
+                    Amplitude::Constant,
+                ),
+            ]
+        })
+        .collect()
+}
