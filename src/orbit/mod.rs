@@ -1,1 +1,3 @@
 //! Periodic orbits and families: search, refinement, index, terms.
+
+pub mod tori;
