@@ -1,7 +1,8 @@
 //! The two isolated orbits of the ellipse, along its axes.
 
 use super::TorusLimits;
-use super::ellipse::{BIFURCATION, Ellipse};
+use super::confocal::Ellipse;
+use super::ellipse::BIFURCATION;
 use super::family::{FamilyKind, LeftOut, LeftOutKind, TorusFamily, TorusSum, Wave};
 use super::phase::quarters_at;
 use crate::trace::Amplitude;
@@ -40,7 +41,9 @@ pub(super) fn add(ellipse: &Ellipse, limits: &TorusLimits, sum: &mut TorusSum) {
         let most = (limits.max_length / (2.0 * orbit.distance)).floor() as u32;
         for r in 1..=most.min(limits.max_bounces / 2) {
             let turns = ellipse.axis_rotation() * f64::from(r);
-            if orbit.kind == FamilyKind::ShortAxis && (turns - turns.round()).abs() < BIFURCATION * f64::from(r) {
+            if orbit.kind == FamilyKind::ShortAxis
+                && (turns - turns.round()).abs() < BIFURCATION * f64::from(r)
+            {
                 // The libration that leaves the axis here stands for both.
                 continue;
             }
@@ -109,14 +112,24 @@ mod tests {
     fn first_repetitions_of_the_ellipse_with_axes_1_and_0_8() {
         // From the traces of one bounce, 2 (bend - 1) = 0.56 and 4.25 (worked out by hand): short axis -0.1658 cos(kL), long axis
         // -0.0849 sin(kL).
-        let ellipse = Ellipse { long: 1.0, short: 0.8, condition: Condition::Dirichlet };
+        let ellipse = Ellipse {
+            long: 1.0,
+            short: 0.8,
+            condition: Condition::Dirichlet,
+        };
         let mut sum = TorusSum::default();
         add(&ellipse, &TorusLimits::up_to(5.0), &mut sum);
         assert_eq!(sum.terms.len(), 2);
         let short = sum.terms[0].coefficient;
         let long = sum.terms[1].coefficient;
-        assert!((short.re + 0.1658).abs() < 1e-4 && short.im.abs() < 1e-12, "{short}");
+        assert!(
+            (short.re + 0.1658).abs() < 1e-4 && short.im.abs() < 1e-12,
+            "{short}"
+        );
         // Re[c exp(i x)] = -Im(c) sin(x)
-        assert!((long.im - 0.0849).abs() < 1e-4 && long.re.abs() < 1e-12, "{long}");
+        assert!(
+            (long.im - 0.0849).abs() < 1e-4 && long.re.abs() < 1e-12,
+            "{long}"
+        );
     }
 }

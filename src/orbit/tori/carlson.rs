@@ -61,11 +61,20 @@ pub(super) struct Parameter {
 impl Parameter {
     /// m = 1/(1 + exp(u)), so that both ends of (0, 1) are reached with full relative accuracy.
     pub(super) fn logistic(u: f64) -> Self {
-        let (small, large) = ((-u.abs()).exp() / (1.0 + (-u.abs()).exp()), 1.0 / (1.0 + (-u.abs()).exp()));
+        let (small, large) = (
+            (-u.abs()).exp() / (1.0 + (-u.abs()).exp()),
+            1.0 / (1.0 + (-u.abs()).exp()),
+        );
         if u > 0.0 {
-            Self { m: small, complement: large }
+            Self {
+                m: small,
+                complement: large,
+            }
         } else {
-            Self { m: large, complement: small }
+            Self {
+                m: large,
+                complement: small,
+            }
         }
     }
 }
@@ -120,7 +129,10 @@ mod tests {
     use super::*;
 
     fn parameter(m: f64) -> Parameter {
-        Parameter { m, complement: 1.0 - m }
+        Parameter {
+            m,
+            complement: 1.0 - m,
+        }
     }
 
     #[test]
@@ -131,16 +143,24 @@ mod tests {
             (0.9, 2.578_092_113_348_173, 1.104_774_732_704_073),
         ] {
             let found = integrals(COMPLETE, parameter(m));
-            assert!((found.first - k).abs() < 1e-14 && (found.second - e).abs() < 1e-14, "{found:?}");
+            assert!(
+                (found.first - k).abs() < 1e-14 && (found.second - e).abs() < 1e-14,
+                "{found:?}"
+            );
         }
     }
 
     #[test]
     fn incomplete_integrals_match_quadrature() {
         for (phi, m) in [(0.3_f64, 0.2), (1.0, 0.7), (1.4, 0.99)] {
-            let amplitude = Amplitude { sin: phi.sin(), cos: phi.cos() };
+            let amplitude = Amplitude {
+                sin: phi.sin(),
+                cos: phi.cos(),
+            };
             let quad = |power: f64| {
-                crate::billiard::quadrature::integrate(0.0, phi, 16, |t| (1.0 - m * t.sin().powi(2)).powf(power))
+                crate::billiard::quadrature::integrate(0.0, phi, 16, |t| {
+                    (1.0 - m * t.sin().powi(2)).powf(power)
+                })
             };
             let found = integrals(amplitude, parameter(m));
             assert!((found.first - quad(-0.5)).abs() < 1e-13);
@@ -149,7 +169,11 @@ mod tests {
             let slope = crate::billiard::quadrature::integrate(0.0, phi, 16, |t| {
                 0.5 * t.sin().powi(2) * (1.0 - m * t.sin().powi(2)).powf(-1.5)
             });
-            assert!((found.slope / slope - 1.0).abs() < 1e-11, "{} {slope}", found.slope);
+            assert!(
+                (found.slope / slope - 1.0).abs() < 1e-11,
+                "{} {slope}",
+                found.slope
+            );
         }
     }
 

@@ -17,6 +17,10 @@ const SAME: f64 = 1e-9;
 /// A diffraction coefficient smaller than this is that of a centre which does not diffract.
 const NO_DIFFRACTION: f64 = 1e-12;
 
+/// Angular factor of the diffraction at a sector's centre above which a torus of chords passes so near to the centre that
+/// both overlap; there the phase correction of the centre's term is cut by its clamp at k R = 50.
+const OVERLAP: f64 = 4.0;
+
 /// Tori that pass the inner circle nearer than this (difference of impact parameters, of the outer radius) are named as
 /// grazing: at k R = 50 the penumbra, about (k R)^(-2/3), is as wide.
 const GRAZING: f64 = 0.07;
@@ -80,7 +84,11 @@ impl Chords<'_> {
                 + stationary_point(v, b, theta.sin(), None);
             sum.push(
                 TorusFamily {
-                    kind: if tangent { FamilyKind::TangentChords } else { FamilyKind::Chords },
+                    kind: if tangent {
+                        FamilyKind::TangentChords
+                    } else {
+                        FamilyKind::Chords
+                    },
                     winding: w,
                     bounces: v,
                     outer_bounces: v,
@@ -182,8 +190,9 @@ impl Annulus {
         if r - b < GRAZING {
             push_grazing(length, amplitude, sum);
         }
-        let slope = 2.0 * pairs * (reflection(self.outer, outer, b) - reflection(self.inner, inner, b))
-            + stationary_point(v, b, outer, Some(inner));
+        let slope =
+            2.0 * pairs * (reflection(self.outer, outer, b) - reflection(self.inner, inner, b))
+                + stationary_point(v, b, outer, Some(inner));
         sum.push(
             TorusFamily {
                 kind: FamilyKind::BetweenCircles,
@@ -249,17 +258,21 @@ impl Sector {
         }
     }
 
-    /// amplitude x sin(phi_v), or x cos(phi_v) with one quarter turn less lost; phi_v = 2 v k R - 2 pi v alpha + 2 v delta.
-    fn radius_wave(&self, v: u32, amplitude: f64, less: u32) -> Wave {
+    /// amplitude x sin(phi_v), phi_v = 2 v k R - 2 pi v alpha + 2 v delta.
+    fn radius_wave(&self, v: u32, amplitude: f64) -> Wave {
         Wave {
             amplitude,
-            // Four quarter turns more do not change the phase and keep the number positive.
-            quarters: v * quarters_caustic_to(self.arc) + 4 - less,
+            quarters: v * quarters_caustic_to(self.arc),
             eighths: 0,
             law: Amplitude::CorrectedConstant {
-                slope: 2.0 * f64::from(v) * reflection(self.arc, 1.0, 0.0) / self.radius,
+                slope: self.radius_slope(v),
             },
         }
+    }
+
+    /// Coefficient of 1/k in 2 v delta at normal incidence.
+    fn radius_slope(&self, v: u32) -> f64 {
+        2.0 * f64::from(v) * reflection(self.arc, 1.0, 0.0) / self.radius
     }
 
     /// Radial walls: eps sin(phi_v)/(2 pi v).
@@ -267,27 +280,49 @@ impl Sector {
         let amplitude = self.radial[0].sign() / (2.0 * PI * f64::from(v));
         sum.push(
             self.radius_orbit(FamilyKind::RadialEdge, v),
-            &self.radius_wave(v, amplitude, 0),
+            &self.radius_wave(v, amplitude),
         );
     }
 
-    /// Centre: -cos(phi_v)/(2 pi v) times cot(x/2) for like radial walls, 1/sin(x/2) for unlike ones, x = pi^2 v/opening.
+    /// Centre: -cos(phi_v + sigma/(k R))/(2 pi v) times cot(x/2) for like radial walls, 1/sin(x/2) for unlike ones,
+    /// x = pi^2 v/opening.
     ///
-    /// These are the ends at zero angular momentum of the Poisson integrals, summed over the winding number. Where x is a
-    /// multiple of 2 pi the end is the stationary point of the diameter torus, which is counted there.
+    /// These are the ends at zero angular momentum of the Poisson integrals, summed over the winding number; or directly: the sum
+    /// over the angular orders n = j pi/opening (j = 1, 2, .. or 1/2, 3/2, ..) of exp(2 i v Phi_n), with the radial phase
+    /// Phi_n = k - n pi/2 + n^2/(2k) + .. at small n. The term linear in n gives a geometric series, q/(1 - q) or sqrt(q)/(1 - q) with
+    /// q = exp(-i x); the quadratic one gives i v/k (pi/opening)^2 times minus the second derivative of that by x, which is
+    /// a pure phase: sigma = -(v/2) (pi/opening)^2 / sin(x/2)^2 for like walls, -(v/4) (pi/opening)^2
+    /// (1 + cos(x/2)^2)/sin(x/2)^2 for unlike ones. Where x is a multiple of 2 pi the end is the stationary point of the
+    /// diameter torus, which is counted there.
     fn add_center(&self, v: u32, like: bool, sum: &mut TorusSum) {
-        let half = 0.5 * PI * PI * f64::from(v) / self.opening;
-        if half.sin().abs() < SAME {
+        let (sin, cos) = (0.5 * PI * PI * f64::from(v) / self.opening).sin_cos();
+        if sin.abs() < SAME {
             return;
         }
-        let angular = if like { half.cos() } else { 1.0 } / half.sin();
+        let angular = if like { cos } else { 1.0 } / sin;
         if angular.abs() < NO_DIFFRACTION {
             return;
         }
+        let family = self.radius_orbit(FamilyKind::CenterDiffraction, v);
         let amplitude = -angular / (2.0 * PI * f64::from(v));
-        sum.push(
-            self.radius_orbit(FamilyKind::CenterDiffraction, v),
-            &self.radius_wave(v, amplitude, 1),
-        );
+        let curved = if like { 2.0 } else { 1.0 + cos * cos };
+        let sigma = -0.25 * f64::from(v) * (PI / (self.opening * sin)).powi(2) * curved;
+        if angular.abs() > OVERLAP {
+            sum.left_out.push(LeftOut {
+                kind: LeftOutKind::CenterNearTorus,
+                length: family.length,
+                amplitude: amplitude.abs(),
+                power: 0.0,
+            });
+        }
+        // cos(phi) = sin(phi + pi/2): one quarter turn less is lost, three more are the same.
+        let wave = Wave {
+            quarters: v * quarters_caustic_to(self.arc) + 3,
+            law: Amplitude::CorrectedConstant {
+                slope: self.radius_slope(v) + sigma / self.radius,
+            },
+            ..self.radius_wave(v, amplitude)
+        };
+        sum.push(family, &wave);
     }
 }

@@ -35,7 +35,10 @@ impl Conic {
 pub(super) fn fit(walls: &[Wall]) -> Option<Conic> {
     let points: Vec<Vec2> = walls.iter().flat_map(samples).collect();
     let mean = points.iter().sum::<Vec2>() / points.len() as f64;
-    let size = points.iter().map(|point| (point - mean).norm()).fold(0.0, f64::max);
+    let size = points
+        .iter()
+        .map(|point| (point - mean).norm())
+        .fold(0.0, f64::max);
     let scaled: Vec<Vec2> = points.iter().map(|point| (point - mean) / size).collect();
     let mut coefficients = Vector5::zeros();
     // Normal equations square the condition number; one step of refinement on the residuals restores the digits.

@@ -60,8 +60,8 @@ impl fmt::Display for FamilyKind {
 pub struct TorusFamily {
     /// Kind.
     pub kind: FamilyKind,
-    /// Winding number w: turns around the centre (openings of a sector that the unfolded orbit crosses in half a turn of
-    /// its walls: w = theta v / opening); oscillations across the axis for librations of an ellipse.
+    /// Winding number w: turns around the centre; w = theta v/opening in a sector, where theta is half the angle that a
+    /// chord of the unfolded orbit subtends; oscillations across the short axis for librations of an ellipse.
     pub winding: u32,
     /// Bounces on the curved walls, repetitions included.
     pub bounces: u32,
@@ -85,6 +85,8 @@ pub enum LeftOutKind {
     },
     /// A torus next to grazing the inner circle, or touching it: its penumbra and the creeping waves are not described.
     Grazing,
+    /// Sector: a torus of chords passes so near to the centre that its term and that of the centre's diffraction overlap.
+    CenterNearTorus,
     /// An axis orbit so near to a bifurcation that its term and that of the neighbouring torus are only rough.
     NearBifurcation,
 }
@@ -121,7 +123,7 @@ pub struct TorusSum {
     pub left_out: Vec<LeftOut>,
 }
 
-/// A oscillation amplitude x k^power x sin(k l - quarters x pi/2 + eighths x pi/4) with its k dependence.
+/// An oscillation amplitude x k^power x sin(k l - quarters x pi/2 + eighths x pi/4) with its k dependence.
 pub(super) struct Wave {
     /// Amplitude in front of the sine, without the power of k.
     pub(super) amplitude: f64,
@@ -159,8 +161,7 @@ impl TorusSum {
         });
         self.families = order.iter().map(|&i| self.families[i]).collect();
         self.terms = order.iter().map(|&i| self.terms[i]).collect();
-        self.left_out
-            .sort_by(|a, b| a.length.total_cmp(&b.length));
+        self.left_out.sort_by(|a, b| a.length.total_cmp(&b.length));
     }
 
     /// Estimated size, in levels, of what the limit of bounces leaves out at wave number k under Gaussian smoothing of

@@ -20,6 +20,7 @@
 mod axis;
 mod carlson;
 mod circular;
+mod confocal;
 mod conic;
 mod ellipse;
 mod family;
@@ -104,10 +105,13 @@ impl TorusLimits {
 
 /// Families of an integrable shape, one term for each of them and each repetition, sorted by length.
 ///
-/// The number of families grows as `max_length` x `max_bounces`.
+/// The number of families grows as `max_length` x `max_bounces`; a limit of length that is not finite gives none.
 #[must_use]
 pub fn terms(shape: &Integrable, limits: &TorusLimits) -> TorusSum {
     let mut sum = TorusSum::default();
+    if !limits.max_length.is_finite() {
+        return sum;
+    }
     match *shape {
         Integrable::Disk { radius, condition } => {
             circular::disk(radius, condition, limits, &mut sum);
@@ -140,7 +144,7 @@ pub fn terms(shape: &Integrable, limits: &TorusLimits) -> TorusSum {
             long,
             short,
             condition,
-        } => ellipse::Ellipse {
+        } => confocal::Ellipse {
             long,
             short,
             condition,

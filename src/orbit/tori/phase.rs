@@ -62,7 +62,8 @@ mod tests {
     fn one_wall_has_the_closed_form() {
         // eta = -(1 + (4/3) cot^2 theta)/(16 v k sin theta)
         for (v, theta) in [(2_u32, 1.3_f64), (3, 1.0), (7, 0.4)] {
-            let expected = -(1.0 + 4.0 / 3.0 / theta.tan().powi(2)) / (16.0 * f64::from(v) * theta.sin());
+            let expected =
+                -(1.0 + 4.0 / 3.0 / theta.tan().powi(2)) / (16.0 * f64::from(v) * theta.sin());
             let found = stationary_point(v, theta.cos(), theta.sin(), None);
             assert!((found / expected - 1.0).abs() < 1e-12, "{found} {expected}");
         }
