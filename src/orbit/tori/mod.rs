@@ -105,7 +105,7 @@ impl TorusLimits {
 
 /// Families of an integrable shape, one term for each of them and each repetition, sorted by length.
 ///
-/// The number of families grows as `max_length` x `max_bounces`; a limit of length that is not finite gives none.
+/// The number of families grows as `max_length` x `max_bounces` (over the opening, for a narrow sector); a limit of length that is not finite gives none.
 #[must_use]
 pub fn terms(shape: &Integrable, limits: &TorusLimits) -> TorusSum {
     let mut sum = TorusSum::default();
@@ -153,4 +153,78 @@ pub fn terms(shape: &Integrable, limits: &TorusLimits) -> TorusSum {
     }
     sum.sort();
     sum
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use proptest::prelude::*;
+
+    fn condition() -> impl Strategy<Value = Condition> {
+        prop_oneof![Just(Condition::Dirichlet), Just(Condition::Neumann)]
+    }
+
+    fn shape() -> impl Strategy<Value = Integrable> {
+        let numbers = (
+            0.1..10.0_f64,
+            0.0..1.0_f64,
+            condition(),
+            condition(),
+            condition(),
+        );
+        (0..4, numbers).prop_map(|(kind, (radius, fraction, a, b, c))| match kind {
+            0 => Integrable::Disk {
+                radius,
+                condition: a,
+            },
+            1 => Integrable::Annulus {
+                outer_radius: radius,
+                inner_radius: radius * (0.001 + 0.99 * fraction),
+                outer: a,
+                inner: b,
+            },
+            2 => Integrable::Sector {
+                radius,
+                opening: 0.05 + 6.2 * fraction,
+                arc: a,
+                radial: [b, c],
+            },
+            _ => Integrable::Ellipse {
+                long: radius,
+                short: radius * (0.02 + 0.979 * fraction),
+                condition: a,
+            },
+        })
+    }
+
+    proptest! {
+        #[test]
+        fn terms_are_finite_sorted_and_within_the_limits(shape in shape(), max_length in 0.1..40.0_f64, max_bounces in 0..60_u32) {
+            let limits = TorusLimits { max_length, max_bounces };
+            let sum = terms(&shape, &limits);
+            prop_assert_eq!(sum.terms.len(), sum.families.len());
+            for (family, term) in sum.families.iter().zip(&sum.terms) {
+                prop_assert!(term.coefficient.is_finite() && term.length > 0.0);
+                prop_assert!(term.length <= max_length * (1.0 + 1e-8) && family.bounces <= max_bounces);
+                prop_assert_eq!(family.bounces % family.repetition, 0);
+            }
+            prop_assert!(sum.families.is_sorted_by(|a, b| a.length <= b.length));
+            prop_assert!(sum.left_out.iter().all(|part| part.amplitude.is_finite()));
+        }
+    }
+
+    #[test]
+    fn a_limit_that_is_not_finite_gives_nothing() {
+        let shape = Integrable::Disk {
+            radius: 1.0,
+            condition: Condition::Neumann,
+        };
+        for max_length in [f64::NAN, f64::INFINITY, -1.0] {
+            assert!(
+                terms(&shape, &TorusLimits::up_to(max_length))
+                    .terms
+                    .is_empty()
+            );
+        }
+    }
 }
