@@ -17,3 +17,4 @@ pub use periodic::{Closure, Fixing, Orbit, OrbitKind, OrbitPoint};
 pub use search::Pass;
 pub use strip::{Strip, StripEdge};
 pub use terms::{ClassWeights, orbit_terms, strip_terms, terms};
+pub mod tori;

@@ -5,7 +5,11 @@
 //! * [`sum_on_grid`] sums them over a uniform grid, by a nonuniform fast Fourier transform where that is cheaper;
 //!   [`sum_at`] sums them directly at arbitrary points.
 
+mod direct;
+mod fast;
 mod low_k;
+mod nufft;
+mod plan;
 mod series;
 mod smoothed;
 mod sum;

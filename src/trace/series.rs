@@ -57,8 +57,10 @@ impl Leading {
 pub(super) struct PowerSeries {
     /// The power p in front.
     pub(super) leading: Leading,
-    /// The c_n; the Gaussian's factor exp(-(s l)^2/2) is inside.
-    pub(super) coefficients: Vec<Complex64>,
+    /// c_0; the Gaussian's factor exp(-(s l)^2/2) is inside all of them.
+    pub(super) first: Complex64,
+    /// c_1, c_2, ...
+    pub(super) rest: Vec<Complex64>,
     /// The k at which the powers of 1/k are 1.
     pub(super) reference: f64,
     /// Smallest k for which the accuracy asked for holds; infinite where the series cannot reach it.
@@ -74,7 +76,8 @@ impl PowerSeries {
         match term.amplitude {
             Amplitude::Constant | Amplitude::CorrectedConstant { .. } => Self {
                 leading: Leading::Constant,
-                coefficients: vec![term.coefficient * gaussian(smoothing * term.length)],
+                first: term.coefficient * gaussian(smoothing * term.length),
+                rest: Vec::new(),
                 reference: 1.0,
                 valid_from: 0.0,
                 unsmoothed: term.coefficient.norm(),
@@ -138,14 +141,18 @@ impl PowerSeries {
             1.0
         };
         let mut scale = 1.0;
-        let scaled = coefficients.iter().take(omitted).map(|coefficient| {
-            let scaled = front * coefficient * scale;
-            scale /= reference;
-            scaled
-        });
+        let scaled = coefficients
+            .iter()
+            .take(omitted)
+            .skip(1)
+            .map(|coefficient| {
+                scale /= reference;
+                front * coefficient * scale
+            });
         Self {
             leading: Leading::SquareRoot,
-            coefficients: scaled.collect(),
+            first: front * coefficients[0],
+            rest: scaled.collect(),
             reference,
             valid_from,
             unsmoothed: front.norm(),
@@ -159,24 +166,50 @@ impl PowerSeries {
 
     /// The amplitude A(k) and its derivative.
     pub(super) fn amplitude(&self, k: f64) -> (Complex64, Complex64) {
-        if let [constant] = self.coefficients[..] {
-            return match self.leading {
-                Leading::Constant => (constant, Complex64::ZERO),
-                Leading::SquareRoot => (constant * k.sqrt(), constant * (0.5 / k.sqrt())),
-            };
+        if self.leading == Leading::Constant {
+            return (self.first, Complex64::ZERO);
         }
         let exponent = self.leading.exponent();
         let u = self.reference / k;
         let (mut sum, mut slope) = (Complex64::ZERO, Complex64::ZERO);
-        for (order, coefficient) in self.coefficients.iter().enumerate().rev() {
-            sum = sum * u + coefficient;
-            slope = slope * u + coefficient * (exponent - order as f64);
+        for (order, coefficient) in self.rest.iter().enumerate().rev() {
+            sum = (sum + coefficient) * u;
+            slope = (slope + coefficient * (exponent - (order + 1) as f64)) * u;
         }
-        let power = match self.leading {
-            Leading::Constant => 1.0,
-            Leading::SquareRoot => k.sqrt(),
-        };
-        (sum * power, slope * (power / k))
+        let power = k.powf(exponent);
+        (
+            (sum + self.first) * power,
+            (slope + self.first * exponent) * (power / k),
+        )
+    }
+
+    /// How many powers matter for k >= `from`: the others are below `tolerance` of the unsmoothed amplitude. 0 if none does.
+    pub(super) fn orders(&self, from: f64, tolerance: f64) -> usize {
+        let limit = tolerance * self.unsmoothed;
+        let u = self.reference / from;
+        let mut power = 1.0;
+        let mut orders = usize::from(self.first.norm() > limit);
+        for (order, coefficient) in self.rest.iter().enumerate() {
+            power *= u;
+            if coefficient.norm() * power > limit {
+                orders = order + 2;
+            }
+        }
+        orders
+    }
+
+    /// The first `orders` coefficients scaled to another reference.
+    pub(super) fn rescaled(&self, reference: f64, orders: usize) -> Vec<Complex64> {
+        let u = self.reference / reference;
+        let mut power = 1.0;
+        let rest = self.rest.iter().map(|coefficient| {
+            power *= u;
+            coefficient * power
+        });
+        std::iter::once(self.first)
+            .chain(rest)
+            .take(orders)
+            .collect()
     }
 }
 

@@ -1,9 +1,10 @@
 //! Terms convolved with a Gaussian, prepared once and evaluated anywhere.
 
 use num_complex::Complex64;
+use rayon::prelude::*;
 
 use super::low_k;
-use super::series::PowerSeries;
+use super::series::{Leading, PowerSeries};
 use super::term::{Amplitude, Term};
 
 /// Error of a smoothed term when it is evaluated at a point, relative to its unsmoothed amplitude.
@@ -39,16 +40,25 @@ pub struct SmoothedTerms {
 impl SmoothedTerms {
     /// Smooths `terms` with a Gaussian of standard deviation `smoothing` in k (0 leaves them as they are).
     pub fn new(terms: &[Term], smoothing: f64) -> Self {
-        let terms = terms
-            .iter()
-            .map(|term| SmoothedTerm::new(term, smoothing))
-            .collect();
-        Self { terms, smoothing }
+        Self::with_accuracy(terms, smoothing, POINT_ACCURACY)
     }
 
     /// Standard deviation of the Gaussian in k.
     pub fn smoothing(&self) -> f64 {
         self.smoothing
+    }
+
+    /// Smooths `terms`, each with an error below `accuracy` of its unsmoothed amplitude.
+    pub(super) fn with_accuracy(terms: &[Term], smoothing: f64, accuracy: f64) -> Self {
+        let accuracy = accuracy.max(POINT_ACCURACY);
+        let smoothed = |term: &Term| SmoothedTerm {
+            term: *term,
+            series: PowerSeries::new(term, smoothing, accuracy),
+        };
+        Self {
+            terms: terms.par_iter().map(smoothed).collect(),
+            smoothing,
+        }
     }
 
     /// The sum of all terms at k, added in their order.
@@ -71,19 +81,17 @@ pub(super) struct SmoothedTerm {
 }
 
 impl SmoothedTerm {
-    fn new(term: &Term, smoothing: f64) -> Self {
-        Self {
-            term: *term,
-            series: PowerSeries::new(term, smoothing, POINT_ACCURACY),
-        }
-    }
-
     /// Coefficient of 1/k in the phase.
     pub(super) fn slope(&self) -> f64 {
         match self.term.amplitude {
             Amplitude::Torus { slope } | Amplitude::CorrectedConstant { slope } => slope,
             Amplitude::Constant | Amplitude::Strip => 0.0,
         }
+    }
+
+    /// Whether the amplitude does not depend on k.
+    pub(super) fn is_plain_wave(&self) -> bool {
+        self.series.leading == Leading::Constant && self.slope() == 0.0
     }
 
     /// Staircase and density at k.

@@ -2,8 +2,10 @@
 
 use rayon::prelude::*;
 
+use super::plan::{self, Segment};
 use super::smoothed::{SmoothedTerms, Value};
 use super::term::Term;
+use super::{direct, fast};
 
 /// The points start, start + step, ..., `count` of them.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -37,13 +39,46 @@ pub struct OrbitSum {
     pub density: Vec<f64>,
 }
 
+/// The part of a sum that is being computed.
+pub(super) struct Target<'a> {
+    pub(super) staircase: &'a mut [f64],
+    pub(super) density: &'a mut [f64],
+}
+
+/// Part of the accuracy that the series of a term may use up; the fast transform needs the rest.
+const SERIES_SHARE: f64 = 0.1;
+
 /// Sums `terms`, smoothed with a Gaussian of standard deviation `smoothing` in k (may be 0), over a uniform grid.
 ///
 /// The error of the staircase is below `accuracy` times the sum of the terms' unsmoothed amplitudes, that of the density below
 /// `accuracy` times the sum of amplitude times length, plus the rounding of the phases k l in double precision.
 pub fn sum_on_grid(terms: &[Term], grid: &UniformGrid, smoothing: f64, accuracy: f64) -> OrbitSum {
-    let _ = accuracy;
-    sum_at(terms, &grid.points(), smoothing)
+    let smoothed = SmoothedTerms::with_accuracy(terms, smoothing, SERIES_SHARE * accuracy);
+    let mut sum = OrbitSum {
+        staircase: vec![0.0; grid.count],
+        density: vec![0.0; grid.count],
+    };
+    for segment in plan::segments(&smoothed, grid, accuracy) {
+        let Segment {
+            points,
+            direct,
+            fast,
+        } = segment;
+        let part = UniformGrid {
+            start: grid.point(points.start),
+            step: grid.step,
+            count: points.len(),
+        };
+        let mut target = Target {
+            staircase: &mut sum.staircase[points.clone()],
+            density: &mut sum.density[points],
+        };
+        direct::add(&smoothed, &direct, &part, &mut target);
+        for class in fast {
+            fast::add(&smoothed, &class, &part, accuracy, &mut target);
+        }
+    }
+    sum
 }
 
 /// Sums `terms`, smoothed with a Gaussian of standard deviation `smoothing` in k (may be 0), at arbitrary points, one by one.
