@@ -1,11 +1,13 @@
 //! Everything that contributes to the orbit sum of one domain, up to given limits.
 
 use super::analyse::Setting;
+use super::omission::{Omission, omissions};
 use super::periodic::Orbit;
 use super::phase::Comparison;
 use super::search::{Pass, curved_orbits, insert, sort};
 use super::strip::{Strip, flat_orbits};
-use crate::billiard::{Domain, Symmetry, Tracer};
+use super::tori::{self, Integrable, TorusLimits, TorusSum};
+use crate::billiard::{Domain, Symmetry, Tracer, Wall};
 
 /// How far orbits are looked for. Both bound the reduced orbit.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -25,6 +27,12 @@ pub struct Catalogue {
     pub orbits: Vec<Orbit>,
     /// Strips of parallel orbits, shortest first.
     pub strips: Vec<Strip>,
+    /// The integrable shape, if the domain is one whose tori are known; then the search for orbits is not needed.
+    pub integrable: Option<Integrable>,
+    /// Tori of the integrable shape with their terms (whole domain).
+    pub tori: TorusSum,
+    /// What the sum leaves out.
+    pub omissions: Vec<Omission>,
     /// What the passes of the search from curved walls did.
     pub passes: Vec<Pass>,
     /// What the passes of the search for strips and flat orbits did.
@@ -35,6 +43,27 @@ impl Catalogue {
     /// Finds all orbits and families up to the limits.
     #[must_use]
     pub fn find(domain: &Domain, symmetry: &Symmetry, limits: Limits) -> Self {
+        match tori::recognise(domain) {
+            Some(shape) => Self::of_tori(shape, limits),
+            None => Self::search(domain, symmetry, limits),
+        }
+    }
+
+    fn of_tori(shape: Integrable, limits: Limits) -> Self {
+        let tori = tori::terms(&shape, &limits.for_tori());
+        Self {
+            limits,
+            orbits: Vec::new(),
+            strips: Vec::new(),
+            integrable: Some(shape),
+            omissions: tori.left_out.iter().map(Omission::from).collect(),
+            tori,
+            passes: Vec::new(),
+            flat_passes: Vec::new(),
+        }
+    }
+
+    fn search(domain: &Domain, symmetry: &Symmetry, limits: Limits) -> Self {
         let tracer = Tracer::new(domain);
         let setting = Setting {
             domain,
@@ -52,10 +81,45 @@ impl Catalogue {
         sort(&mut orbits);
         Self {
             limits,
+            omissions: omissions(domain, &tracer, &orbits, &flat.strips, limits.max_bounces),
             orbits,
             strips: flat.strips,
+            integrable: None,
+            tori: TorusSum::default(),
             passes,
             flat_passes: flat.passes,
+        }
+    }
+}
+
+/// Bounces up to which isolated orbits are looked for unless the user says otherwise: whispering-gallery orbits with more
+/// have small terms of alternating phase, and the search grows with the number.
+const DEFAULT_BOUNCES: usize = 24;
+/// Bounces allowed per mean chord of the longest orbit: in polygons strips of many short chords count in full.
+const BOUNCES_PER_CHORD: f64 = 4.0;
+
+impl Limits {
+    /// Limits for all orbits up to a length, with a number of bounces that suits the domain.
+    #[must_use]
+    pub fn up_to(max_length: f64, domain: &Domain) -> Self {
+        let max_bounces = if tori::recognise(domain).is_some() {
+            tori::DEFAULT_MAX_BOUNCES as usize
+        } else if domain.walls.iter().all(Wall::is_straight) {
+            let mean_chord = std::f64::consts::PI * domain.area / domain.perimeter;
+            (BOUNCES_PER_CHORD * max_length / mean_chord).ceil() as usize
+        } else {
+            DEFAULT_BOUNCES
+        };
+        Self {
+            max_length,
+            max_bounces,
+        }
+    }
+
+    pub(crate) fn for_tori(self) -> TorusLimits {
+        TorusLimits {
+            max_length: self.max_length,
+            max_bounces: u32::try_from(self.max_bounces).unwrap_or(u32::MAX),
         }
     }
 }

@@ -5,6 +5,7 @@ mod catalogue;
 mod chain;
 mod cyclic;
 mod fan;
+mod omission;
 mod path;
 mod periodic;
 mod phase;
@@ -13,8 +14,9 @@ mod strip;
 mod terms;
 
 pub use catalogue::{Catalogue, Limits};
+pub use omission::{Omission, OmissionKind};
 pub use periodic::{Closure, Fixing, Orbit, OrbitKind, OrbitPoint};
 pub use search::Pass;
 pub use strip::{Strip, StripEdge};
-pub use terms::{ClassWeights, orbit_terms, strip_terms, terms};
+pub use terms::{ClassWeights, orbit_terms, strip_terms, terms, torus_classes_known};
 pub mod tori;

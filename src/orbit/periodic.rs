@@ -121,6 +121,16 @@ impl Orbit {
         self.bounces() * self.copies
     }
 
+    /// Largest repetition for which a joint orbit's term is known: all those with chain coefficients, or the first.
+    pub(crate) fn known_chain(&self) -> u32 {
+        match self.chain {
+            Some(c) => (1..)
+                .take_while(|&r| super::chain::chain_coefficient(r, c).is_some())
+                .count() as u32,
+            None => 1,
+        }
+    }
+
     /// Maslov index of the primitive orbit: negative eigenvalues plus two per Dirichlet bounce.
     #[must_use]
     pub fn index(&self) -> Option<usize> {

@@ -4,7 +4,8 @@ use super::catalogue::Catalogue;
 use super::chain::chain_coefficient;
 use super::periodic::{Closure, Fixing, Orbit};
 use super::strip::{Strip, StripEdge};
-use crate::billiard::{Irrep, Symmetry};
+use super::tori::Integrable;
+use crate::billiard::{Condition, Irrep, Symmetry};
 use crate::trace::{Amplitude, Term};
 use num_complex::Complex64;
 use std::f64::consts::{FRAC_PI_2, PI};
@@ -33,6 +34,10 @@ impl<'a> ClassWeights<'a> {
         Self { symmetry, weights }
     }
 
+    fn is_class(&self) -> bool {
+        self.symmetry.order() > 1 && self.weights[0] < self.symmetry.order() as f64
+    }
+
     fn power(&self, element: usize, exponent: u32) -> usize {
         (0..exponent).fold(0, |product, _| self.symmetry.product[element][product])
     }
@@ -58,6 +63,7 @@ pub fn terms(catalogue: &Catalogue, weights: &ClassWeights) -> Vec<Term> {
         .orbits
         .iter()
         .flat_map(|orbit| orbit_terms(orbit, weights));
+    let tori = torus_terms(catalogue, weights);
     let strips = catalogue
         .strips
         .iter()
@@ -66,6 +72,39 @@ pub fn terms(catalogue: &Catalogue, weights: &ClassWeights) -> Vec<Term> {
         .chain(strips)
         .filter(|term| term.coefficient.norm() > 0.0)
         .collect()
+}
+
+/// Terms of the tori of an integrable shape. The odd and even class of a sector under reflection in its bisector are sectors
+/// of half the opening with a Dirichlet or Neumann wall there; for other classes see [`torus_classes_known`].
+fn torus_terms(catalogue: &Catalogue, weights: &ClassWeights) -> Vec<Term> {
+    match catalogue.integrable {
+        Some(Integrable::Sector {
+            radius,
+            opening,
+            arc,
+            radial,
+        }) if weights.is_class() => {
+            let axis = if weights.weights[1] < 0.0 {
+                Condition::Dirichlet
+            } else {
+                Condition::Neumann
+            };
+            let half = Integrable::Sector {
+                radius,
+                opening: 0.5 * opening,
+                arc,
+                radial: [radial[0], axis],
+            };
+            super::tori::terms(&half, &catalogue.limits.for_tori()).terms
+        }
+        _ => catalogue.tori.terms.clone(),
+    }
+}
+
+/// Are the terms of single symmetry classes known for this shape? For an ellipse and a ring with classes they are not.
+#[must_use]
+pub fn torus_classes_known(shape: &Integrable) -> bool {
+    matches!(shape, Integrable::Sector { .. })
 }
 
 /// Terms of one orbit, all repetitions.

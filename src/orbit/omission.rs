@@ -1,0 +1,260 @@
+//! What the orbit sum leaves out or describes badly, with estimates of the size.
+
+use super::periodic::Orbit;
+use super::strip::{Strip, StripEdge};
+use super::tori::{LeftOut, LeftOutKind};
+use crate::billiard::{Domain, Event, Origin, Ray, Tracer, VertexKind, incidence, left};
+use std::f64::consts::PI;
+use std::fmt;
+
+/// Why something is missing or poor.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub enum OmissionKind {
+    /// Waves diffract at corners whose angle is not pi/n (cusps and free tips of thin walls among them).
+    Corners,
+    /// Edges of strips that end at a corner that diffracts.
+    StripCorners,
+    /// Edges of strips that graze a curved wall.
+    StripGrazing,
+    /// Orbits with bounces at joints where only the leading rule of one half for each side is known.
+    Joints,
+    /// Orbits next to a bifurcation, whose isolated terms are too large.
+    Bifurcations,
+    /// Orbits with more bounces than the search looked for.
+    Bounces,
+    /// Families of an integrable shape.
+    Tori(LeftOutKind),
+}
+
+impl fmt::Display for OmissionKind {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        f.write_str(match self {
+            Self::Corners => "orbits that diffract at corners",
+            Self::StripCorners => "diffraction at the edges of strips",
+            Self::StripGrazing => "strips whose edge grazes a wall",
+            Self::Joints => "repetitions of orbits through joints",
+            Self::Bifurcations => "orbits near a bifurcation (their terms are too large)",
+            Self::Bounces | Self::Tori(LeftOutKind::ManyBounces { .. }) => {
+                "orbits with more bounces than the limit"
+            }
+            Self::Tori(LeftOutKind::Grazing) => "tori that graze the inner circle",
+            Self::Tori(LeftOutKind::CenterNearTorus) => "tori that pass the corner closely",
+            Self::Tori(LeftOutKind::NearBifurcation) => "axis orbits near a bifurcation",
+        })
+    }
+}
+
+/// An estimate of what the sum leaves out: amplitude x k^power levels at the given length.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Omission {
+    /// Reason.
+    pub kind: OmissionKind,
+    /// How many such contributions there are up to the limits (corners, edges, closures, families).
+    pub count: usize,
+    /// Length of the shortest of them, at which it would show in a length spectrum.
+    pub length: f64,
+    /// Amplitude of the largest of them, in levels at k = 1.
+    pub amplitude: f64,
+    /// Power of k.
+    pub power: f64,
+}
+
+impl Omission {
+    /// Estimated amplitude in the staircase, in levels, at wave number k under Gaussian smoothing of standard deviation s
+    /// in k. An order of magnitude.
+    #[must_use]
+    pub fn size_at(&self, k: f64, s: f64) -> f64 {
+        self.amplitude * k.powf(self.power) * (-0.5 * (s * self.length).powi(2)).exp()
+    }
+
+    /// One kind's omissions as one: the shortest length and the largest amplitude.
+    fn of(kind: OmissionKind, power: f64, items: impl Iterator<Item = (f64, f64)>) -> Option<Self> {
+        let mut joined: Option<Self> = None;
+        for (length, amplitude) in items {
+            let entry = joined.get_or_insert(Self {
+                kind,
+                count: 0,
+                length,
+                amplitude,
+                power,
+            });
+            entry.count += 1;
+            entry.length = entry.length.min(length);
+            entry.amplitude = entry.amplitude.max(amplitude);
+        }
+        joined
+    }
+}
+
+impl From<&LeftOut> for Omission {
+    fn from(left_out: &LeftOut) -> Self {
+        Self {
+            kind: OmissionKind::Tori(left_out.kind),
+            count: 1,
+            length: left_out.length,
+            amplitude: left_out.amplitude,
+            power: left_out.power,
+        }
+    }
+}
+
+/// A determinant below this makes a term larger than 0.6/r levels: the orbit is close to a bifurcation and leading order is
+/// not to be trusted.
+const NEAR_BIFURCATION: f64 = 0.25;
+/// Orbits with at least this part of the allowed bounces stand for those with more.
+const MANY_BOUNCES: f64 = 0.9;
+
+/// What the sum over these orbits and strips leaves out.
+pub(crate) fn omissions(
+    domain: &Domain,
+    tracer: &Tracer,
+    orbits: &[Orbit],
+    strips: &[Strip],
+    max_bounces: usize,
+) -> Vec<Omission> {
+    let edges = |wanted: StripEdge| {
+        strips
+            .iter()
+            .filter(move |strip| strip.edges.contains(&wanted))
+            .map(|strip| strip.length)
+    };
+    [
+        Omission::of(OmissionKind::Corners, -0.5, corners(domain, tracer)),
+        // The edge of a shadow is blurred over a width of about sqrt(L/k), which is this much of a level of
+        // (w/2 pi) k J1(k L).
+        Omission::of(
+            OmissionKind::StripCorners,
+            0.0,
+            edges(StripEdge::Corner).map(|length| (length, (2.0 / PI).sqrt() / (2.0 * PI))),
+        ),
+        // The penumbra of a wall of radius R is about R (k R)^(-2/3) wide; R is taken as the size of the domain.
+        Omission::of(
+            OmissionKind::StripGrazing,
+            -1.0 / 6.0,
+            edges(StripEdge::Grazing).map(|length| {
+                (
+                    length,
+                    domain.size.cbrt() * (2.0 / (PI * length)).sqrt() / (2.0 * PI),
+                )
+            }),
+        ),
+        Omission::of(OmissionKind::Joints, 0.0, joints(orbits)),
+        Omission::of(OmissionKind::Bifurcations, 0.0, bifurcations(orbits)),
+        Omission::of(
+            OmissionKind::Bounces,
+            0.0,
+            many_bounces(orbits, max_bounces),
+        ),
+    ]
+    .into_iter()
+    .flatten()
+    .collect()
+}
+
+fn amplitudes(orbit: &Orbit) -> impl Iterator<Item = (f64, f64, f64)> {
+    orbit.closures.iter().map(|closure| {
+        let r = f64::from(closure.repetition);
+        let share =
+            orbit.weight * f64::from(orbit.partner) / (PI * r * orbit.fixed_by.len() as f64);
+        (
+            r * orbit.length,
+            closure.determinant,
+            share / closure.determinant.sqrt(),
+        )
+    })
+}
+
+fn bifurcations(orbits: &[Orbit]) -> impl Iterator<Item = (f64, f64)> {
+    orbits
+        .iter()
+        .filter(|orbit| orbit.chain.is_none())
+        .flat_map(amplitudes)
+        .filter(|(_, determinant, _)| *determinant < NEAR_BIFURCATION)
+        .map(|(length, _, amplitude)| (length, amplitude))
+}
+
+/// Second and later repetitions of orbits through joints: the half rule is right for one hit of one joint only.
+fn joints(orbits: &[Orbit]) -> impl Iterator<Item = (f64, f64)> {
+    orbits
+        .iter()
+        .filter(|orbit| orbit.kind == super::periodic::OrbitKind::Joint)
+        .flat_map(|orbit| {
+            let known = orbit.known_chain();
+            orbit
+                .closures
+                .iter()
+                .zip(amplitudes(orbit))
+                .filter(move |(closure, _)| closure.repetition > known)
+                .map(|(_, (length, _, amplitude))| (length, amplitude))
+        })
+}
+
+/// The largest term among the orbits with nearly as many bounces as allowed: their series goes on with terms that are
+/// smaller still and alternate in phase.
+fn many_bounces(orbits: &[Orbit], max_bounces: usize) -> impl Iterator<Item = (f64, f64)> {
+    orbits
+        .iter()
+        .filter(move |orbit| orbit.bounces() as f64 >= MANY_BOUNCES * max_bounces as f64)
+        .flat_map(|orbit| amplitudes(orbit).take(1))
+        .map(|(length, _, amplitude)| (length, amplitude))
+}
+
+/// Directions into the wedge of a corner in which a way back is looked for.
+const DIRECTIONS: usize = 64;
+
+/// Length and amplitude at k = 1 of the shortest wave that leaves each diffracting corner and comes back to it.
+///
+/// An orbit that diffracts once adds about |D|/(pi sqrt(8 pi k l)) levels, l its length and D Keller's coefficient of the
+/// wedge (Keller, J. Opt. Soc. Am. 52, 1962; Vattay, Wirzba & Rosenqvist, Phys. Rev. Lett. 73, 1994, from memory), here
+/// along the bisector, where |D| = (4/N)/|sin(pi/N)| with N = angle/pi.
+fn corners<'a>(domain: &'a Domain, tracer: &'a Tracer) -> impl Iterator<Item = (f64, f64)> + 'a {
+    domain
+        .vertices
+        .iter()
+        .enumerate()
+        .filter(|(_, vertex)| vertex.kind == VertexKind::Corner)
+        .map(|(index, vertex)| {
+            let length = way_back(domain, tracer, index);
+            let n = vertex.angle / PI;
+            let strength = (4.0 / n) / (PI / n).sin().abs().max(LEAST_SINE);
+            (length, strength / (PI * (8.0 * PI * length).sqrt()))
+        })
+}
+
+/// Keller's coefficient diverges towards angles pi/n, where the geometric reflection takes over: it is cut off here.
+const LEAST_SINE: f64 = 0.3;
+
+/// Twice the shortest distance at which a ray from the corner meets a wall nearly at a right angle, or the mean distance if
+/// none does.
+fn way_back(domain: &Domain, tracer: &Tracer, index: usize) -> f64 {
+    let vertex = domain.vertices[index];
+    let first = domain.walls[vertex.after].frame(0.0).tangent;
+    let mut nearest = f64::INFINITY;
+    let mut total = 0.0;
+    let mut count = 0;
+    for i in 0..DIRECTIONS {
+        let angle = vertex.angle * (i as f64 + 0.5) / DIRECTIONS as f64;
+        let direction = first * angle.cos() + left(first) * angle.sin();
+        let ray = Ray {
+            point: vertex.point,
+            direction,
+            origin: Origin::Vertex(index),
+        };
+        if let Event::Wall(hit) = tracer.next(&ray) {
+            total += hit.distance;
+            count += 1;
+            if incidence(direction, &hit) > NEARLY_NORMAL {
+                nearest = nearest.min(hit.distance);
+            }
+        }
+    }
+    let mean = if count > 0 {
+        total / f64::from(count)
+    } else {
+        domain.size
+    };
+    2.0 * if nearest.is_finite() { nearest } else { mean }
+}
+
+/// Cosine of incidence above which a ray counts as coming back.
+const NEARLY_NORMAL: f64 = 0.99;
