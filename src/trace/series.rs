@@ -188,10 +188,10 @@ impl PowerSeries {
         let limit = tolerance * self.unsmoothed;
         let u = self.reference / from;
         let mut power = 1.0;
-        let mut orders = usize::from(self.first.norm() > limit);
+        let mut orders = usize::from(self.first.l1_norm() > limit);
         for (order, coefficient) in self.rest.iter().enumerate() {
             power *= u;
-            if coefficient.norm() * power > limit {
+            if coefficient.l1_norm() * power > limit {
                 orders = order + 2;
             }
         }

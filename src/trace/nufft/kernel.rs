@@ -2,6 +2,8 @@
 
 use std::f64::consts::{FRAC_PI_2, PI};
 
+use rayon::prelude::*;
+
 use crate::billiard::quadrature::integrate;
 
 /// Widest kernel in cells; enough for every accuracy and fine grid that [`Kernel::choose`] picks.
@@ -28,8 +30,6 @@ const CORRECTION_PIECES: usize = 64;
 pub(super) struct Kernel {
     /// Width in cells.
     pub(super) width: usize,
-    /// Cells of the fine grid per mode.
-    pub(super) upsampling: f64,
     beta: f64,
     /// Width rounded up to an even number: vector instructions take cells in pairs.
     pub(super) padded: usize,
@@ -46,7 +46,6 @@ impl Kernel {
         let padded = width + width % 2;
         let mut kernel = Self {
             width,
-            upsampling,
             beta,
             padded,
             polynomials: Vec::new(),
@@ -107,7 +106,7 @@ impl Kernel {
             let piece = (place as usize).min(CORRECTION_PIECES - 1);
             pieces[piece].value(2.0 * (place - piece as f64) - 1.0)
         };
-        (0..count).map(factor).collect()
+        (0..count).into_par_iter().map(factor).collect()
     }
 
     /// (w/2) int exp(beta (sqrt(1 - t^2) - 1)) cos(frequency t) dt over -1 <= t <= 1, with t = sin(theta).

@@ -8,9 +8,14 @@ use super::kernel::Kernel;
 /// Cells that one thread fills at a time: they fit into a core's own cache.
 const CHUNK: usize = 1 << 13;
 
-/// Where sources and their mirror images lie on the fine grid, sorted by cell.
+/// Cells that share a bucket when sources are sorted; a divisor of [`CHUNK`].
+const BUCKET: usize = 64;
+
+/// Where sources and their mirror images lie on the fine grid, sorted by bucket.
 pub(super) struct Places {
     places: Vec<Place>,
+    /// Number of places before each bucket, and the number of all of them.
+    starts: Vec<usize>,
     cells: usize,
 }
 
@@ -47,18 +52,22 @@ impl Places {
                 y: 2.0 * (cell - begin) - 1.0,
             }
         };
-        let sources = turns
-            .iter()
-            .enumerate()
-            .map(|(source, &x)| place(source, x, false));
-        let mirrors = turns
-            .iter()
-            .enumerate()
-            .rev()
-            .map(|(source, &x)| place(source, -x, true));
-        let mut places: Vec<Place> = sources.chain(mirrors).collect();
-        places.sort_by_key(|place| place.cell);
-        Self { places, cells }
+        let both = |source: usize| {
+            let turns = turns[source];
+            [place(source, turns, false), place(source, -turns, true)]
+        };
+        let unsorted: Vec<[Place; 2]> = (0..turns.len()).into_par_iter().map(both).collect();
+        let (places, starts) = sorted(unsorted.as_flattened(), cells.div_ceil(BUCKET));
+        Self {
+            places,
+            starts,
+            cells,
+        }
+    }
+
+    /// The places whose first cell lies in the buckets of the cells from..to.
+    fn between(&self, from: usize, to: usize) -> &[Place] {
+        &self.places[self.starts[from / BUCKET]..self.starts[to.div_ceil(BUCKET)]]
     }
 
     /// Fills the grid. Every cell adds up its sources in the order of their places, whatever the number of threads.
@@ -88,13 +97,9 @@ impl Places {
             .enumerate()
             .for_each(|(index, chunk)| {
                 let begin = index * CHUNK;
-                // Kernels that begin before the chunk reach into it, around the end of the period for the first one.
-                if begin < W {
-                    let from = self
-                        .places
-                        .partition_point(|place| (place.cell as usize) <= self.cells + begin - W);
-                    for place in &self.places[from..] {
-                        let offset = place.cell as isize - self.cells as isize - begin as isize;
+                let mut add_all = |places: &[Place], begin: isize| {
+                    for place in places {
+                        let offset = place.cell as isize - begin;
                         add::<W>(
                             chunk,
                             offset,
@@ -102,24 +107,37 @@ impl Places {
                             place.strength(strengths),
                         );
                     }
-                }
-                let from = self
-                    .places
-                    .partition_point(|place| (place.cell as usize) + W <= begin);
-                let to = self
-                    .places
-                    .partition_point(|place| (place.cell as usize) < begin + chunk.len());
-                for place in &self.places[from..to] {
-                    let offset = place.cell as isize - begin as isize;
-                    add::<W>(
-                        chunk,
-                        offset,
-                        &values(polynomials, place.y),
-                        place.strength(strengths),
+                };
+                // Kernels that begin before the chunk reach into it, around the end of the period for the first one.
+                if begin < W {
+                    add_all(
+                        self.between(self.cells - W, self.cells),
+                        self.cells as isize + begin as isize,
                     );
                 }
+                let end = (begin + CHUNK).min(self.cells);
+                add_all(self.between(begin.saturating_sub(W), end), begin as isize);
             });
     }
+}
+
+/// Sorts places by bucket, keeping their order within each; also gives the number of places before each bucket.
+fn sorted(places: &[Place], buckets: usize) -> (Vec<Place>, Vec<usize>) {
+    let mut starts = vec![0; buckets + 1];
+    for place in places {
+        starts[place.cell as usize / BUCKET + 1] += 1;
+    }
+    for bucket in 0..buckets {
+        starts[bucket + 1] += starts[bucket];
+    }
+    let mut next = starts.clone();
+    let mut sorted = places.to_vec();
+    for place in places {
+        let slot = &mut next[place.cell as usize / BUCKET];
+        sorted[*slot] = *place;
+        *slot += 1;
+    }
+    (sorted, starts)
 }
 
 impl Place {
