@@ -180,9 +180,9 @@ fn grids_from_zero() {
         staircase < 1e-10 && density < 1e-10,
         "{staircase:e} {density:e}"
     );
-    for index in 1..from {
+    for (index, k) in points[..from].iter().enumerate().skip(1) {
         let difference = (sum.staircase[index] - reference.staircase[index]).abs();
-        assert!(difference < 1e-9, "{difference:e} at {}", points[index]);
+        assert!(difference < 1e-9, "{difference:e} at {k}");
     }
 }
 
@@ -263,11 +263,11 @@ proptest! {
         let reference = sum_at(&terms, &points, smoothing);
         // In the mean over terms: a strip of length zero has no amplitude to compare with.
         let scale: f64 = terms.iter().map(|term| term.coefficient.norm()).sum::<f64>() * points[count - 1].max(1.0);
-        for index in 0..count {
+        for (index, k) in points.iter().enumerate() {
             let staircase = (sum.staircase[index] - reference.staircase[index]).abs();
             let density = (sum.density[index] - reference.density[index]).abs();
-            prop_assert!(staircase < accuracy * scale, "staircase {staircase:e} of {scale:e} at {}", points[index]);
-            prop_assert!(density < 60.0 * accuracy * scale, "density {density:e} of {scale:e} at {}", points[index]);
+            prop_assert!(staircase < accuracy * scale, "staircase {staircase:e} of {scale:e} at {}", k);
+            prop_assert!(density < 60.0 * accuracy * scale, "density {density:e} of {scale:e} at {}", k);
         }
     }
 

@@ -8,16 +8,13 @@ use num_complex::Complex64;
 use rayon::prelude::*;
 
 use super::nufft::{Strength, Transform};
-use super::plan::FastClass;
+use super::plan::{FastClass, TRANSFORM_SHARE};
 use super::series::Leading;
 use super::smoothed::{MAX_PHASE, SmoothedTerm, SmoothedTerms};
 use super::sum::{Target, UniformGrid};
 
 /// Points that one thread does at a time.
 const CHUNK: usize = 1 << 13;
-
-/// Part of the accuracy that one transform may use up: errors of the few powers of 1/k that matter add to it.
-const TRANSFORM_SHARE: f64 = 0.5;
 
 /// Adds the terms of one class at every point of the grid.
 pub(super) fn add(

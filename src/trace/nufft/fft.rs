@@ -50,11 +50,11 @@ pub(in crate::trace) struct Spectrum {
 }
 
 impl GridTransform {
-    /// A transform of at least `wanted` cells.
+    /// A transform of at least `wanted` cells, an even number.
     pub(super) fn new(wanted: usize) -> Self {
         let mut planner = FftPlanner::new();
         if wanted < SPLIT_FROM {
-            return Self::Whole(planner.plan_fft_inverse(smooth_number(wanted)));
+            return Self::Whole(planner.plan_fft_inverse(2 * smooth_number(wanted.div_ceil(2))));
         }
         // Both factors are multiples of LANES with small prime factors; among the pairs near a square, the smallest product.
         let root = (wanted as f64).sqrt() / LANES as f64;
@@ -171,8 +171,8 @@ fn transform_rows(
             }
             fft.process_with_scratch(&mut buffers.lines, &mut buffers.scratch);
             for (index, result) in result.chunks_exact_mut(LANES).enumerate() {
-                for lane in 0..LANES {
-                    result[lane] = buffers.lines[lane * columns + index];
+                for (lane, result) in result.iter_mut().enumerate() {
+                    *result = buffers.lines[lane * columns + index];
                 }
             }
         });

@@ -18,14 +18,14 @@ use spread::Places;
 pub(super) use spread::Strength;
 
 /// Smallest accuracy that the transform reaches: below it, rounding in the division by the kernel's transform dominates.
-pub(super) const BEST_ACCURACY: f64 = 1e-13;
+pub(super) const BEST_ACCURACY: f64 = 2e-13;
 
 /// Cells per mode to choose from: few cells make a short transform and wide kernels.
 const UPSAMPLINGS: [f64; 3] = [1.25, 1.5, 2.0];
 
 /// Measured cost in nanoseconds: of the transform per cell, of a source per square of its kernel's width.
 const CELL_COST: f64 = 40.0;
-const SOURCE_COST: f64 = 0.25;
+const SOURCE_COST: f64 = 0.3;
 
 /// A transform of fixed size, accuracy and places of the sources, for any number of sets of strengths.
 pub(super) struct Transform {
@@ -101,7 +101,7 @@ pub(super) fn cost(modes: usize, sources: usize, accuracy: f64) -> f64 {
 fn cheapest(modes: usize, sources: usize, accuracy: f64) -> (f64, f64) {
     let cost = |upsampling: f64| {
         let width = Kernel::width_for(upsampling, accuracy) as f64;
-        CELL_COST * upsampling * modes as f64 + 2.0 * SOURCE_COST * width * width * sources as f64
+        CELL_COST * upsampling * modes as f64 + SOURCE_COST * width * width * sources as f64
     };
     let usable = UPSAMPLINGS
         .into_iter()
@@ -123,7 +123,7 @@ mod tests {
         for upsampling in UPSAMPLINGS {
             for digits in 2..=13 {
                 let accuracy = 10.0_f64.powi(-digits);
-                if Kernel::width_for(upsampling, accuracy) > MAX_WIDTH {
+                if accuracy < BEST_ACCURACY || Kernel::width_for(upsampling, accuracy) > MAX_WIDTH {
                     continue;
                 }
                 for turns in [-0.5, -0.31, -1e-9, 0.0, 1e-3, 0.1234, 0.2501, 0.4999] {
