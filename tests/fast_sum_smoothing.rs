@@ -90,14 +90,14 @@ fn strips_are_bessel_functions() {
     }
 }
 
-/// Trapezoidal rule over nine standard deviations on both sides of the *unsmoothed* term.
-fn convolved(term: Term, smoothing: f64, k: f64) -> Value {
+/// Trapezoidal rule over nine standard deviations on both sides of a term that is smoothed by `inner` already.
+fn convolved(term: Term, inner: f64, smoothing: f64, k: f64) -> Value {
     const STEPS: i32 = 4000;
     let (mut sum, mut norm) = (Value::default(), 0.0);
     for step in -STEPS..=STEPS {
         let t = 9.0 * f64::from(step) / f64::from(STEPS);
         let weight = (-0.5 * t * t).exp();
-        let value = at(term, 0.0, k + smoothing * t);
+        let value = at(term, inner, k + smoothing * t);
         sum.staircase += weight * value.staircase;
         sum.density += weight * value.density;
         norm += weight;
@@ -126,7 +126,7 @@ fn smoothing_is_a_convolution() {
             // Strips take the real part of their coefficient, which is 1 here too.
             term.coefficient = Complex64::new(1.0, 0.7);
             let value = at(term, smoothing, k);
-            let expected = convolved(term, smoothing, k);
+            let expected = convolved(term, 0.0, smoothing, k);
             assert!(
                 (value.staircase - expected.staircase).abs() < 1e-12 * k,
                 "{amplitude:?} at {k}"
@@ -185,19 +185,27 @@ fn density_is_the_derivative_of_the_staircase() {
     }
 }
 
-/// Two Gaussians one after the other are one: s^2 = s1^2 + s2^2. Exact on constant amplitudes.
+/// Two Gaussians one after the other are one: s^2 = s1^2 + s2^2.
 #[test]
 fn widths_add_in_squares() {
-    let (first, second, length) = (0.3_f64, 0.4_f64, 3.0);
-    let once = at(term(Amplitude::Constant, length), first, 7.0).staircase;
-    let again = Term {
-        coefficient: Complex64::new(once, 0.0),
-        ..term(Amplitude::Constant, 0.0)
-    };
-    let factor = (-0.5 * (second * length).powi(2)).exp();
-    let twice = factor * at(again, 0.0, 7.0).staircase;
-    let together = at(term(Amplitude::Constant, length), first.hypot(second), 7.0).staircase;
-    assert!((twice - together).abs() < 1e-16);
+    let (first, second, length, k) = (0.3_f64, 0.4_f64, 3.0, 9.0);
+    for amplitude in [
+        Amplitude::Constant,
+        Amplitude::Torus { slope: 0.0 },
+        Amplitude::Strip,
+    ] {
+        let term = term(amplitude, length);
+        let twice = convolved(term, first, second, k);
+        let together = at(term, first.hypot(second), k);
+        assert!(
+            (twice.staircase - together.staircase).abs() < 1e-12,
+            "{amplitude:?}"
+        );
+        assert!(
+            (twice.density - together.density).abs() < 1e-11,
+            "{amplitude:?}"
+        );
+    }
 }
 
 #[test]
