@@ -16,5 +16,5 @@ mod sum;
 mod term;
 
 pub use smoothed::{SmoothedTerms, Value};
-pub use sum::{OrbitSum, UniformGrid, sum_at, sum_on_grid};
+pub use sum::{DEFAULT_ACCURACY, OrbitSum, UniformGrid, sum_at, sum_on_grid};
 pub use term::{Amplitude, Term};
