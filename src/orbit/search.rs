@@ -10,7 +10,7 @@ use super::fan::{Reach, Resolution, Source, Step, Track, shoot};
 use super::path::{Bounce, ClosedPath, Link, Workspace, refine};
 use super::periodic::Orbit;
 use super::phase::{Phase, phases};
-use crate::billiard::{Domain, Isometry, Mat2, Shape, Symmetry, Vec2, left};
+use crate::billiard::{Domain, Isometry, Mat2, Shape, Symmetry, Vec2, Wall, left};
 use rayon::prelude::*;
 
 /// What one pass of the search did.
@@ -27,28 +27,35 @@ pub struct Pass {
 }
 
 /// Sources on the curved walls in the first pass, for one symmetry copy.
-const FIRST_SOURCES: usize = 24;
+const FIRST_SOURCES: usize = 12;
 /// Rays of a fan before refinement.
 const FIRST_RAYS: usize = 40;
 /// Smallest angle between rays in the first pass, radians.
-const FIRST_GAP: f64 = 1e-3;
+const FIRST_GAP: f64 = 5e-5;
 /// Neighbouring rays may land this far apart, as a fraction of the size, before they are refined.
-const SPREAD: f64 = 0.1;
+const SPREAD: f64 = 0.15;
 /// Number of passes after which the search gives up on settling; what is still being added then is said in the output.
 const MOST_PASSES: usize = 6;
 /// Each pass has this many times the sources of the one before, and gaps smaller by the same factor.
-const REFINEMENT: f64 = 1.6;
-/// Passes without anything new after which the search is complete.
-const QUIET_PASSES: usize = 1;
+const REFINEMENT: f64 = 1.5;
 
-/// All orbits with a curved bounce up to the limits of `setting`, shortest first, and what the passes did.
-pub(crate) fn curved_orbits(setting: &Setting) -> (Vec<Orbit>, Vec<Pass>) {
-    let mut orbits: Vec<Orbit> = Vec::new();
-    let mut passes: Vec<Pass> = Vec::new();
-    if setting.domain.walls.iter().all(|wall| wall.is_straight()) {
-        return (orbits, passes);
+/// What the search from curved walls finds.
+#[derive(Default)]
+pub(crate) struct Curved {
+    /// Isolated orbits, shortest first.
+    pub(crate) orbits: Vec<Orbit>,
+    /// Families that are not isolated.
+    pub(crate) families: Vec<CurvedFamily>,
+    /// What the passes did.
+    pub(crate) passes: Vec<Pass>,
+}
+
+/// All orbits with a curved bounce up to the limits of `setting`.
+pub(crate) fn curved_orbits(setting: &Setting) -> Curved {
+    let mut all = Curved::default();
+    if setting.domain.walls.iter().all(Wall::is_straight) {
+        return all;
     }
-    let mut quiet = 0;
     for pass in 0..MOST_PASSES {
         let factor = REFINEMENT.powi(pass as i32);
         let resolution = Resolution {
@@ -62,30 +69,32 @@ pub(crate) fn curved_orbits(setting: &Setting) -> (Vec<Orbit>, Vec<Pass>) {
         });
         let found: Vec<Harvest> = sources
             .par_iter()
-            .map(|source| from_source(setting, source, &resolution, &orbits))
+            .map(|source| from_source(setting, source, &resolution, &all.orbits))
             .collect();
-        let before = orbits.len();
+        let before = all.orbits.len();
         let rays = found.iter().map(|harvest| harvest.rays).sum();
-        for orbit in found.into_iter().flat_map(|harvest| harvest.orbits) {
-            insert(setting, &mut orbits, orbit);
+        for harvest in found {
+            for orbit in harvest.orbits {
+                insert(setting, &mut all.orbits, orbit);
+            }
+            for family in harvest.families {
+                join_family(&mut all.families, family);
+            }
         }
-        passes.push(Pass {
+        let added = all.orbits.len() - before;
+        all.passes.push(Pass {
             sources: sources.len(),
             smallest_gap: resolution.smallest_gap,
             rays,
-            added: orbits.len() - before,
+            added,
         });
-        quiet = if pass > 0 && orbits.len() == before {
-            quiet + 1
-        } else {
-            0
-        };
-        if quiet >= QUIET_PASSES {
+        if pass > 0 && added == 0 {
             break;
         }
     }
-    sort(&mut orbits);
-    (orbits, passes)
+    sort(&mut all.orbits);
+    all.families.sort_by(|a, b| a.length.total_cmp(&b.length));
+    all
 }
 
 /// Shortest first; equal lengths by bounces and word, so that the order does not depend on rounding.
@@ -183,9 +192,33 @@ const FAR_SPACINGS: f64 = 4.0;
 /// The periodic direction may differ by this angle (radians).
 const FAR_ANGLE: f64 = 0.8;
 
+/// A family of orbits with bounces on curved walls, all of the same length (such as the two-bounce orbits of two facing arcs
+/// that pass through each other's centres). Its term is not in the sum.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct CurvedFamily {
+    /// Length of the reduced orbits.
+    pub length: f64,
+    /// Their bounces.
+    pub bounces: usize,
+}
+
+fn join_family(families: &mut Vec<CurvedFamily>, new: CurvedFamily) {
+    let same = |family: &CurvedFamily| {
+        family.bounces == new.bounces
+            && (family.length - new.length).abs() < SAME_FAMILY * new.length
+    };
+    if !families.iter().any(same) {
+        families.push(new);
+    }
+}
+
+/// Members of a family agree in length to the square of the error of their points.
+const SAME_FAMILY: f64 = 1e-6;
+
 /// What one source adds.
 struct Harvest {
     orbits: Vec<Orbit>,
+    families: Vec<CurvedFamily>,
     rays: usize,
 }
 
@@ -206,6 +239,7 @@ fn from_source(
         spread: resolution.spread,
         nearby: Nearby::new(setting.max_bounces),
         found: Vec::new(),
+        families: Vec::new(),
         space: Workspace::default(),
     };
     for orbit in known {
@@ -240,6 +274,7 @@ fn from_source(
     );
     Harvest {
         orbits: hunt.found,
+        families: hunt.families,
         rays,
     }
 }
@@ -251,6 +286,7 @@ struct Hunt<'a> {
     spread: f64,
     nearby: Nearby,
     found: Vec<Orbit>,
+    families: Vec<CurvedFamily>,
     space: Workspace,
 }
 
@@ -288,8 +324,18 @@ impl Hunt<'_> {
             return;
         }
         if let Some(orbit) = analyse::orbit(setting, &path, &self.space.form) {
-            self.nearby.add(setting, self.source, &orbit);
-            insert(setting, &mut self.found, orbit);
+            if orbit.is_marginal() {
+                join_family(
+                    &mut self.families,
+                    CurvedFamily {
+                        length: orbit.length,
+                        bounces: orbit.bounces(),
+                    },
+                );
+            } else {
+                self.nearby.add(setting, self.source, &orbit);
+                insert(setting, &mut self.found, orbit);
+            }
         }
     }
 }
