@@ -12,6 +12,7 @@ use super::periodic::Orbit;
 use super::phase::{Phase, phases};
 use crate::billiard::{Domain, Isometry, Mat2, Shape, Symmetry, Vec2, Wall, left};
 use rayon::prelude::*;
+use std::collections::{HashMap, HashSet};
 
 /// What one pass of the search did.
 #[derive(Clone, Copy, Debug)]
@@ -237,13 +238,14 @@ fn from_source(
         setting,
         source,
         spread: resolution.spread,
-        nearby: Nearby::new(setting.max_bounces),
+        nearby: Nearby::new(source),
         found: Vec::new(),
         families: Vec::new(),
+        tried: HashSet::new(),
         space: Workspace::default(),
     };
     for orbit in known {
-        hunt.nearby.add(setting, source, orbit);
+        hunt.nearby.add(setting, orbit);
     }
     let inverses: Vec<usize> = (0..setting.symmetry.order())
         .map(|g| setting.symmetry.inverse(g))
@@ -287,6 +289,7 @@ struct Hunt<'a> {
     nearby: Nearby,
     found: Vec<Orbit>,
     families: Vec<CurvedFamily>,
+    tried: HashSet<u64>,
     space: Workspace,
 }
 
@@ -302,8 +305,11 @@ impl Hunt<'_> {
         let direction = symmetry.turn(inverse, step.direction);
         let start = track.direction;
         let aside = left(start);
-        let angle = aside.dot(&direction).atan2(start.dot(&direction));
-        let mismatch = Vec2::new(aside.dot(&back), angle);
+        // The sine stands for the angle: exact where it matters, when the ray nearly closes.
+        let mismatch = Vec2::new(aside.dot(&back), aside.dot(&direction));
+        if start.dot(&direction) < 0.0 {
+            return None;
+        }
         let map = step.map * symmetry.elements[inverse].det();
         let shift = (Mat2::identity() - map).try_inverse()? * mismatch;
         let cosine = start.dot(&left(self.source.tangent)).max(LEAST_COSINE);
@@ -311,8 +317,24 @@ impl Hunt<'_> {
             .then_some(shift)
     }
 
+    /// The path in rough outline: the walls that it meets and the cells of its bounce points, hashed (FNV-1a).
+    fn outline(&self, track: &Track, last: usize, element: usize) -> u64 {
+        let mix = |hash: u64, value: u64| (hash ^ value).wrapping_mul(0x0100_0000_01b3);
+        let cell = OUTLINE_CELL * self.setting.domain.size;
+        track.steps[..=last].iter().fold(
+            mix(0xcbf2_9ce4_8422_2325, element as u64),
+            |hash, step| {
+                let place = (step.point / cell).map(|x| x.floor() as i64 as u64);
+                mix(mix(mix(hash, step.wall as u64), place.x), place.y)
+            },
+        )
+    }
+
     fn try_orbit(&mut self, track: &Track, last: usize, element: usize) {
         let setting = self.setting;
+        if !self.tried.insert(self.outline(track, last, element)) {
+            return;
+        }
         let mut path = closed_path(
             setting.domain,
             setting.symmetry,
@@ -333,39 +355,63 @@ impl Hunt<'_> {
                     },
                 );
             } else {
-                self.nearby.add(setting, self.source, &orbit);
+                self.nearby.add(setting, &orbit);
                 insert(setting, &mut self.found, orbit);
             }
         }
     }
 }
 
+/// Cells, as a fraction of the size, into which bounce points are sorted: paths whose points lie in the same cells lead
+/// Newton's method to the same orbit, since they differ by less than the steps it is allowed to take.
+const OUTLINE_CELL: f64 = 0.15;
+
 /// Cosine below which a grazing ray's window is not narrowed further.
 const LEAST_COSINE: f64 = 0.05;
 /// A known orbit explains a candidate if it lies within this fraction of the predicted shift from the predicted place.
 const EXPLAINS: f64 = 0.15;
 
-/// Phase points of known orbits near a source, by number of bounces.
+/// Phase points of known orbits near a source, sorted into cells by number of bounces, place along the wall and direction.
 struct Nearby {
-    points: Vec<Vec<Phase>>,
+    origin: Vec2,
+    tangent: Vec2,
+    /// Size of a cell: length along the wall, and component of the direction along the wall.
+    cell: [f64; 2],
+    window: f64,
+    cells: HashMap<[i32; 3], Vec<Phase>>,
 }
 
 impl Nearby {
-    fn new(max_bounces: usize) -> Self {
+    fn new(source: &Source) -> Self {
         Self {
-            points: vec![Vec::new(); max_bounces + 1],
+            origin: source.point,
+            tangent: source.tangent,
+            // No explained candidate lies further from its prediction than this.
+            cell: [
+                EXPLAINS * FAR_SPACINGS.hypot(FAR_ANGLE) * source.spacing.max(LEAST_CELL),
+                EXPLAINS * FAR_SPACINGS.hypot(FAR_ANGLE),
+            ],
+            window: 2.0 * FAR_SPACINGS * source.spacing,
+            cells: HashMap::new(),
         }
     }
 
-    fn add(&mut self, setting: &Setting, source: &Source, orbit: &Orbit) {
-        let window = 2.0 * FAR_SPACINGS * source.spacing;
+    fn cell(&self, bounces: usize, point: Vec2, direction: Vec2) -> [i32; 3] {
+        let place = self.tangent.dot(&(point - self.origin)) / self.cell[0];
+        let along = self.tangent.dot(&direction) / self.cell[1];
+        [bounces as i32, place.floor() as i32, along.floor() as i32]
+    }
+
+    fn add(&mut self, setting: &Setting, orbit: &Orbit) {
         let ahead = phases(&orbit.points);
         let back = setting.comparison.reversed(&orbit.points, orbit.symmetry);
         for (point, direction) in ahead.into_iter().chain(back) {
             for g in 0..setting.symmetry.order() {
                 let image = setting.symmetry.apply(g, point);
-                if (image - source.point).norm_squared() < window * window {
-                    self.points[orbit.bounces()].push((image, setting.symmetry.turn(g, direction)));
+                if (image - self.origin).norm_squared() < self.window * self.window {
+                    let turned = setting.symmetry.turn(g, direction);
+                    let cell = self.cell(orbit.bounces(), image, turned);
+                    self.cells.entry(cell).or_default().push((image, turned));
                 }
             }
         }
@@ -373,15 +419,32 @@ impl Nearby {
 
     /// Is there a known orbit with that many bounces where the shift points?
     fn explains(&self, track: &Track, bounces: usize, shift: Vec2) -> bool {
-        let aside = left(track.direction);
+        let start = track.direction;
+        let aside = left(start);
         let near = EXPLAINS * shift.norm() + SAME_LENGTH;
-        self.points[bounces].iter().any(|(point, direction)| {
-            let place = aside.dot(&(point - track.start)) - shift.x;
-            let angle = aside.dot(direction).atan2(track.direction.dot(direction)) - shift.y;
-            place * place + angle * angle < near * near
+        // The predicted point, moved along the ray onto the tangent of the wall.
+        let slant = aside.dot(&self.tangent);
+        let slant = slant.abs().max(LEAST_COSINE).copysign(slant);
+        let point = self.origin + self.tangent * (shift.x / slant);
+        let [n, place, along] = self.cell(bounces, point, start + aside * shift.y);
+        let explained = |phase: &Phase| {
+            let x = aside.dot(&(phase.0 - track.start)) - shift.x;
+            let y = aside.dot(&phase.1) - shift.y;
+            x * x + y * y < near * near && start.dot(&phase.1) > 0.0
+        };
+        (-1..=1).any(|i| {
+            (-1..=1).any(|j| {
+                self.cells
+                    .get(&[n, place + i, along + j])
+                    .is_some_and(|cell| cell.iter().any(explained))
+            })
         })
     }
 }
+
+/// Smallest size of a cell along the wall, as a part of the largest prediction: spacings are much below 1 only on short
+/// walls.
+const LEAST_CELL: f64 = 1e-3;
 
 /// The closed path that follows a ray from its source to a step near the source's image.
 fn closed_path(
