@@ -7,7 +7,7 @@
 
 use super::analyse::{self, Setting};
 use super::fan::{Reach, Resolution, Source, Step, Track, shoot};
-use super::path::{Bounce, ClosedPath, Link, Workspace, refine};
+use super::path::{Bounce, ClosedPath, LengthForm, Link, Workspace, refine};
 use super::periodic::Orbit;
 use super::phase::{Phase, phases};
 use crate::billiard::{Domain, Isometry, Mat2, Shape, Symmetry, Vec2, Wall, left};
@@ -345,6 +345,12 @@ impl Hunt<'_> {
         if refine(setting.domain, &mut path, &mut self.space).is_none() {
             return;
         }
+        if self
+            .nearby
+            .has(path.count(), first_phase(&path, &self.space.form))
+        {
+            return;
+        }
         if let Some(orbit) = analyse::orbit(setting, &path, &self.space.form) {
             if orbit.is_marginal() {
                 join_family(
@@ -364,7 +370,7 @@ impl Hunt<'_> {
 
 /// Cells, as a fraction of the size, into which bounce points are sorted: paths whose points lie in the same cells lead
 /// Newton's method to the same orbit, since they differ by less than the steps it is allowed to take.
-const OUTLINE_CELL: f64 = 0.15;
+const OUTLINE_CELL: f64 = 0.12;
 
 /// Cosine below which a grazing ray's window is not narrowed further.
 const LEAST_COSINE: f64 = 0.05;
@@ -417,6 +423,22 @@ impl Nearby {
         }
     }
 
+    /// Is this phase point on a known orbit with that many bounces?
+    fn has(&self, bounces: usize, (point, direction): Phase) -> bool {
+        let [n, place, along] = self.cell(bounces, point, direction);
+        let same = |phase: &Phase| {
+            (phase.0 - point).norm_squared() + (phase.1 - direction).norm_squared()
+                < SAME_PHASE * SAME_PHASE
+        };
+        (-1..=1).any(|i| {
+            (-1..=1).any(|j| {
+                self.cells
+                    .get(&[n, place + i, along + j])
+                    .is_some_and(|cell| cell.iter().any(same))
+            })
+        })
+    }
+
     /// Is there a known orbit with that many bounces where the shift points?
     fn explains(&self, track: &Track, bounces: usize, shift: Vec2) -> bool {
         let start = track.direction;
@@ -440,6 +462,17 @@ impl Nearby {
             })
         })
     }
+}
+
+/// Refined phase points closer than this are the same.
+const SAME_PHASE: f64 = 1e-7;
+
+/// Position and direction just after the first bounce of a refined path.
+fn first_phase(path: &ClosedPath, form: &LengthForm) -> Phase {
+    let next = usize::from(path.bounces.len() > 1);
+    let from = form.frames[0].point;
+    let to: Vec2 = path.links[0].unfold.apply(form.frames[next].point);
+    (from, (to - from) / form.chords[0])
 }
 
 /// Smallest size of a cell along the wall, as a part of the largest prediction: spacings are much below 1 only on short
