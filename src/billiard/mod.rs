@@ -6,8 +6,10 @@ mod crossings;
 mod curve_hit;
 mod detect;
 mod domain;
+mod dynamics;
 mod isometry;
 pub(crate) mod quadrature;
+mod start;
 mod symmetry;
 mod wall;
 
@@ -16,6 +18,7 @@ pub use crossings::Interior;
 pub use detect::{detect, is_rotationally_invariant};
 pub(crate) use domain::signed_area;
 pub use domain::{Domain, GeometryError, Role, Vertex, VertexKind, WallLoop};
+pub use dynamics::{Dynamics, KNOWN_TO, dynamics};
 pub use isometry::Isometry;
 pub use symmetry::{Element, Irrep, Symmetry, SymmetryError, check_declared};
 pub use wall::{Arc, Condition, Curve, Frame, Line, PlaneCurve, Shape, Wall};
