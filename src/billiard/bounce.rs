@@ -12,8 +12,14 @@ const BEHIND: f64 = 1e-11;
 /// Walls reach this much further than their ends (fraction of the size), so that no ray slips between two of them.
 const OVERLAP: f64 = 1e-12;
 
-/// A start this close to the end of its wall (fraction of the wall) lies on the next wall too.
-const SAME_POINT: f64 = 1e-9;
+/// A flight shorter than this multiple of a corner's reach starts in the corner: a longer one comes in from the corner's
+/// opening, to within the inverse of this number in angle.
+const IN_CORNER: f64 = 1e3;
+/// A flight that ends further outside a wall than this multiple of a corner's reach, from a start in the corner, missed it.
+const OUTSIDE: f64 = 4.0;
+/// A start this close to a smooth end of its wall (fraction of the wall) lies on the next wall too: rounding blurs on which
+/// side that wall passes a ray that grazes it.
+const SAME_POINT: f64 = 1e-7;
 
 /// Where a ray starts from.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -78,9 +84,9 @@ pub enum Event {
 /// The bounce map of a domain. Immutable; share it between threads.
 ///
 /// What is decided at the edges of the map:
-/// * A ray that passes a vertex within 1e-11 of the domain's size (or within the gap that the outline has there) runs into
-///   it. Corners are reported as [`Event::Corner`]; at smooth vertices and joints the ray is reflected by one of the walls,
-///   whose tangents agree there.
+/// * A ray that meets a wall within 1e-11 of the domain's size (or within the gap that the outline has) of a corner runs into
+///   the corner: [`Event::Corner`]. At smooth vertices and joints it is reflected by one of the walls, whose tangents agree
+///   there. A ray that starts in a corner is reflected by its walls in the ordinary way.
 /// * A ray that touches a dispersing wall without crossing it goes on. One that crosses it, however little, is reflected.
 /// * A ray that starts along a straight wall goes on along it to its end.
 /// * A ray that starts tangent to a focusing wall, or comes along a straight wall that goes over into one, has no next
@@ -99,6 +105,8 @@ pub struct Tracer {
     ends: Vec<(usize, usize)>,
     regular: Vec<Option<u32>>,
     bisectors: Vec<Vec2>,
+    /// Tangents of the walls before and after each vertex.
+    tangents: Vec<[Vec2; 2]>,
     extents: Vec<f64>,
     pub(super) slack: Slack,
     /// A hit this close to a corner is a hit of the corner.
@@ -112,8 +120,6 @@ struct Cap {
     /// Index of the wall that begins there.
     vertex: usize,
     point: Vec2,
-    /// Tangents of the walls before and after.
-    tangents: [Vec2; 2],
 }
 
 impl Tracer {
@@ -135,6 +141,7 @@ impl Tracer {
         let slack = Slack {
             behind: BEHIND * domain.size,
             overlap: (OVERLAP * domain.size).max(2.0 * gap),
+            size: domain.size,
         };
         let mut tracer = Self {
             straight: Vec::new(),
@@ -159,20 +166,23 @@ impl Tracer {
                 })
                 .collect(),
             bisectors: (0..walls.len()).map(|w| bisector(domain, w)).collect(),
+            tangents: (0..walls.len()).map(|w| tangents(domain, w)).collect(),
             extents: walls.iter().map(Wall::extent).collect(),
             slack,
             corner: (CORNER * domain.size).max(2.0 * gap),
             size: domain.size,
         };
         for (w, wall) in walls.iter().enumerate() {
+            let smooth = [!is_corner(w), !is_corner(domain.next(w))];
             match &wall.shape {
-                Shape::Line(line) => tracer.straight.push(StraightWall::new(w, line)),
-                Shape::Arc(arc) => tracer.arcs.push(ArcWall::new(w, arc, slack.overlap)),
+                Shape::Line(line) => {
+                    let straight = StraightWall::new(w, line, smooth, slack);
+                    tracer.straight.push(straight);
+                }
+                Shape::Arc(arc) => tracer.arcs.push(ArcWall::new(w, arc, smooth, slack)),
                 Shape::Curve(curve) => {
-                    let smooth = [!is_corner(w), !is_corner(domain.next(w))];
-                    tracer
-                        .curved
-                        .push(CurvedWall::new(w, curve, wall.extent(), smooth));
+                    let curved = CurvedWall::new(w, curve, wall.extent(), smooth);
+                    tracer.curved.push(curved);
                 }
             }
         }
@@ -223,6 +233,9 @@ impl Tracer {
                 return found;
             }
         }
+        if let Some(found) = self.meet_in_corner(ray, distance) {
+            return found;
+        }
         let hit = match nearest {
             Nearest::Nothing => return Event::Escaped,
             Nearest::Straight(wall) => wall.hit(ray, distance),
@@ -265,9 +278,11 @@ impl Tracer {
                 } else {
                     None
                 };
-                let across = if t > own_extent - slack && self.ends[own].1 == wall.wall {
+                let smooth = |end: usize| self.corners[own][end].is_none();
+                let across = if t > own_extent - slack && self.ends[own].1 == wall.wall && smooth(1)
+                {
                     Some(0.0)
-                } else if t < slack && self.ends[own].0 == wall.wall {
+                } else if t < slack && self.ends[own].0 == wall.wall && smooth(0) {
                     Some(wall.extent)
                 } else {
                     None
@@ -291,33 +306,66 @@ impl Tracer {
         if !passes {
             return None;
         }
-        let faces = cap
-            .tangents
-            .map(|tangent| cross(tangent, ray.direction) < 0.0);
+        let faces = self.tangents[cap.vertex].map(|tangent| cross(tangent, ray.direction) < 0.0);
         let (before, after) = (self.ends[cap.vertex].0, cap.vertex);
         let (wall, t) = match faces {
             [_, true] => (after, 0.0),
             [true, false] => (before, self.extents[before]),
             [false, false] => return None,
         };
-        let hit = self
-            .straight
-            .iter()
-            .find(|straight| straight.wall == wall)
+        Some(self.event(self.end_hit(ray, wall, t, along)?))
+    }
+
+    /// The hit of a wall at its end, t, after a flight of length `along`.
+    fn end_hit(&self, ray: &Ray, wall: usize, t: f64, along: f64) -> Option<Hit> {
+        let straight = self.straight.iter().find(|straight| straight.wall == wall);
+        let arc = self.arcs.iter().find(|arc| arc.wall == wall);
+        let curved = self.curved.iter().find(|curved| curved.wall == wall);
+        straight
             .map(|straight| straight.hit(ray, along))
-            .or_else(|| {
-                let arc = self.arcs.iter().find(|arc| arc.wall == wall)?;
-                Some(arc.hit(ray, along))
-            })
-            .or_else(|| {
-                let curved = self.curved.iter().find(|curved| curved.wall == wall)?;
-                Some(curved.hit(&curved.at(ray, t)))
-            })?;
-        Some(self.event(hit))
+            .or_else(|| arc.map(|arc| arc.hit(ray, along)))
+            .or_else(|| curved.map(|curved| curved.hit(&curved.at(ray, t))))
+    }
+
+    /// The hit of the other wall of the corner that the ray starts in, if it points out of the domain through that wall and
+    /// rounding made it miss it: what was found instead, at `distance`, lies outside.
+    fn meet_in_corner(&self, ray: &Ray, distance: f64) -> Option<Event> {
+        let Origin::Wall { wall: own, t } = ray.origin else {
+            return None;
+        };
+        let extent = self.extents[own];
+        let beside = SAME_POINT * extent;
+        let end = if t <= beside {
+            0
+        } else if t >= extent - beside {
+            1
+        } else {
+            return None;
+        };
+        let corner = self.corners[own][end]?;
+        if (corner - ray.point).norm_squared() >= self.corner * self.corner {
+            return None;
+        }
+        let (before, next) = self.ends[own];
+        let (other, t, vertex) = if end == 0 {
+            (before, self.extents[before], own)
+        } else {
+            (next, 0.0, next)
+        };
+        let tangents = self.tangents[vertex];
+        let out = -cross(tangents[end], ray.direction) * distance > OUTSIDE * self.corner;
+        let convex = cross(tangents[0], tangents[1]) > 0.0;
+        (out && convex)
+            .then(|| self.end_hit(ray, other, t, 0.0).map(Event::Wall))
+            .flatten()
     }
 
     #[inline]
     fn event(&self, hit: Hit) -> Event {
+        // A ray that starts in the corner does not run into it: its reflections there are ordinary ones.
+        if hit.distance <= IN_CORNER * self.corner {
+            return Event::Wall(hit);
+        }
         for (end, corner) in self.corners[hit.wall].iter().enumerate() {
             if corner.is_some_and(|corner| {
                 (corner - hit.point).norm_squared() < self.corner * self.corner
@@ -348,25 +396,33 @@ impl Tracer {
     }
 
     /// The ray that goes on after a corner, if the corner is one of angle pi/n that does not diffract, with the number of
-    /// reflections n: the group of the corner turns the direction round for even n and mirrors it in the corner's bisector
-    /// for odd n.
+    /// reflections: the group of the corner turns the direction round for even n and mirrors it in the corner's bisector
+    /// for odd n. A ray that comes in along one of the walls, so flat that its last reflection would lie far outside the
+    /// corner, is spared that reflection.
     #[must_use]
     pub fn pass_corner(&self, direction: Vec2, vertex: usize, point: Vec2) -> Option<(Ray, u32)> {
         let n = self.regular[vertex]?;
         let bisector = self.bisectors[vertex];
-        let direction = if n % 2 == 0 {
+        let mut direction = if n % 2 == 0 {
             -direction
         } else {
             direction - bisector * (2.0 * direction.dot(&bisector))
         };
-        Some((
-            Ray {
-                point,
-                direction,
-                origin: Origin::Vertex(vertex),
-            },
-            n,
-        ))
+        let mut reflections = n;
+        for tangent in self.tangents[vertex] {
+            let normal = left(tangent);
+            let outward = -direction.dot(&normal);
+            if outward > 0.0 {
+                direction += normal * (2.0 * outward);
+                reflections = n - 1;
+            }
+        }
+        let ray = Ray {
+            point,
+            direction,
+            origin: Origin::Vertex(vertex),
+        };
+        Some((ray, reflections))
     }
 }
 
@@ -386,25 +442,28 @@ impl Cap {
         (is_curve(before) || is_curve(after)).then(|| Self {
             vertex,
             point: domain.vertices[vertex].point,
-            tangents: [
-                before.frame(before.extent()).tangent,
-                after.frame(0.0).tangent,
-            ],
         })
     }
 }
 
 /// Unit vector along the bisector of the corner at the start of a wall, into the domain.
 fn bisector(domain: &Domain, vertex: usize) -> Vec2 {
-    let after = domain.walls[vertex].frame(0.0).tangent;
-    let wall = &domain.walls[domain.previous(vertex)];
-    let before = -wall.frame(wall.extent()).tangent;
-    let sum = after + before;
+    let [before, after] = tangents(domain, vertex);
+    let sum = after - before;
     if sum.norm() > 1e-9 {
         sum.normalize()
     } else {
         left(after)
     }
+}
+
+/// Tangents of the walls before and after a vertex.
+fn tangents(domain: &Domain, vertex: usize) -> [Vec2; 2] {
+    let before = &domain.walls[domain.previous(vertex)];
+    [
+        before.frame(before.extent()).tangent,
+        domain.walls[vertex].frame(0.0).tangent,
+    ]
 }
 
 /// Linearised free flight in (transverse displacement, transverse angle).

@@ -9,6 +9,7 @@ mod detect;
 mod domain;
 mod dynamics;
 mod isometry;
+mod lanes;
 mod obstacle;
 pub(crate) mod quadrature;
 mod start;
@@ -22,6 +23,7 @@ pub(crate) use domain::signed_area;
 pub use domain::{Domain, GeometryError, Role, Vertex, VertexKind, WallLoop};
 pub use dynamics::{Dynamics, KNOWN_TO, dynamics};
 pub use isometry::Isometry;
+pub use lanes::{Ending, Lanes, Rays};
 pub use symmetry::{Element, Irrep, Symmetry, SymmetryError, check_declared};
 pub use wall::{Arc, Condition, Curve, Frame, Line, PlaneCurve, Shape, Wall};
 

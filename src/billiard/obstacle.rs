@@ -9,13 +9,25 @@ pub(crate) struct StraightWall {
     pub(crate) start: Vec2,
     pub(crate) tangent: Vec2,
     pub(crate) length: f64,
+    /// How far the height over the wall is blurred by rounding, at ends where it goes over smoothly into another wall (0 at
+    /// others): a flat ray may seem to meet the wall beyond such an end where it meets it just before.
+    blur: [f64; 2],
 }
+
+/// Rounding of a height over a wall, in units of the domain's size.
+const ROUNDING: f64 = 8.0 * f64::EPSILON;
+/// A chord of a circle shorter than this fraction of its radius grazes: its ends are blurred by rounding.
+const GRAZING: f64 = 1e-6;
+/// The blur of the ends of such a chord, as an angle seen from the centre: the square root of the rounding, with room.
+const GRAZING_BLUR: f64 = 1e-7;
 
 /// How far behind its start a ray may meet a wall, and by how much walls reach beyond their ends.
 #[derive(Clone, Copy, Debug)]
 pub(crate) struct Slack {
     pub(crate) behind: f64,
     pub(crate) overlap: f64,
+    /// The domain's size.
+    pub(crate) size: f64,
 }
 
 /// A distance along a ray as a fraction, so that nothing is divided before the nearest wall is known.
@@ -28,7 +40,7 @@ pub(crate) struct Fraction {
 }
 
 impl StraightWall {
-    pub(crate) fn new(wall: usize, line: &Line) -> Self {
+    pub(crate) fn new(wall: usize, line: &Line, smooth_ends: [bool; 2], slack: Slack) -> Self {
         let span = line.end - line.start;
         let length = span.norm();
         Self {
@@ -36,6 +48,7 @@ impl StraightWall {
             start: line.start,
             tangent: span / length,
             length,
+            blur: smooth_ends.map(|smooth| if smooth { ROUNDING * slack.size } else { 0.0 }),
         }
     }
 
@@ -54,20 +67,23 @@ impl StraightWall {
             return None;
         }
         let along = self.tangent.dot(&away) * rate + self.tangent.dot(&ray.direction) * height;
-        let on_it = along >= -slack.overlap * rate && along <= (self.length + slack.overlap) * rate;
+        let over = slack.overlap * rate;
+        let on_it =
+            along >= -over - self.blur[0] && along <= self.length * rate + over + self.blur[1];
         on_it.then_some(Fraction { height, rate })
     }
 
     /// The hit at a distance along the ray.
     pub(crate) fn hit(&self, ray: &Ray, distance: f64) -> Hit {
         let along = ray.point - self.start + ray.direction * distance;
-        let t = self.tangent.dot(&along);
+        let t = self.tangent.dot(&along).clamp(0.0, self.length);
+        let point = self.start + self.tangent * t;
         Hit {
             wall: self.wall,
-            point: self.start + self.tangent * t,
+            point,
             tangent: self.tangent,
             curvature: 0.0,
-            distance: distance.max(0.0),
+            distance: ray.direction.dot(&(point - ray.point)).max(0.0),
             t,
         }
     }
@@ -86,18 +102,25 @@ pub(crate) struct ArcWall {
     pub(crate) half_sweep: f64,
     /// A point of the circle lies on the arc if its component along `middle` is at least this.
     pub(crate) reach: f64,
+    /// The same for rays that graze the circle: where the arc goes over smoothly into its neighbours, it ends in a blur.
+    grazing_reach: f64,
 }
 
 impl ArcWall {
-    pub(crate) fn new(wall: usize, arc: &Arc, overlap: f64) -> Self {
+    pub(crate) fn new(wall: usize, arc: &Arc, smooth_ends: [bool; 2], slack: Slack) -> Self {
         let half_sweep = 0.5 * arc.sweep.abs();
         let middle = arc.from + 0.5 * arc.sweep;
-        let slack = overlap / arc.radius;
-        let reach = if half_sweep + slack >= std::f64::consts::PI {
-            -2.0 * arc.radius
-        } else {
-            arc.radius * (half_sweep + slack).cos()
+        let reach = |margin: f64| {
+            if half_sweep + margin >= std::f64::consts::PI {
+                -2.0 * arc.radius
+            } else {
+                arc.radius * (half_sweep + margin).cos()
+            }
         };
+        let overlap = slack.overlap / arc.radius;
+        // Both ends or none, so that one comparison is enough: where only one end is smooth, the other is a corner, whose
+        // second wall hides the longer arc.
+        let smooth = arc.sweep > 0.0 && (smooth_ends[0] || smooth_ends[1]);
         Self {
             wall,
             center: arc.center,
@@ -105,7 +128,12 @@ impl ArcWall {
             turn: arc.sweep.signum(),
             middle: Vec2::new(middle.cos(), middle.sin()),
             half_sweep,
-            reach,
+            reach: reach(overlap),
+            grazing_reach: reach(if smooth {
+                overlap + GRAZING_BLUR
+            } else {
+                overlap
+            }),
         }
     }
 
@@ -118,12 +146,12 @@ impl ArcWall {
     pub(crate) fn meet(&self, ray: &Ray, own: bool, best: f64, slack: Slack) -> Option<f64> {
         let from_center = ray.point - self.center;
         let along = ray.direction.dot(&from_center);
-        let distance = if own {
+        let (distance, reach) = if own {
             // The other root is known exactly; a dispersing arc is never met again by a ray that leaves it.
             if self.turn < 0.0 {
                 return None;
             }
-            -2.0 * along
+            (-2.0 * along, self.reach)
         } else {
             let aside = cross(ray.direction, from_center).abs();
             let margin = self.radius - aside;
@@ -131,26 +159,38 @@ impl ArcWall {
                 return None;
             }
             let half_chord = (margin.max(0.0) * (self.radius + aside)).sqrt();
-            -along + self.turn * half_chord
+            // Only on the way into the arc: on the way out, the neighbour's own blur covers the joint.
+            let into = half_chord <= GRAZING * self.radius && ray.direction.dot(&self.middle) > 0.0;
+            let reach = if into { self.grazing_reach } else { self.reach };
+            (-along + self.turn * half_chord, reach)
         };
         if !(distance < best && distance > -slack.behind) {
             return None;
         }
         let at = from_center + ray.direction * distance;
-        (at.dot(&self.middle) >= self.reach).then_some(distance)
+        (at.dot(&self.middle) >= reach).then_some(distance)
     }
 
     /// The hit at a distance along the ray.
     pub(crate) fn hit(&self, ray: &Ray, distance: f64) -> Hit {
         let radial = (ray.point + ray.direction * distance - self.center).normalize();
         let angle = cross(self.middle, radial).atan2(self.middle.dot(&radial));
+        // Beyond its end (by the overlap, or the blur of a grazing ray) the arc is met at its end.
+        let inside = angle.clamp(-self.half_sweep, self.half_sweep);
+        let radial = if inside == angle {
+            radial
+        } else {
+            let (sin, cos) = inside.sin_cos();
+            self.middle * cos + left(self.middle) * sin
+        };
+        let point = self.center + radial * self.radius;
         Hit {
             wall: self.wall,
-            point: self.center + radial * self.radius,
+            point,
             tangent: left(radial) * self.turn,
             curvature: self.turn / self.radius,
-            distance: distance.max(0.0),
-            t: self.radius * (self.half_sweep + self.turn * angle),
+            distance: ray.direction.dot(&(point - ray.point)).max(0.0),
+            t: self.radius * (self.half_sweep + self.turn * inside),
         }
     }
 }
