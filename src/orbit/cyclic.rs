@@ -7,14 +7,15 @@ const SMALLEST_PIVOT: f64 = 1e-14;
 /// A symmetric matrix with entries on the diagonal, beside it, and in the two corners: `off[i]` couples i and i + 1, the
 /// last one couples the last index with 0. For one index the coupling counts twice on the diagonal, for two indices the two
 /// couplings add.
-#[derive(Clone, Debug)]
+#[derive(Clone, Debug, Default)]
 pub(crate) struct Cyclic {
     pub(crate) diagonal: Vec<f64>,
     pub(crate) off: Vec<f64>,
 }
 
 /// Elimination with the last index as border: pivots of the tridiagonal part, and the last pivot.
-struct Elimination {
+#[derive(Default)]
+pub(crate) struct Elimination {
     pivots: Vec<f64>,
     last: f64,
     border: Vec<f64>,
@@ -40,52 +41,42 @@ impl Cyclic {
             .fold(f64::MIN_POSITIVE, |largest, x| largest.max(x.abs()))
     }
 
-    /// Diagonal and couplings with the cases of one and two indices folded in.
-    fn border(&self) -> Vec<f64> {
-        let n = self.diagonal.len();
-        let mut border = vec![0.0; n - 1];
-        if n >= 2 {
-            border[0] += self.off[n - 1];
-            border[n - 2] += self.off[n - 2];
-        }
-        border
-    }
-
     fn last_diagonal(&self) -> f64 {
         let n = self.diagonal.len();
         let twice = if n == 1 { 2.0 * self.off[0] } else { 0.0 };
         self.diagonal[n - 1] + twice
     }
 
-    fn eliminate(&self) -> Elimination {
+    fn eliminate(&self, into: &mut Elimination) {
         let n = self.diagonal.len();
         let smallest = SMALLEST_PIVOT * self.scale();
-        let mut border = self.border();
-        let mut pivots = Vec::with_capacity(n - 1);
-        let mut last = self.last_diagonal();
+        into.pivots.clear();
+        into.border.clear();
+        into.border.resize(n - 1, 0.0);
+        if n >= 2 {
+            into.border[0] += self.off[n - 1];
+            into.border[n - 2] += self.off[n - 2];
+        }
+        into.last = self.last_diagonal();
         for i in 0..n - 1 {
             let mut pivot = self.diagonal[i];
             if i > 0 {
-                let factor = self.off[i - 1] / pivots[i - 1];
+                let factor = self.off[i - 1] / into.pivots[i - 1];
                 pivot -= factor * self.off[i - 1];
-                border[i] -= factor * border[i - 1];
+                into.border[i] -= factor * into.border[i - 1];
             }
             if pivot.abs() < smallest {
                 pivot = smallest;
             }
-            last -= border[i] * border[i] / pivot;
-            pivots.push(pivot);
-        }
-        Elimination {
-            pivots,
-            last,
-            border,
+            into.last -= into.border[i] * into.border[i] / pivot;
+            into.pivots.push(pivot);
         }
     }
 
     /// Number of negative eigenvalues (Sylvester's law of inertia).
     pub(crate) fn negative(&self) -> usize {
-        let elimination = self.eliminate();
+        let mut elimination = Elimination::default();
+        self.eliminate(&mut elimination);
         elimination
             .pivots
             .iter()
@@ -97,27 +88,35 @@ impl Cyclic {
     /// Determinant.
     #[cfg(test)]
     pub(crate) fn determinant(&self) -> f64 {
-        let elimination = self.eliminate();
+        let mut elimination = Elimination::default();
+        self.eliminate(&mut elimination);
         elimination.pivots.iter().product::<f64>() * elimination.last
     }
 
-    /// Solves matrix * x = right in O(n); `None` if the matrix is singular to rounding.
-    pub(crate) fn solve(&self, right: &[f64]) -> Option<Vec<f64>> {
+    /// Solves matrix * x = right in O(n), with `elimination` as memory; `None` if the matrix is singular to rounding.
+    pub(crate) fn solve(
+        &self,
+        right: &[f64],
+        elimination: &mut Elimination,
+        x: &mut Vec<f64>,
+    ) -> Option<()> {
         let n = right.len();
+        self.eliminate(elimination);
         let Elimination {
             pivots,
             last,
             border,
-        } = self.eliminate();
+        } = elimination;
         if last.abs() <= SMALLEST_PIVOT * self.scale() {
             return None;
         }
-        let mut x = right.to_vec();
+        x.clear();
+        x.extend_from_slice(right);
         for i in 1..n.saturating_sub(1) {
             x[i] -= self.off[i - 1] / pivots[i - 1] * x[i - 1];
         }
         let carried: f64 = (0..n - 1).map(|i| border[i] * x[i] / pivots[i]).sum();
-        x[n - 1] = (right[n - 1] - carried) / last;
+        x[n - 1] = (right[n - 1] - carried) / *last;
         for i in (0..n - 1).rev() {
             let next = if i + 1 < n - 1 {
                 self.off[i] * x[i + 1]
@@ -126,7 +125,7 @@ impl Cyclic {
             };
             x[i] = (x[i] - next - border[i] * x[n - 1]) / pivots[i];
         }
-        Some(x)
+        Some(())
     }
 }
 
@@ -164,7 +163,8 @@ mod tests {
             let determinant = full.determinant();
             prop_assert!((matrix.determinant() - determinant).abs() < 1e-8 * (1.0 + determinant.abs()));
             let n = entries.len();
-            let x = matrix.solve(&right[..n]).expect("not singular");
+            let mut x = Vec::new();
+            matrix.solve(&right[..n], &mut Elimination::default(), &mut x).expect("not singular");
             let back = full * nalgebra::DVector::from_vec(x);
             for i in 0..n {
                 prop_assert!((back[i] - right[i]).abs() < 1e-7);

@@ -19,7 +19,7 @@ pub(crate) struct Reach {
 pub(crate) struct Resolution {
     /// Rays before refinement.
     pub(crate) rays: usize,
-    /// Neighbours whose bounce points lie further apart than this are refined.
+    /// Neighbours whose bounce points lie further apart than this are refined; infinite: those that meet other walls.
     pub(crate) spread: f64,
     /// Neighbours closer than this angle (radians) are not refined further.
     pub(crate) smallest_gap: f64,
@@ -42,6 +42,7 @@ pub(crate) struct Step {
 /// A ray followed from a wall.
 #[derive(Clone, Debug)]
 pub(crate) struct Track {
+    pub(crate) start: Vec2,
     pub(crate) direction: Vec2,
     pub(crate) steps: Vec<Step>,
     /// The ray ran into a corner or along a wall before its limits.
@@ -88,6 +89,7 @@ pub(crate) fn follow_direction(
         },
     };
     let mut track = Track {
+        start: source.point,
         direction,
         steps: Vec::new(),
         stopped: false,
@@ -159,12 +161,16 @@ pub(crate) fn shoot(
     }
 }
 
+/// Do two neighbouring rays leave room for a third story between them? Bounce points that stay close, even on two walls
+/// that meet, do not: the return map is continuous between them.
 fn differ(a: &Track, b: &Track, spread: f64) -> bool {
-    let apart = a
-        .steps
-        .iter()
-        .zip(&b.steps)
-        .any(|(x, y)| x.wall != y.wall || (x.point - y.point).norm_squared() > spread * spread);
+    let apart = a.steps.iter().zip(&b.steps).any(|(x, y)| {
+        if spread.is_finite() {
+            (x.point - y.point).norm_squared() > spread * spread
+        } else {
+            x.wall != y.wall
+        }
+    });
     let cut_short =
         |short: &Track, long: &Track| short.stopped && short.steps.len() < long.steps.len();
     apart || cut_short(a, b) || cut_short(b, a)

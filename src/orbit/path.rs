@@ -5,7 +5,7 @@
 //! runs into a corner of angle pi/n between straight walls, since the reflections in either order give the same image. A
 //! straight bounce adds a positive direction to the full Hessian, so the number of negative eigenvalues is unchanged.
 
-use super::cyclic::Cyclic;
+use super::cyclic::{Cyclic, Elimination};
 use crate::billiard::{Domain, Frame, Isometry, Mat2, flight, reflection};
 
 /// A bounce on a curved wall.
@@ -34,7 +34,7 @@ pub(crate) struct ClosedPath {
 }
 
 /// Length of a closed path with its derivatives with respect to arc length at the bounces.
-#[derive(Clone, Debug)]
+#[derive(Clone, Debug, Default)]
 pub(crate) struct LengthForm {
     pub(crate) frames: Vec<Frame>,
     /// Unfolded chord lengths.
@@ -58,28 +58,16 @@ impl LengthForm {
 }
 
 impl ClosedPath {
-    /// Length, gradient and Hessian; `None` if two consecutive points coincide.
-    pub(crate) fn form(&self, domain: &Domain) -> Option<LengthForm> {
+    /// Writes length, gradient and Hessian into `form`; `None` if two consecutive points coincide.
+    fn evaluate(&self, domain: &Domain, form: &mut LengthForm) -> Option<()> {
         let n = self.bounces.len();
-        let frames: Vec<Frame> = self
-            .bounces
-            .iter()
-            .map(|bounce| domain.walls[bounce.wall].frame(bounce.t))
-            .collect();
-        let mut form = LengthForm {
-            chords: Vec::with_capacity(n),
-            cosines: vec![0.0; n],
-            gradient: vec![0.0; n],
-            hessian: Cyclic {
-                diagonal: vec![0.0; n],
-                off: vec![0.0; n],
-            },
-            frames,
-        };
-        for i in 0..n {
-            form.add_chord(i, (i + 1) % n, &self.links[i].unfold, domain.size)?;
-        }
-        Some(form)
+        form.clear(n);
+        form.frames.extend(
+            self.bounces
+                .iter()
+                .map(|bounce| domain.walls[bounce.wall].frame(bounce.t)),
+        );
+        (0..n).try_for_each(|i| form.add_chord(i, (i + 1) % n, &self.links[i].unfold, domain.size))
     }
 
     /// Number of bounces on all walls.
@@ -116,6 +104,21 @@ impl ClosedPath {
 const SHORTEST_CHORD: f64 = 1e-10;
 
 impl LengthForm {
+    /// Makes room for n bounces, all derivatives zero.
+    fn clear(&mut self, n: usize) {
+        self.frames.clear();
+        self.chords.clear();
+        for values in [
+            &mut self.cosines,
+            &mut self.gradient,
+            &mut self.hessian.diagonal,
+            &mut self.hessian.off,
+        ] {
+            values.clear();
+            values.resize(n, 0.0);
+        }
+    }
+
     /// Adds the chord from bounce i to the unfolded image of bounce j: l = |E q_j - q_i|, its first and second derivatives
     /// along the walls.
     fn add_chord(&mut self, i: usize, j: usize, unfold: &Isometry, size: f64) -> Option<()> {
@@ -153,26 +156,40 @@ const LONGEST_STEP: f64 = 0.12;
 /// A bounce point may leave its wall by this fraction of the wall during the iteration.
 const OVERSHOOT: f64 = 0.25;
 
-/// Newton's method on the length function; `None` if it does not converge to a path on the walls.
-pub(crate) fn refine(domain: &Domain, path: &mut ClosedPath) -> Option<LengthForm> {
+/// Memory that the refinement of one path after another uses again.
+#[derive(Default)]
+pub(crate) struct Workspace {
+    pub(crate) form: LengthForm,
+    step: Vec<f64>,
+    elimination: Elimination,
+}
+
+/// Newton's method on the length function; `None` if it does not converge to a path on the walls. The length form of the
+/// path found is left in the workspace.
+pub(crate) fn refine(domain: &Domain, path: &mut ClosedPath, space: &mut Workspace) -> Option<()> {
     let mut polished = false;
     for _ in 0..LARGEST_STEPS {
-        let form = path.form(domain)?;
+        path.evaluate(domain, &mut space.form)?;
+        let form = &space.form;
+        let residual = form.residual();
         // One more step after the residual is small takes it to rounding.
-        if form.residual() < LARGEST_RESIDUAL && polished {
-            return Some(form);
+        if residual < LARGEST_RESIDUAL && polished {
+            return Some(());
         }
-        polished = form.residual() < LARGEST_RESIDUAL;
-        let step = form.hessian.solve(&form.gradient)?;
-        let longest = step.iter().fold(0.0f64, |largest, s| largest.max(s.abs()));
+        polished = residual < LARGEST_RESIDUAL;
+        form.hessian
+            .solve(&form.gradient, &mut space.elimination, &mut space.step)?;
+        let longest = space
+            .step
+            .iter()
+            .fold(0.0f64, |largest, s| largest.max(s.abs()));
         if !longest.is_finite() {
             return None;
         }
         let damping = (LONGEST_STEP * domain.size / longest).min(1.0);
-        for (i, s) in step.iter().enumerate() {
+        for (i, s) in space.step.iter().enumerate() {
             let bounce = &mut path.bounces[i];
-            let wall = &domain.walls[bounce.wall];
-            let extent = wall.extent();
+            let extent = domain.walls[bounce.wall].extent();
             bounce.t -= damping * s / form.frames[i].speed;
             if domain.next(bounce.wall) == bounce.wall {
                 bounce.t = bounce.t.rem_euclid(extent);
@@ -181,6 +198,6 @@ pub(crate) fn refine(domain: &Domain, path: &mut ClosedPath) -> Option<LengthFor
             }
         }
     }
-    let form = path.form(domain)?;
-    (form.residual() < LARGEST_RESIDUAL).then_some(form)
+    path.evaluate(domain, &mut space.form)?;
+    (space.form.residual() < LARGEST_RESIDUAL).then_some(())
 }

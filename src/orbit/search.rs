@@ -7,7 +7,7 @@
 
 use super::analyse::{self, Setting};
 use super::fan::{Reach, Resolution, Source, Step, Track, shoot};
-use super::path::{Bounce, ClosedPath, Link, refine};
+use super::path::{Bounce, ClosedPath, Link, Workspace, refine};
 use super::periodic::Orbit;
 use super::phase::{Phase, phases};
 use crate::billiard::{Domain, Isometry, Mat2, Shape, Symmetry, Vec2, left};
@@ -60,13 +60,13 @@ pub(crate) fn curved_orbits(setting: &Setting) -> (Vec<Orbit>, Vec<Pass>) {
         let sources = sources(setting.domain, setting.symmetry, wanted, |wall| {
             !setting.domain.walls[wall].is_straight()
         });
-        let found: Vec<(Vec<Orbit>, usize)> = sources
+        let found: Vec<Harvest> = sources
             .par_iter()
-            .map(|source| from_source(setting, source, &resolution))
+            .map(|source| from_source(setting, source, &resolution, &orbits))
             .collect();
         let before = orbits.len();
-        let rays = found.iter().map(|(_, rays)| rays).sum();
-        for orbit in found.into_iter().flat_map(|(orbits, _)| orbits) {
+        let rays = found.iter().map(|harvest| harvest.rays).sum();
+        for orbit in found.into_iter().flat_map(|harvest| harvest.orbits) {
             insert(setting, &mut orbits, orbit);
         }
         passes.push(Pass {
@@ -179,21 +179,42 @@ fn is_chosen_copy(symmetry: &Symmetry, point: Vec2) -> bool {
 }
 
 /// The periodic point may lie this many source spacings away.
-const FAR_SPACINGS: f64 = 8.0;
+const FAR_SPACINGS: f64 = 4.0;
 /// The periodic direction may differ by this angle (radians).
-const FAR_ANGLE: f64 = 1.5;
+const FAR_ANGLE: f64 = 0.8;
 
-fn from_source(setting: &Setting, source: &Source, resolution: &Resolution) -> (Vec<Orbit>, usize) {
+/// What one source adds.
+struct Harvest {
+    orbits: Vec<Orbit>,
+    rays: usize,
+}
+
+fn from_source(
+    setting: &Setting,
+    source: &Source,
+    resolution: &Resolution,
+    known: &[Orbit],
+) -> Harvest {
     let reach = Reach {
         length: setting.max_length + resolution.spread,
         bounces: setting.max_bounces,
         straight_only: false,
     };
-    let mut found: Vec<Orbit> = Vec::new();
-    let mut rays = 0;
+    let mut hunt = Hunt {
+        setting,
+        source,
+        spread: resolution.spread,
+        nearby: Nearby::new(setting.max_bounces),
+        found: Vec::new(),
+        space: Workspace::default(),
+    };
+    for orbit in known {
+        hunt.nearby.add(setting, source, orbit);
+    }
     let inverses: Vec<usize> = (0..setting.symmetry.order())
         .map(|g| setting.symmetry.inverse(g))
         .collect();
+    let mut rays = 0;
     shoot(
         setting.domain,
         setting.tracer,
@@ -208,70 +229,111 @@ fn from_source(setting: &Setting, source: &Source, resolution: &Resolution) -> (
                     continue;
                 }
                 for (element, &inverse) in inverses.iter().enumerate() {
-                    if is_candidate(
-                        setting.symmetry,
-                        source,
-                        track,
-                        step,
-                        inverse,
-                        resolution.spread,
-                    ) {
-                        try_orbit(setting, source, track, n, element, &mut found);
+                    if let Some(shift) = hunt.shift(track, step, inverse)
+                        && !hunt.nearby.explains(track, n + 1, shift)
+                    {
+                        hunt.try_orbit(track, n, element);
                     }
                 }
             }
         },
     );
-    (found, rays)
-}
-
-/// Does the linearised return map put a periodic point near the source?
-fn is_candidate(
-    symmetry: &Symmetry,
-    source: &Source,
-    track: &Track,
-    step: &Step,
-    inverse: usize,
-    spread: f64,
-) -> bool {
-    let back = symmetry.apply(inverse, step.point) - source.point;
-    if back.norm_squared() > spread * spread {
-        return false;
+    Harvest {
+        orbits: hunt.found,
+        rays,
     }
-    let direction = symmetry.turn(inverse, step.direction);
-    let start = track.direction;
-    let aside = left(start);
-    let angle = aside.dot(&direction).atan2(start.dot(&direction));
-    let mismatch = Vec2::new(aside.dot(&back), angle);
-    let map = step.map * symmetry.elements[inverse].det();
-    let Some(solve) = (Mat2::identity() - map).try_inverse() else {
-        return false;
-    };
-    let shift = solve * mismatch;
-    let cosine = start.dot(&left(source.tangent));
-    shift.x.abs() < FAR_SPACINGS * source.spacing * cosine.max(0.05) && shift.y.abs() < FAR_ANGLE
 }
 
-fn try_orbit(
-    setting: &Setting,
-    source: &Source,
-    track: &Track,
-    last: usize,
-    element: usize,
-    found: &mut Vec<Orbit>,
-) {
-    let mut path = closed_path(
-        setting.domain,
-        setting.symmetry,
-        source,
-        &track.steps[..=last],
-        element,
-    );
-    let Some(form) = refine(setting.domain, &mut path) else {
-        return;
-    };
-    if let Some(orbit) = analyse::orbit(setting, &path, &form) {
-        insert(setting, found, orbit);
+/// The search from one source.
+struct Hunt<'a> {
+    setting: &'a Setting<'a>,
+    source: &'a Source,
+    spread: f64,
+    nearby: Nearby,
+    found: Vec<Orbit>,
+    space: Workspace,
+}
+
+impl Hunt<'_> {
+    /// Where the linearised return map puts the nearest periodic point, in (transverse displacement, angle) from the ray's
+    /// start; `None` if that is far away.
+    fn shift(&self, track: &Track, step: &Step, inverse: usize) -> Option<Vec2> {
+        let symmetry = self.setting.symmetry;
+        let back = symmetry.apply(inverse, step.point) - self.source.point;
+        if back.norm_squared() > self.spread * self.spread {
+            return None;
+        }
+        let direction = symmetry.turn(inverse, step.direction);
+        let start = track.direction;
+        let aside = left(start);
+        let angle = aside.dot(&direction).atan2(start.dot(&direction));
+        let mismatch = Vec2::new(aside.dot(&back), angle);
+        let map = step.map * symmetry.elements[inverse].det();
+        let shift = (Mat2::identity() - map).try_inverse()? * mismatch;
+        let cosine = start.dot(&left(self.source.tangent)).max(LEAST_COSINE);
+        (shift.x.abs() < FAR_SPACINGS * self.source.spacing * cosine && shift.y.abs() < FAR_ANGLE)
+            .then_some(shift)
+    }
+
+    fn try_orbit(&mut self, track: &Track, last: usize, element: usize) {
+        let setting = self.setting;
+        let mut path = closed_path(
+            setting.domain,
+            setting.symmetry,
+            self.source,
+            &track.steps[..=last],
+            element,
+        );
+        if refine(setting.domain, &mut path, &mut self.space).is_none() {
+            return;
+        }
+        if let Some(orbit) = analyse::orbit(setting, &path, &self.space.form) {
+            self.nearby.add(setting, self.source, &orbit);
+            insert(setting, &mut self.found, orbit);
+        }
+    }
+}
+
+/// Cosine below which a grazing ray's window is not narrowed further.
+const LEAST_COSINE: f64 = 0.05;
+/// A known orbit explains a candidate if it lies within this fraction of the predicted shift from the predicted place.
+const EXPLAINS: f64 = 0.15;
+
+/// Phase points of known orbits near a source, by number of bounces.
+struct Nearby {
+    points: Vec<Vec<Phase>>,
+}
+
+impl Nearby {
+    fn new(max_bounces: usize) -> Self {
+        Self {
+            points: vec![Vec::new(); max_bounces + 1],
+        }
+    }
+
+    fn add(&mut self, setting: &Setting, source: &Source, orbit: &Orbit) {
+        let window = 2.0 * FAR_SPACINGS * source.spacing;
+        let ahead = phases(&orbit.points);
+        let back = setting.comparison.reversed(&orbit.points, orbit.symmetry);
+        for (point, direction) in ahead.into_iter().chain(back) {
+            for g in 0..setting.symmetry.order() {
+                let image = setting.symmetry.apply(g, point);
+                if (image - source.point).norm_squared() < window * window {
+                    self.points[orbit.bounces()].push((image, setting.symmetry.turn(g, direction)));
+                }
+            }
+        }
+    }
+
+    /// Is there a known orbit with that many bounces where the shift points?
+    fn explains(&self, track: &Track, bounces: usize, shift: Vec2) -> bool {
+        let aside = left(track.direction);
+        let near = EXPLAINS * shift.norm() + SAME_LENGTH;
+        self.points[bounces].iter().any(|(point, direction)| {
+            let place = aside.dot(&(point - track.start)) - shift.x;
+            let angle = aside.dot(direction).atan2(track.direction.dot(direction)) - shift.y;
+            place * place + angle * angle < near * near
+        })
     }
 }
 

@@ -70,6 +70,7 @@ pub fn terms(catalogue: &Catalogue, weights: &ClassWeights) -> Vec<Term> {
         .flat_map(|strip| strip_terms(strip, weights, catalogue.limits.max_length));
     isolated
         .chain(strips)
+        .chain(tori)
         .filter(|term| term.coefficient.norm() > 0.0)
         .collect()
 }

@@ -8,16 +8,13 @@ use num_complex::Complex64;
 use rayon::prelude::*;
 
 use super::nufft::{Strength, Transform};
-use super::plan::FastClass;
+use super::plan::{FastClass, TRANSFORM_SHARE};
 use super::series::Leading;
 use super::smoothed::{MAX_PHASE, SmoothedTerm, SmoothedTerms};
 use super::sum::{Target, UniformGrid};
 
 /// Points that one thread does at a time.
 const CHUNK: usize = 1 << 13;
-
-/// Part of the accuracy that one transform may use up: errors of the few powers of 1/k that matter add to it.
-const TRANSFORM_SHARE: f64 = 0.5;
 
 /// Adds the terms of one class at every point of the grid.
 pub(super) fn add(
@@ -37,25 +34,26 @@ pub(super) fn add(
         .collect();
     let transform = Transform::new(&turns, grid.count, TRANSFORM_SHARE * accuracy);
     let orders = sources.iter().map(Source::orders).max().unwrap_or(0);
-    let mut part = vec![[0.0; 2]; if orders > 1 { grid.count } else { 0 }];
+    let mut part = vec![Complex64::ZERO; if orders > 1 { grid.count } else { 0 }];
+    let buffer = || vec![Complex64::ZERO; CHUNK];
     // Horner's rule in k_0/k; the last step goes straight into the target.
     for order in (0..orders).rev() {
         let packed = Packed::new(&sources, class.leading, order, grid.start);
-        let modes = transform.run(&packed.strengths);
-        let value = |index: usize| {
-            let mode = transform.mode(&modes, index);
-            [mode.re, mode.im / packed.scale]
-        };
+        let spectrum = transform.run(&packed.strengths);
+        let unpack = 1.0 / packed.scale;
         if order > 0 {
-            part.par_chunks_mut(CHUNK)
-                .enumerate()
-                .for_each(|(chunk, part)| {
-                    for (index, sum) in (chunk * CHUNK..).zip(part) {
-                        let u = grid.start / grid.point(index);
-                        let [staircase, density] = value(index);
-                        *sum = [(sum[0] + staircase) * u, (sum[1] + density) * u];
+            part.par_chunks_mut(CHUNK).enumerate().for_each_init(
+                buffer,
+                |buffer, (chunk, part)| {
+                    let begin = chunk * CHUNK;
+                    let modes = &mut buffer[..part.len()];
+                    transform.read(&spectrum, begin, modes);
+                    for (offset, (sum, mode)) in part.iter_mut().zip(modes).enumerate() {
+                        let u = grid.start / grid.point(begin + offset);
+                        *sum = (*sum + Complex64::new(mode.re, mode.im * unpack)) * u;
                     }
-                });
+                },
+            );
             continue;
         }
         let chunks = target
@@ -64,22 +62,32 @@ pub(super) fn add(
             .zip(target.density.par_chunks_mut(CHUNK));
         chunks
             .enumerate()
-            .for_each(|(chunk, (staircase, density))| {
+            .for_each_init(buffer, |buffer, (chunk, (staircase, density))| {
                 let begin = chunk * CHUNK;
-                for (offset, (staircase, density)) in staircase.iter_mut().zip(density).enumerate()
-                {
-                    let [mut staircase_part, mut density_part] = value(begin + offset);
-                    if let Some(sum) = part.get(begin + offset) {
-                        staircase_part += sum[0];
-                        density_part += sum[1];
-                    }
-                    let power = match class.leading {
-                        Leading::Constant => 1.0,
-                        Leading::SquareRoot => grid.point(begin + offset).sqrt(),
-                    };
-                    *staircase += power * staircase_part;
-                    *density += power * density_part;
+                let modes = &mut buffer[..staircase.len()];
+                transform.read(&spectrum, begin, modes);
+                modes.iter_mut().for_each(|mode| mode.im *= unpack);
+                if let Some(sums) = part.get(begin..) {
+                    modes
+                        .iter_mut()
+                        .zip(sums)
+                        .for_each(|(mode, sum)| *mode += sum);
                 }
+                if class.leading == Leading::SquareRoot {
+                    let powers = (begin..).map(|index| grid.point(index).sqrt());
+                    modes
+                        .iter_mut()
+                        .zip(powers)
+                        .for_each(|(mode, power)| *mode *= power);
+                }
+                staircase
+                    .iter_mut()
+                    .zip(&*modes)
+                    .for_each(|(sum, mode)| *sum += mode.re);
+                density
+                    .iter_mut()
+                    .zip(&*modes)
+                    .for_each(|(sum, mode)| *sum += mode.im);
             });
     }
 }
@@ -192,7 +200,7 @@ impl Packed {
             .map(|source| source.pair(order, leading, reference))
             .collect();
         let (staircase, density) = pairs.iter().fold((0.0, 0.0), |sum: (f64, f64), pair| {
-            (sum.0 + pair.0.norm(), sum.1 + pair.1.norm())
+            (sum.0 + pair.0.l1_norm(), sum.1 + pair.1.l1_norm())
         });
         let scale = if staircase > 0.0 && density > 0.0 {
             staircase / density

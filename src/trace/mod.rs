@@ -18,5 +18,5 @@ mod term;
 
 pub use fluctuation::{ClassDensity, Statistics, expected_fluctuation, mean_square};
 pub use smoothed::{SmoothedTerms, Value};
-pub use sum::{OrbitSum, UniformGrid, sum_at, sum_on_grid};
+pub use sum::{DEFAULT_ACCURACY, OrbitSum, UniformGrid, sum_at, sum_on_grid};
 pub use term::{Amplitude, Term};

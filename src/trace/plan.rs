@@ -25,6 +25,9 @@ const MIN_POINTS: usize = 128;
 /// Share of the accuracy below which an order of a series is left out.
 const ORDER_SHARE: f64 = 0.02;
 
+/// Part of the accuracy that one transform may use up. A source and its mirror image count twice in its own accuracy.
+pub(super) const TRANSFORM_SHARE: f64 = 0.5;
+
 /// A part of the grid and how its terms are summed there.
 pub(super) struct Segment {
     /// Numbers of the points.
@@ -147,7 +150,7 @@ impl Planner<'_> {
 
     /// Whether the series of a term describes it for from <= k <= to.
     fn can_be_transformed(&self, term: &SmoothedTerm, from: f64, to: f64) -> bool {
-        if self.accuracy < nufft::BEST_ACCURACY || !term.term.length.is_finite() {
+        if TRANSFORM_SHARE * self.accuracy < nufft::BEST_ACCURACY || !term.term.length.is_finite() {
             return false;
         }
         let slope = term.slope();
@@ -194,5 +197,5 @@ fn class_cost(class: &FastClass, points: usize, accuracy: f64) -> f64 {
         .map(|&(_, orders)| orders)
         .max()
         .unwrap_or(0);
-    transforms as f64 * nufft::cost(points, class.terms.len(), accuracy)
+    transforms as f64 * nufft::cost(points, class.terms.len(), TRANSFORM_SHARE * accuracy)
 }

@@ -18,6 +18,7 @@
 //! k at which that term does.
 
 use std::f64::consts::{FRAC_2_PI, PI};
+use std::sync::LazyLock;
 
 use num_complex::Complex64;
 
@@ -86,8 +87,8 @@ impl PowerSeries {
                 let gaussian = GaussianPowers::new(term.length, smoothing);
                 Self::truncated(
                     term.coefficient,
-                    gaussian.series(0),
-                    gaussian.bounds(0),
+                    gaussian.series(0).collect(),
+                    gaussian.bounds(0).collect(),
                     accuracy,
                 )
             }
@@ -102,7 +103,7 @@ impl PowerSeries {
         // i^j a_j(1) l^-j, j = 0, 1, ...
         let mut hankel = Complex64::ONE;
         for j in 0..=MAX_ORDER {
-            let orders = gaussian.series(j).into_iter().zip(gaussian.bounds(j));
+            let orders = gaussian.series(j).zip(gaussian.bounds(j));
             for (m, (coefficient, bound)) in orders.take(MAX_ORDER + 1 - j).enumerate() {
                 coefficients[j + m] += hankel * coefficient;
                 bounds[j + m] += hankel.norm() * bound;
@@ -188,10 +189,10 @@ impl PowerSeries {
         let limit = tolerance * self.unsmoothed;
         let u = self.reference / from;
         let mut power = 1.0;
-        let mut orders = usize::from(self.first.norm() > limit);
+        let mut orders = usize::from(self.first.l1_norm() > limit);
         for (order, coefficient) in self.rest.iter().enumerate() {
             power *= u;
-            if coefficient.norm() * power > limit {
+            if coefficient.l1_norm() * power > limit {
                 orders = order + 2;
             }
         }
@@ -246,47 +247,31 @@ impl GaussianPowers {
     }
 
     /// binom(1/2 - j, m) times the moments.
-    fn series(&self, j: usize) -> Vec<Complex64> {
+    fn series(&self, j: usize) -> impl Iterator<Item = Complex64> {
         self.moments
             .iter()
-            .zip(Binomials::new(j))
+            .zip(&BINOMIALS[j])
             .map(|(moment, binomial)| moment * binomial)
-            .collect()
     }
 
-    fn bounds(&self, j: usize) -> Vec<f64> {
+    fn bounds(&self, j: usize) -> impl Iterator<Item = f64> {
         self.bounds
             .iter()
-            .zip(Binomials::new(j))
+            .zip(&BINOMIALS[j])
             .map(|(bound, binomial)| bound * binomial.abs())
-            .collect()
     }
 }
 
-/// binom(1/2 - j, m) for m = 0, 1, ...
-struct Binomials {
-    exponent: f64,
-    m: f64,
-    value: f64,
-}
-
-impl Binomials {
-    fn new(j: usize) -> Self {
-        Self {
-            exponent: 0.5 - j as f64,
-            m: 0.0,
-            value: 1.0,
-        }
-    }
-}
-
-impl Iterator for Binomials {
-    type Item = f64;
-
-    fn next(&mut self) -> Option<f64> {
-        let value = self.value;
-        self.value *= (self.exponent - self.m) / (self.m + 1.0);
-        self.m += 1.0;
-        Some(value)
-    }
-}
+/// binom(1/2 - j, m), by j and m.
+static BINOMIALS: LazyLock<Vec<Vec<f64>>> = LazyLock::new(|| {
+    let row = |j: usize| {
+        let mut value = 1.0;
+        let next = |m: usize| {
+            let binomial = value;
+            value *= (0.5 - j as f64 - m as f64) / (m as f64 + 1.0);
+            binomial
+        };
+        (0..=MAX_ORDER).map(next).collect()
+    };
+    (0..=MAX_ORDER).map(row).collect()
+});

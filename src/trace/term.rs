@@ -36,6 +36,6 @@ pub enum Amplitude {
         /// Coefficient of 1/k in the phase.
         slope: f64,
     },
-    /// Flat strips: N(k) = Re[c] k J1(k l).
+    /// Flat strips: N(k) = Re(c) k J1(k l).
     Strip,
 }

@@ -2,7 +2,7 @@
 
 1e5 sources, 1e6 modes, accuracy 1e-10; prints the best and the median wall time of some runs in milliseconds.
 Run it beside the bench, on the same machine: `OMP_NUM_THREADS=1 python3 fast_sum_yardstick.py`.
-Pinned versions: finufft 2.4.1, numpy 2.4.6.
+Pinned versions: finufft 2.5.1, numpy 2.4.6.
 """
 
 import time

@@ -2,10 +2,19 @@
 
 use std::f64::consts::{FRAC_PI_2, PI};
 
+use rayon::prelude::*;
+
 use crate::billiard::quadrature::integrate;
 
-/// Widest kernel in cells; enough for every accuracy and fine grid that [`Kernel::choose`] picks.
-const MAX_WIDTH: usize = 20;
+/// Widest kernel in cells.
+pub(super) const MAX_WIDTH: usize = 20;
+
+/// Aliasing error of the kernel in units of exp(-pi (w - 1) sqrt(1 - 1/sigma)). Computed from the kernel's transform at the last
+/// mode for 1.25, 1.5 and 2 cells per mode and widths up to 16, it lies between 1.5 and 6.8.
+const ALIASING: f64 = 8.0;
+
+/// Share of the accuracy that the polynomials may use up.
+const POLYNOMIAL_SHARE: f64 = 0.1;
 
 /// beta is this fraction of the largest value for which the kernel's transform has decayed at the first aliased frequency
 /// (Barnett, Magland & af Klinteberg, section 4: best in practice, with the error at its smallest).
@@ -15,9 +24,8 @@ const BETA_FRACTION: f64 = 0.97;
 /// each of 8 panels give all digits.
 const PANELS: usize = 8;
 
-/// Polynomials per cell have the degree width + this: the error is then below that of the kernel itself (measured: 1e-14 at
-/// width 16, and less than a tenth of the kernel's at smaller widths).
-const EXTRA_DEGREE: usize = 3;
+/// Degree above the width at which the kernel's polynomials are exact to rounding; what is not needed of it is cut off.
+const EXTRA_DEGREE: usize = 6;
 
 /// Degree of the polynomials for the correction and their number; together exact to 1e-14 (the transform of a width of 20
 /// cells turns by 10 pi over the range).
@@ -28,8 +36,6 @@ const CORRECTION_PIECES: usize = 64;
 pub(super) struct Kernel {
     /// Width in cells.
     pub(super) width: usize,
-    /// Cells of the fine grid per mode.
-    pub(super) upsampling: f64,
     beta: f64,
     /// Width rounded up to an even number: vector instructions take cells in pairs.
     pub(super) padded: usize,
@@ -46,20 +52,20 @@ impl Kernel {
         let padded = width + width % 2;
         let mut kernel = Self {
             width,
-            upsampling,
             beta,
             padded,
             polynomials: Vec::new(),
         };
-        kernel.polynomials = kernel.tabulate();
+        // The division by the transform at the last mode enlarges errors of the kernel most.
+        let last = kernel.transform(0.5 * PI * width as f64 / upsampling);
+        kernel.polynomials = kernel.tabulate(POLYNOMIAL_SHARE * accuracy * last);
         kernel
     }
 
-    /// Width in cells that an accuracy needs: the error is about exp(-pi w sqrt(1 - 1/sigma)) (same paper, theorem 7), one
-    /// cell more makes up for its factor.
+    /// Width in cells that an accuracy needs (same paper, theorem 7, with the factor as computed).
     pub(super) fn width_for(upsampling: f64, accuracy: f64) -> usize {
         let rate = PI * (1.0 - 1.0 / upsampling).sqrt();
-        ((1.0 / accuracy).ln() / rate).ceil() as usize + 1
+        ((ALIASING / accuracy).ln() / rate).ceil() as usize + 1
     }
 
     fn value(&self, t: f64) -> f64 {
@@ -77,12 +83,27 @@ impl Kernel {
         self.value(2.0 * (cell as f64 + 0.5 * (y + 1.0)) / width - 1.0)
     }
 
-    fn tabulate(&self) -> Vec<f64> {
-        let degree = self.width + EXTRA_DEGREE;
+    /// The polynomials of all cells, with errors that add up to at most `tolerance`.
+    fn tabulate(&self, tolerance: f64) -> Vec<f64> {
+        let highest = self.width + EXTRA_DEGREE;
+        let series: Vec<Vec<f64>> = (0..self.width)
+            .map(|cell| chebyshev(highest, |y| self.value_in_cell(cell, y)))
+            .collect();
+        // Leaving out a Chebyshev polynomial costs at most its coefficient.
+        let cut = |order: usize| series.iter().map(|series| series[order].abs()).sum::<f64>();
+        let mut degree = highest;
+        let mut error = 0.0;
+        while degree > 1 && error + cut(degree) <= tolerance {
+            error += cut(degree);
+            degree -= 1;
+        }
         let mut table = vec![0.0; (degree + 1) * self.padded];
-        for cell in 0..self.width {
-            let polynomial = Polynomial::interpolate(degree, |y| self.value_in_cell(cell, y));
-            for (power, coefficient) in polynomial.coefficients.iter().enumerate() {
+        for (cell, series) in series.iter().enumerate() {
+            for (power, coefficient) in Polynomial::of(&series[..=degree])
+                .coefficients
+                .iter()
+                .enumerate()
+            {
                 table[(degree - power) * self.padded + cell] = *coefficient;
             }
         }
@@ -95,10 +116,11 @@ impl Kernel {
         let last = count.max(2) as f64 - 1.0;
         let pieces: Vec<Polynomial> = (0..CORRECTION_PIECES)
             .map(|piece| {
-                Polynomial::interpolate(CORRECTION_DEGREE, |y| {
+                let series = chebyshev(CORRECTION_DEGREE, |y| {
                     let mode = (piece as f64 + 0.5 * (y + 1.0)) * last / CORRECTION_PIECES as f64;
                     1.0 / self.transform(PI * self.width as f64 * mode / cells as f64)
-                })
+                });
+                Polynomial::of(&series)
             })
             .collect();
         let scale = CORRECTION_PIECES as f64 / last;
@@ -107,7 +129,7 @@ impl Kernel {
             let piece = (place as usize).min(CORRECTION_PIECES - 1);
             pieces[piece].value(2.0 * (place - piece as f64) - 1.0)
         };
-        (0..count).map(factor).collect()
+        (0..count).into_par_iter().map(factor).collect()
     }
 
     /// (w/2) int exp(beta (sqrt(1 - t^2) - 1)) cos(frequency t) dt over -1 <= t <= 1, with t = sin(theta).
@@ -120,6 +142,21 @@ impl Kernel {
     }
 }
 
+/// Coefficients of the Chebyshev polynomials up to `degree` in the interpolation of `value` at the Chebyshev points.
+fn chebyshev(degree: usize, value: impl Fn(f64) -> f64) -> Vec<f64> {
+    let count = degree + 1;
+    let angle = |index: usize| PI * (index as f64 + 0.5) / count as f64;
+    let values: Vec<f64> = (0..count).map(|index| value(angle(index).cos())).collect();
+    let coefficient = |order: usize| {
+        let terms = values
+            .iter()
+            .enumerate()
+            .map(|(index, value)| value * (order as f64 * angle(index)).cos());
+        terms.sum::<f64>() * if order == 0 { 1.0 } else { 2.0 } / count as f64
+    };
+    (0..count).map(coefficient).collect()
+}
+
 /// A polynomial on -1 <= y <= 1.
 struct Polynomial {
     /// Of y^0, y^1, ...
@@ -127,36 +164,28 @@ struct Polynomial {
 }
 
 impl Polynomial {
-    /// The polynomial that equals `value` at the Chebyshev points.
-    fn interpolate(degree: usize, value: impl Fn(f64) -> f64) -> Self {
-        let count = degree + 1;
-        let angle = |index: usize| PI * (index as f64 + 0.5) / count as f64;
-        let values: Vec<f64> = (0..count).map(|index| value(angle(index).cos())).collect();
+    /// A sum of Chebyshev polynomials in powers of y.
+    fn of(chebyshev: &[f64]) -> Self {
+        let count = chebyshev.len();
         let mut coefficients = vec![0.0; count];
         // T_n and T_(n-1) in powers of y
         let (mut current, mut previous) = (vec![0.0; count], vec![0.0; count]);
         current[0] = 1.0;
-        for order in 0..count {
-            let sum: f64 = values
-                .iter()
-                .enumerate()
-                .map(|(index, value)| value * (order as f64 * angle(index)).cos())
-                .sum();
-            let weight = sum * if order == 0 { 1.0 } else { 2.0 } / count as f64;
+        for (order, weight) in chebyshev.iter().enumerate() {
             for (coefficient, power) in coefficients.iter_mut().zip(&current) {
                 *coefficient += weight * power;
             }
             // T_(n+1) = 2 y T_n - T_(n-1), T_1 = y
             let factor = if order == 0 { 1.0 } else { 2.0 };
-            let next: Vec<f64> = (0..count)
-                .map(|power| {
-                    let shifted = if power == 0 {
-                        0.0
-                    } else {
-                        factor * current[power - 1]
-                    };
-                    shifted - previous[power]
-                })
+            let shifted = |power: usize| {
+                if power == 0 {
+                    0.0
+                } else {
+                    factor * current[power - 1]
+                }
+            };
+            let next = (0..count)
+                .map(|power| shifted(power) - previous[power])
                 .collect();
             previous = std::mem::replace(&mut current, next);
         }
