@@ -6,7 +6,8 @@ use super::note::Note;
 use super::subject::Subject;
 use super::text::{counted, significant};
 use super::value::{self, Window};
-use orbitsum::baseline::Weyl;
+use orbitsum::baseline::{Weyl, weyl};
+use orbitsum::billiard::Wall;
 use orbitsum::orbit::Limits;
 
 /// Levels between which the default window lies, by the smooth count: above the first few, where the semiclassical terms are
@@ -18,9 +19,9 @@ const DEFAULT_SMOOTHING: f64 = 2.0;
 pub(super) const ENOUGH: f64 = 3.0;
 /// Rounding of width x length that is no reason for a warning.
 const SLACK: f64 = 1e-6;
-/// Longest orbit that is looked for without being asked, in mean chords: numbers of orbits grow exponentially with this
-/// number, and so does the time of the search.
-const MOST_CHORDS: f64 = 11.0;
+/// Longest orbit that is looked for without being asked, in mean chords of one symmetry copy of the shape: the number of
+/// orbits grows exponentially with this number, and so does the time of the search, which is about a second here.
+const MOST_CHORDS: f64 = 9.0;
 /// Significant digits of numbers that are chosen here.
 const DIGITS: usize = 3;
 /// Largest number of bounces that can be asked for.
@@ -282,7 +283,21 @@ fn longest_default(subject: &Subject) -> f64 {
         // The number of families grows as a power of the length only.
         return f64::INFINITY;
     }
-    MOST_CHORDS * std::f64::consts::PI * domain.area / domain.perimeter
+    MOST_CHORDS * copy_chord(subject)
+}
+
+/// Mean chord of one symmetry copy of the domain, pi area/perimeter, with the pieces of axes that bound it: its measures
+/// are those in the smooth count of the class that is even under everything.
+fn copy_chord(subject: &Subject) -> f64 {
+    let even = &subject.symmetry.irreps[0];
+    let copy = weyl(&subject.system.domain, &subject.symmetry, Some(even));
+    let perimeter: f64 = copy
+        .terms
+        .iter()
+        .filter(|term| term.power == 1)
+        .map(|term| term.coefficient.abs())
+        .sum();
+    std::f64::consts::PI * copy.coefficient(2) / perimeter
 }
 
 /// From the tenth level to the 250th by the smooth count, or to the end of the list.
