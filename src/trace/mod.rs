@@ -7,6 +7,7 @@
 
 mod direct;
 mod fast;
+mod fluctuation;
 mod low_k;
 mod nufft;
 mod plan;
@@ -15,6 +16,7 @@ mod smoothed;
 mod sum;
 mod term;
 
+pub use fluctuation::{ClassDensity, Statistics, expected_fluctuation, mean_square};
 pub use smoothed::{SmoothedTerms, Value};
 pub use sum::{DEFAULT_ACCURACY, OrbitSum, UniformGrid, sum_at, sum_on_grid};
 pub use term::{Amplitude, Term};

@@ -1,0 +1,142 @@
+//! What was typed, not yet looked at.
+
+use clap::{Args, Parser, Subcommand, ValueEnum};
+use std::path::PathBuf;
+
+/// Level counts and level densities of billiards from their periodic orbits.
+///
+/// A system file describes the shape; `orbitsum show FILE` is a good start.
+#[derive(Debug, Parser)]
+#[command(
+    name = "orbitsum",
+    version,
+    max_term_width = 100,
+    arg_required_else_help = true
+)]
+pub(crate) struct Arguments {
+    #[command(subcommand)]
+    pub(crate) command: Command,
+    #[command(flatten)]
+    pub(crate) common: Common,
+}
+
+#[derive(Debug, Subcommand)]
+pub(crate) enum Command {
+    /// Show what a system file describes: measures, corners, symmetry, dynamics
+    Show(Show),
+    /// Count levels smoothly (Weyl), term by term, with the expected fluctuation
+    Weyl(Weyl),
+    /// List the periodic orbits up to a length and a number of bounces
+    Orbits(Orbits),
+    /// Predict density and staircase of levels, and compare them with a list
+    Density(Density),
+}
+
+/// Options of every command.
+#[derive(Debug, Args)]
+#[command(next_help_heading = "Options of every command")]
+pub(crate) struct Common {
+    /// Give a parameter of the system file another value (a number or a formula); may be repeated
+    #[arg(
+        long = "set",
+        value_name = "NAME=VALUE",
+        global = true,
+        allow_hyphen_values = true
+    )]
+    pub(crate) settings: Vec<String>,
+    /// Take the levels of one symmetry class only; `show` lists the classes
+    #[arg(long, value_name = "NAME", global = true)]
+    pub(crate) class: Option<String>,
+    /// Write tables and pictures into this folder
+    #[arg(long, value_name = "DIR", global = true)]
+    pub(crate) out: Option<PathBuf>,
+    /// What standard output gets
+    #[arg(long, value_enum, default_value_t = Format::Table, global = true)]
+    pub(crate) format: Format,
+    /// Number of threads [default: all cores]; results do not depend on it
+    #[arg(long, value_name = "N", global = true, allow_hyphen_values = true)]
+    pub(crate) threads: Option<String>,
+    /// No progress and no notes on standard error
+    #[arg(long, global = true)]
+    pub(crate) quiet: bool,
+}
+
+/// Form of standard output.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
+pub(crate) enum Format {
+    /// For people
+    Table,
+    /// All rows, comma-separated
+    Csv,
+    /// All rows with what they depend on
+    Json,
+}
+
+#[derive(Debug, Args)]
+pub(crate) struct Show {
+    /// System file
+    #[arg(value_name = "SYSTEM.toml")]
+    pub(crate) system: PathBuf,
+}
+
+#[derive(Debug, Args)]
+pub(crate) struct Weyl {
+    /// System file
+    #[arg(value_name = "SYSTEM.toml")]
+    pub(crate) system: PathBuf,
+    /// Where to count: a value in the unit of the file's levels, or several with commas; may be repeated
+    #[arg(long, value_name = "VALUE", allow_hyphen_values = true)]
+    pub(crate) at: Vec<String>,
+}
+
+/// How far orbits are looked for.
+#[derive(Debug, Args)]
+pub(crate) struct OrbitLimits {
+    /// Longest orbit (of the orbit reduced by symmetry), in the file's unit of length
+    #[arg(long, value_name = "LENGTH", allow_hyphen_values = true)]
+    pub(crate) max_length: Option<String>,
+    /// Largest number of bounces on walls (of the orbit reduced by symmetry)
+    #[arg(long, value_name = "N", allow_hyphen_values = true)]
+    pub(crate) max_bounces: Option<String>,
+}
+
+#[derive(Debug, Args)]
+pub(crate) struct Orbits {
+    /// System file
+    #[arg(value_name = "SYSTEM.toml")]
+    pub(crate) system: PathBuf,
+    #[command(flatten)]
+    pub(crate) limits: OrbitLimits,
+}
+
+#[derive(Debug, Args)]
+pub(crate) struct Density {
+    /// System file
+    #[arg(value_name = "SYSTEM.toml")]
+    pub(crate) system: PathBuf,
+    /// Window in k, for files whose levels are wave numbers
+    #[arg(long, value_name = "FROM:TO", allow_hyphen_values = true)]
+    pub(crate) k: Option<String>,
+    /// Window in energy, for files whose levels are energies
+    #[arg(long, value_name = "FROM:TO", allow_hyphen_values = true)]
+    pub(crate) energy: Option<String>,
+    /// Window in frequency, for files whose levels are frequencies
+    #[arg(long, value_name = "FROM:TO", allow_hyphen_values = true)]
+    pub(crate) frequency: Option<String>,
+    /// Standard deviation of the Gaussian in mean spacings at the middle of the window [default: 2]
+    #[arg(
+        long,
+        value_name = "S",
+        allow_hyphen_values = true,
+        conflicts_with = "smoothing_width"
+    )]
+    pub(crate) smoothing: Option<String>,
+    /// Standard deviation of the Gaussian in the unit of the file's levels
+    #[arg(long, value_name = "W", allow_hyphen_values = true)]
+    pub(crate) smoothing_width: Option<String>,
+    /// Levels to compare with: one a line, or csv with a column k, energy or frequency
+    #[arg(long, value_name = "FILE")]
+    pub(crate) levels: Option<PathBuf>,
+    #[command(flatten)]
+    pub(crate) limits: OrbitLimits,
+}

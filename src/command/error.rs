@@ -1,0 +1,154 @@
+//! Everything that ends a command early, with its message and exit code.
+
+use orbitsum::levels::ListError;
+use orbitsum::system::SystemError;
+use std::path::PathBuf;
+use std::process::ExitCode;
+use thiserror::Error;
+
+/// The computation failed.
+const FAILED: u8 = 1;
+/// The input or the call is wrong.
+const WRONG_INPUT: u8 = 2;
+
+/// Why a command did not answer.
+#[derive(Debug, Error)]
+pub(crate) enum CommandError {
+    /// The system file or a setting is wrong.
+    #[error("{}", .0.render())]
+    System(SystemError),
+    /// The level list is wrong.
+    #[error(transparent)]
+    Levels(#[from] ListError),
+    /// The list's column cannot be turned into the file's unit.
+    #[error(
+        "{}: the list has a column `{column}`, but the levels of the system file are {expected}: give a column \
+         `{expected}` or `k`", path.display()
+    )]
+    ListUnit {
+        path: PathBuf,
+        column: &'static str,
+        expected: &'static str,
+    },
+    /// An option's value is not a number.
+    #[error("--{option}: `{text}` is not a number")]
+    NotANumber { option: &'static str, text: String },
+    /// An option's value is infinite or not a number.
+    #[error("--{option}: `{text}` is not finite: give a finite number")]
+    NotFinite { option: &'static str, text: String },
+    /// An option's value must be positive.
+    #[error("--{option}: {value} is not positive: give a number above 0")]
+    NotPositive { option: &'static str, value: f64 },
+    /// An option's value is no whole number in its range.
+    #[error("--{option}: `{text}` is not a whole number from {least} to {most}")]
+    NotCount {
+        option: &'static str,
+        text: String,
+        least: usize,
+        most: usize,
+    },
+    /// A setting is not of the form NAME=VALUE.
+    #[error("--set: `{text}` is not of the form NAME=VALUE")]
+    Setting { text: String },
+    /// A window is not of the form FROM:TO.
+    #[error("--{option}: `{text}` is not of the form FROM:TO")]
+    WindowForm { option: &'static str, text: String },
+    /// A window begins where there are no levels.
+    #[error("--{option}: the window begins at {from}: it must begin above 0")]
+    WindowBegin { option: &'static str, from: f64 },
+    /// A window ends before it begins.
+    #[error("--{option}: the window {from}:{to} is reversed: the smaller value comes first")]
+    WindowReversed {
+        option: &'static str,
+        from: f64,
+        to: f64,
+    },
+    /// A window without extent.
+    #[error("--{option}: the window {at}:{at} is empty")]
+    WindowEmpty { option: &'static str, at: f64 },
+    /// Two windows.
+    #[error("--{first} and --{second} cannot be given together: give one window")]
+    TwoWindows {
+        first: &'static str,
+        second: &'static str,
+    },
+    /// A window in a variable that is not that of the file.
+    #[error(
+        "--{given}: the levels of this system file are given as {expected}{unit}: give the window with --{expected} FROM:TO"
+    )]
+    WindowUnit {
+        given: &'static str,
+        expected: &'static str,
+        /// Such as ` in GHz`.
+        unit: String,
+    },
+    /// A window that lies where the smooth count does not grow.
+    #[error(
+        "--{option}: the smooth count does not grow at {at}, the middle of the window: choose a window above the first \
+         level, which lies near {first}"
+    )]
+    BelowFirstLevel {
+        option: &'static str,
+        at: f64,
+        first: f64,
+    },
+    /// More points than make sense.
+    #[error(
+        "the window is {widths:.0} times as wide as the smoothing and would need {points:.0} points, more than {limit}: \
+         choose a narrower window or a larger smoothing"
+    )]
+    TooManyPoints {
+        widths: f64,
+        points: f64,
+        limit: usize,
+    },
+    /// A class that the symmetry group does not have.
+    #[error("--class: `{name}` is not a class of this shape: {known}")]
+    UnknownClass { name: String, known: String },
+    /// A class of a shape whose orbit sum has none.
+    #[error("--class: {reason}")]
+    ClassUnavailable { reason: &'static str },
+    /// The output folder cannot be made or written.
+    #[error("--out: cannot write into `{}`: {source}", path.display())]
+    Output {
+        path: PathBuf,
+        source: std::io::Error,
+    },
+    /// A file could not be written after all was computed.
+    #[error("cannot write `{}`: {source}", path.display())]
+    Write {
+        path: PathBuf,
+        source: std::io::Error,
+    },
+    /// Standard output does not take the result.
+    #[error("cannot write to standard output: {0}")]
+    StandardOutput(std::io::Error),
+    /// The threads could not be started.
+    #[error("cannot start {threads} threads: {reason}")]
+    Threads { threads: usize, reason: String },
+}
+
+impl CommandError {
+    /// The complete message.
+    pub(crate) fn message(&self) -> String {
+        match self {
+            // This one has its heading already.
+            Self::System(_) => self.to_string(),
+            _ => format!("error: {self}"),
+        }
+    }
+
+    /// 2 where the input or the call is wrong, 1 where the computation failed.
+    pub(crate) fn exit_code(&self) -> ExitCode {
+        ExitCode::from(match self {
+            Self::Write { .. } | Self::StandardOutput(_) | Self::Threads { .. } => FAILED,
+            _ => WRONG_INPUT,
+        })
+    }
+}
+
+impl From<SystemError> for CommandError {
+    fn from(error: SystemError) -> Self {
+        Self::System(error)
+    }
+}

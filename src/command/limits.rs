@@ -1,0 +1,472 @@
+//! Window, smoothing and orbit limits: what was asked for, and what is chosen where nothing was.
+
+use super::arguments::{Density, OrbitLimits};
+use super::error::CommandError;
+use super::note::Note;
+use super::subject::Subject;
+use super::text::{counted, significant};
+use super::value::{self, Window};
+use orbitsum::baseline::{Weyl, weyl};
+use orbitsum::billiard::Wall;
+use orbitsum::orbit::Limits;
+
+/// Levels between which the default window lies, by the smooth count: above the first few, where the semiclassical terms are
+/// rough, and short enough that a default is quick.
+const DEFAULT_LEVELS: (f64, f64) = (10.0, 250.0);
+/// Default smoothing in mean spacings: short orbits describe a staircase smoothed like this to a few hundredths of a level.
+const DEFAULT_SMOOTHING: f64 = 2.0;
+/// Smoothing width x longest orbit at which the shortest orbit that is left out counts exp(-9/2) = 0.011 of its term.
+pub(super) const ENOUGH: f64 = 3.0;
+/// Rounding of width x length that is no reason for a warning.
+const SLACK: f64 = 1e-6;
+/// Longest orbit that is looked for without being asked, in mean chords of one symmetry copy of the shape: the number of
+/// orbits grows exponentially with this number, and so does the time of the search, which is about a second here.
+const MOST_CHORDS: f64 = 9.0;
+/// Significant digits of numbers that are chosen here.
+const DIGITS: usize = 3;
+/// Largest number of bounces that can be asked for.
+const MOST_BOUNCES: usize = 10_000;
+
+/// What a density is computed for; k, lengths and widths without units.
+#[derive(Clone, Debug)]
+pub(super) struct Plan {
+    /// Window in the file's unit.
+    pub(super) window: Window,
+    /// Middle of the window in k.
+    pub(super) middle: f64,
+    /// Mean spacing there, in k.
+    pub(super) spacing: f64,
+    /// Standard deviation of the Gaussian in k.
+    pub(super) width: f64,
+    /// How far orbits are looked for.
+    pub(super) limits: Limits,
+    /// What was chosen and why, one line each: name and sentence.
+    pub(super) choices: Vec<(String, String)>,
+    /// What the user should know about it.
+    pub(super) notes: Vec<Note>,
+}
+
+/// Numbers that were asked for.
+#[derive(Clone, Copy, Debug, Default)]
+pub(super) struct Wishes {
+    window: Option<Window>,
+    /// In mean spacings.
+    smoothing: Option<f64>,
+    /// In the file's unit.
+    width: Option<f64>,
+    length: Option<f64>,
+    bounces: Option<usize>,
+}
+
+impl Wishes {
+    /// Numbers of the command `density`.
+    pub(super) fn of_density(typed: &Density, subject: &Subject) -> Result<Self, CommandError> {
+        let positive = |option, text: &Option<String>| {
+            text.as_deref()
+                .map(|text| value::positive(option, text))
+                .transpose()
+        };
+        Ok(Self {
+            window: window(typed, subject)?,
+            smoothing: positive("smoothing", &typed.smoothing)?,
+            width: positive("smoothing-width", &typed.smoothing_width)?,
+            ..Self::of_limits(&typed.limits)?
+        })
+    }
+
+    /// Numbers of the command `orbits`.
+    pub(super) fn of_limits(typed: &OrbitLimits) -> Result<Self, CommandError> {
+        Ok(Self {
+            length: typed
+                .max_length
+                .as_deref()
+                .map(|text| value::positive("max-length", text))
+                .transpose()?,
+            bounces: typed
+                .max_bounces
+                .as_deref()
+                .map(|text| value::count("max-bounces", text, MOST_BOUNCES))
+                .transpose()?,
+            ..Self::default()
+        })
+    }
+}
+
+/// The window in the variable of the file.
+fn window(typed: &Density, subject: &Subject) -> Result<Option<Window>, CommandError> {
+    let units = &subject.system.units;
+    let windows = [
+        ("k", &typed.k),
+        ("energy", &typed.energy),
+        ("frequency", &typed.frequency),
+    ];
+    let mut given = windows
+        .iter()
+        .filter_map(|(option, text)| text.as_deref().map(|text| (*option, text)));
+    let Some((option, text)) = given.next() else {
+        return Ok(None);
+    };
+    if let Some((second, _)) = given.next() {
+        return Err(CommandError::TwoWindows {
+            first: option,
+            second,
+        });
+    }
+    let expected = units.window_option();
+    if option != expected {
+        let label = units.level_label();
+        let unit = if label.is_empty() {
+            label
+        } else {
+            format!(" in {label}")
+        };
+        return Err(CommandError::WindowUnit {
+            given: option,
+            expected,
+            unit,
+        });
+    }
+    value::window(option, text).map(Some)
+}
+
+/// Chooses what was not asked for. `list_end` is the last level of a list (file's unit), if there is one.
+pub(super) fn plan(
+    subject: &Subject,
+    wishes: &Wishes,
+    list_end: Option<f64>,
+) -> Result<Plan, CommandError> {
+    let weyl = subject.weyl();
+    let mut choices = Vec::new();
+    let window = wishes.window.unwrap_or_else(|| {
+        let (window, why) = default_window(subject, &weyl, list_end);
+        choices.push(("window".to_owned(), why));
+        window
+    });
+    if wishes.window.is_some() {
+        choices.push((
+            "window".to_owned(),
+            format!("{} (as asked)", range(subject, window)),
+        ));
+    }
+    let units = &subject.system.units;
+    let middle = 0.5 * (units.k(window.from) + units.k(window.to));
+    let spacing = weyl.mean_spacing(middle);
+    if !spacing.is_finite() {
+        return Err(CommandError::BelowFirstLevel {
+            option: units.window_option(),
+            at: units.value(middle),
+            first: units.value(weyl.k_at_count(1.0)),
+        });
+    }
+    let mut plan = Plan {
+        window,
+        middle,
+        spacing,
+        width: 0.0,
+        limits: Limits {
+            max_length: 0.0,
+            max_bounces: 0,
+        },
+        choices,
+        notes: Vec::new(),
+    };
+    plan.choose_smoothing(subject, wishes);
+    plan.choose_bounces(subject, wishes);
+    plan.warn(subject);
+    Ok(plan)
+}
+
+impl Plan {
+    /// Width and longest orbit: each follows from the other where only one is given.
+    fn choose_smoothing(&mut self, subject: &Subject, wishes: &Wishes) {
+        let units = &subject.system.units;
+        let asked = match (wishes.smoothing, wishes.width) {
+            (Some(spacings), _) => Some(spacings * self.spacing),
+            (None, Some(width)) => Some(width * units.derivative(units.value(self.middle))),
+            (None, None) => None,
+        };
+        let wanted = asked.unwrap_or(DEFAULT_SMOOTHING * self.spacing);
+        let most = longest_default(subject);
+        let (length, why) = match wishes.length {
+            Some(length) => (length, "as asked".to_owned()),
+            None if ENOUGH / wanted > most => {
+                self.notes.push(Note::ShortOrbits {
+                    wanted: subject.length(ENOUGH / wanted, DIGITS),
+                    taken: subject.length(most, DIGITS),
+                });
+                (most, "the longest that is quick to find".to_owned())
+            }
+            None => (
+                ENOUGH / wanted,
+                format!("{ENOUGH}/(smoothing width): the next one counts 0.011 of its term"),
+            ),
+        };
+        self.limits.max_length = length;
+        let from_length = asked.is_none() && (wishes.length.is_some() || ENOUGH / wanted > most);
+        self.width = if from_length { ENOUGH / length } else { wanted };
+        let reason = if asked.is_some() {
+            "as asked"
+        } else if from_length {
+            "3/(longest orbit)"
+        } else {
+            "the default"
+        };
+        self.choices.push((
+            "smoothing".into(),
+            format!(
+                "{} mean spacings at the middle of the window ({reason}): a Gaussian of standard deviation {} in {}, {} in k \
+                 throughout",
+                significant(self.width / self.spacing, DIGITS),
+                subject.level(self.width_in_units(subject), DIGITS),
+                units.column(),
+                significant(self.width, DIGITS),
+            ),
+        ));
+        self.choices.push((
+            "longest orbit".into(),
+            format!("{} ({why})", subject.length(length, DIGITS)),
+        ));
+    }
+
+    fn choose_bounces(&mut self, subject: &Subject, wishes: &Wishes) {
+        let default = Limits::up_to(self.limits.max_length, &subject.system.domain);
+        self.limits.max_bounces = wishes.bounces.unwrap_or(default.max_bounces);
+        let why = if wishes.bounces.is_some() {
+            "as asked"
+        } else {
+            "the default for this shape"
+        };
+        self.choices.push((
+            "most bounces".into(),
+            format!("{} ({why})", self.limits.max_bounces),
+        ));
+    }
+
+    fn warn(&mut self, subject: &Subject) {
+        let product = self.width * self.limits.max_length;
+        if product < ENOUGH * (1.0 - SLACK) {
+            self.notes.push(Note::TooNarrow {
+                product,
+                enough: ENOUGH,
+            });
+        }
+        let units = &subject.system.units;
+        let reach = REACH * self.width;
+        if units.k(self.window.from) < reach {
+            self.notes.push(Note::NearZero {
+                reach: subject.level(units.value(reach), DIGITS),
+            });
+        }
+        self.notes
+            .extend(units.warning(self.window.to).map(Note::NotFlat));
+    }
+
+    /// The width at the middle of the window in the file's unit.
+    pub(super) fn width_in_units(&self, subject: &Subject) -> f64 {
+        let units = &subject.system.units;
+        self.width / units.derivative(units.value(self.middle))
+    }
+}
+
+/// Distance in standard deviations at which a Gaussian has ended.
+const REACH: f64 = 5.0;
+
+/// The longest orbits that are looked for without being asked.
+fn longest_default(subject: &Subject) -> f64 {
+    let domain = &subject.system.domain;
+    if subject.integrable.is_some()
+        || domain
+            .walls
+            .iter()
+            .all(orbitsum::billiard::Wall::is_straight)
+    {
+        // The number of families grows as a power of the length only.
+        return f64::INFINITY;
+    }
+    MOST_CHORDS * copy_chord(subject)
+}
+
+/// Mean chord of one symmetry copy of the domain, pi area/perimeter, with the pieces of axes that bound it: its measures
+/// are those in the smooth count of the class that is even under everything.
+fn copy_chord(subject: &Subject) -> f64 {
+    let even = &subject.symmetry.irreps[0];
+    let copy = weyl(&subject.system.domain, &subject.symmetry, Some(even));
+    let perimeter: f64 = copy
+        .terms
+        .iter()
+        .filter(|term| term.power == 1)
+        .map(|term| term.coefficient.abs())
+        .sum();
+    std::f64::consts::PI * copy.coefficient(2) / perimeter
+}
+
+/// From the tenth level to the 250th by the smooth count, or to the end of the list.
+fn default_window(subject: &Subject, weyl: &Weyl, list_end: Option<f64>) -> (Window, String) {
+    let units = &subject.system.units;
+    let level = |n: f64| rounded(units.value(weyl.k_at_count(n)));
+    let (low, high) = DEFAULT_LEVELS;
+    let from = level(low);
+    if let Some(end) = list_end {
+        let last = units.k(end);
+        let width = DEFAULT_SMOOTHING * weyl.mean_spacing(0.5 * (units.k(from) + last));
+        let to = rounded_down(units.value((last - REACH * width).max(0.0)));
+        if to > from {
+            let window = Window { from, to };
+            let why = format!(
+                "{} (from about the {low:.0}th level to five smoothing widths below the end of the list)",
+                range(subject, window)
+            );
+            return (window, why);
+        }
+    }
+    let window = Window {
+        from,
+        to: level(high),
+    };
+    let why = format!(
+        "{} (from about the {low:.0}th to the {high:.0}th level by the smooth count)",
+        range(subject, window)
+    );
+    (window, why)
+}
+
+fn range(subject: &Subject, window: Window) -> String {
+    format!(
+        "{} from {} to {}",
+        subject.system.units.column(),
+        significant(window.from, 6),
+        subject.level(window.to, 6)
+    )
+}
+
+/// To a few digits, for numbers that are chosen here.
+pub(super) fn rounded(value: f64) -> f64 {
+    let unit = digit_unit(value);
+    // Dividing by a power of ten gives the nearest number to the short decimal.
+    if unit < 1.0 {
+        let per = (1.0 / unit).round();
+        (value * per).round() / per
+    } else {
+        (value / unit).round() * unit
+    }
+}
+
+fn rounded_down(value: f64) -> f64 {
+    let near = rounded(value);
+    if near > value {
+        rounded(near - digit_unit(value))
+    } else {
+        near
+    }
+}
+
+/// Value of the last of the digits that are kept.
+fn digit_unit(value: f64) -> f64 {
+    10f64.powi(value.abs().max(f64::MIN_POSITIVE).log10().floor() as i32 + 1 - DIGITS as i32)
+}
+
+/// Notes about what the sum leaves out that would show at k under a smoothing of standard deviation `width`, largest first.
+pub(super) fn omissions(
+    subject: &Subject,
+    catalogue: &orbitsum::orbit::Catalogue,
+    k: f64,
+    width: f64,
+) -> Vec<Note> {
+    let mut kept: Vec<(f64, Note)> = Vec::new();
+    let mut kinds: Vec<(String, usize, f64, f64)> = Vec::new();
+    for omission in &catalogue.omissions {
+        let size = omission.size_at(k, width);
+        let what = omission.kind.to_string();
+        match kinds.iter_mut().find(|(known, ..)| *known == what) {
+            Some((_, count, length, largest)) => {
+                *count += omission.count;
+                *length = length.min(omission.length);
+                *largest = largest.max(size);
+            }
+            None => kinds.push((what, omission.count, omission.length, size)),
+        }
+    }
+    for (what, count, length, size) in kinds {
+        if size >= LEAST_OMISSION {
+            let length = subject.length(length, 4);
+            kept.push((
+                size,
+                Note::LeftOut {
+                    what,
+                    count,
+                    length,
+                    size,
+                },
+            ));
+        }
+    }
+    kept.sort_by(|a, b| b.0.total_cmp(&a.0));
+    kept.into_iter().map(|(_, note)| note).collect()
+}
+
+/// Omissions below this many levels are far below what the orbit sum is good for.
+const LEAST_OMISSION: f64 = 1e-4;
+
+/// How the search knows that it is complete, in words.
+pub(super) fn completeness(catalogue: &orbitsum::orbit::Catalogue) -> (String, Vec<Note>) {
+    if catalogue.integrable.is_some() {
+        return (
+            "complete: the tori of this integrable shape are listed from their winding numbers, no search was needed".into(),
+            Vec::new(),
+        );
+    }
+    let mut sentences = Vec::new();
+    let mut notes = Vec::new();
+    for (what, passes) in [
+        ("from curved walls", &catalogue.passes),
+        ("between straight walls", &catalogue.flat_passes),
+    ] {
+        let (Some(last), Some(first)) = (passes.last(), passes.first()) else {
+            continue;
+        };
+        let before = passes.len().checked_sub(2).map(|index| &passes[index]);
+        let rays: usize = passes.iter().map(|pass| pass.rays).sum();
+        match before {
+            Some(before) if last.added == 0 => sentences.push(format!(
+                "search {what}: a start set of {} points, {} times finer than the one before ({} points, rays {} rad apart), \
+                 added nothing ({}, {rays} rays)",
+                last.sources,
+                significant(before.smallest_gap / last.smallest_gap, 2),
+                before.sources,
+                significant(before.smallest_gap, 2),
+                counted(passes.len(), "pass", "passes"),
+            )),
+            None if first.added == 0 => {
+                sentences.push(format!("search {what}: nothing found with {} points", first.sources));
+            }
+            _ => {
+                sentences.push(format!(
+                    "search {what}: not settled after {}: the last one, with {} points and rays {} rad apart, still added {}",
+                    counted(passes.len(), "pass", "passes"),
+                    last.sources,
+                    significant(last.smallest_gap, 2),
+                    last.added,
+                ));
+                notes.push(Note::NotSettled {
+                    added: last.added,
+                    passes: passes.len(),
+                });
+            }
+        }
+    }
+    (sentences.join("\n"), notes)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn chosen_numbers_are_short() {
+        assert_eq!(rounded(6.012_345), 6.01);
+        assert_eq!(rounded(12_345.0), 12_300.0);
+        assert_eq!(rounded(0.001_234_5), 0.001_23);
+        assert_eq!(rounded_down(41.99), 41.9);
+        assert_eq!(rounded_down(6.019), 6.01);
+    }
+}

@@ -1,0 +1,151 @@
+//! What a user should know about a result.
+
+use super::text::{counted, significant};
+use orbitsum::levels::ListNote;
+use orbitsum::system::NotFlat;
+use std::fmt;
+
+/// A remark or a warning. Each names the likely cause or the option that helps.
+#[derive(Clone, Debug)]
+pub(super) enum Note {
+    /// How a list was read.
+    List(ListNote),
+    /// A list was converted.
+    Converted {
+        from: &'static str,
+        to: &'static str,
+    },
+    /// The list is taken to hold the levels of the class alone.
+    ListOfClass { class: String },
+    /// The list does not begin at the lowest level.
+    ListBegins { first: String, expected_below: f64 },
+    /// The list ends inside the window.
+    ListEnds { end: String, used_to: String },
+    /// The list ends before the window begins.
+    ListTooShort { end: String },
+    /// The cavity is not flat up to the end of the window.
+    NotFlat(NotFlat),
+    /// The smoothing is too narrow for the known orbits.
+    TooNarrow { product: f64, enough: f64 },
+    /// The Gaussian reaches down to k = 0.
+    NearZero { reach: String },
+    /// The search did not settle.
+    NotSettled { added: usize, passes: usize },
+    /// The default length was cut to what can be found at once.
+    ShortOrbits { wanted: String, taken: String },
+    /// Corners that the orbit sum leaves out.
+    Diffracts { corners: usize },
+    /// A cavity is flat up to a frequency.
+    FlatUpTo { limit: String },
+    /// Something is left out of the smooth count.
+    SmoothPart(&'static str),
+    /// What the orbit sum leaves out.
+    LeftOut {
+        what: String,
+        count: usize,
+        length: String,
+        /// In levels.
+        size: f64,
+    },
+}
+
+impl Note {
+    /// Is it more than a remark?
+    pub(super) fn is_warning(&self) -> bool {
+        matches!(
+            self,
+            Self::ListBegins { .. }
+                | Self::ListTooShort { .. }
+                | Self::NotFlat(_)
+                | Self::TooNarrow { .. }
+                | Self::NotSettled { .. }
+        )
+    }
+
+    /// With its heading.
+    pub(super) fn line(&self) -> String {
+        let heading = if self.is_warning() { "warning" } else { "note" };
+        format!("{heading}: {self}")
+    }
+}
+
+impl fmt::Display for Note {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        match self {
+            Self::List(note) => write!(f, "level list: {note}"),
+            Self::Converted { from, to } => {
+                write!(f, "level list: its column `{from}` was converted to {to}")
+            }
+            Self::ListOfClass { class } => write!(
+                f,
+                "the level list is taken to hold the levels of class {class} only"
+            ),
+            Self::ListBegins {
+                first,
+                expected_below,
+            } => write!(
+                f,
+                "the level list begins at {first}, where about {} levels are expected below: a staircase needs the list \
+                 to begin with the lowest level",
+                significant(*expected_below, 3)
+            ),
+            Self::ListEnds { end, used_to } => write!(
+                f,
+                "the level list ends at {end}: the comparison ends five smoothing widths before, at {used_to}"
+            ),
+            Self::ListTooShort { end } => write!(
+                f,
+                "the level list ends at {end}, before the window or within five smoothing widths of its beginning: there is \
+                 nothing to compare; choose a lower window"
+            ),
+            Self::NotFlat(warning) => warning.fmt(f),
+            Self::TooNarrow { product, enough } => write!(
+                f,
+                "smoothing width x longest orbit = {}, below {enough}: orbits that were not looked for would still show; \
+                 raise --max-length or the smoothing",
+                significant(*product, 3)
+            ),
+            Self::NearZero { reach } => write!(
+                f,
+                "below {reach} the Gaussian reaches levels below 0, where the smooth count means nothing"
+            ),
+            Self::NotSettled { added, passes } => write!(
+                f,
+                "after {passes} passes the last and finest one still found {}: the list may not be complete; lower \
+                 --max-length or --max-bounces",
+                counted(*added, "new orbit", "new orbits")
+            ),
+            Self::ShortOrbits { wanted, taken } => write!(
+                f,
+                "all orbits up to length {wanted} would be too many to find at once, so only those up to {taken} are taken; \
+                 --max-length asks for more, --class needs fewer"
+            ),
+            Self::Diffracts { corners } => write!(
+                f,
+                "{}: their waves are left out of the orbit sum; `orbits` and `density` estimate their size",
+                counted(*corners, "corner diffracts", "corners diffract")
+            ),
+            Self::FlatUpTo { limit } => write!(
+                f,
+                "the cavity is flat up to {limit}: further modes, which this program leaves out, appear above"
+            ),
+            Self::SmoothPart(what) => f.write_str(what),
+            Self::LeftOut {
+                what,
+                count,
+                length,
+                size,
+            } => {
+                write!(f, "left out or rough: {what}")?;
+                if *count > 1 {
+                    write!(f, " ({count} contributions)")?;
+                }
+                write!(
+                    f,
+                    ", from length {length} on, about {} level each at most",
+                    significant(*size, 1)
+                )
+            }
+        }
+    }
+}
