@@ -11,7 +11,7 @@ use super::text::{listed, significant};
 use orbitsum::billiard::{Condition, Role, VertexKind, is_rotationally_invariant};
 use orbitsum::report::shape_picture;
 
-/// Corners that are listed for people.
+/// Corners and joints that are listed for people.
 const SHOWN_CORNERS: usize = 24;
 
 pub(super) fn run(typed: &Show, options: &Options) -> Result<Answer, CommandError> {
@@ -172,27 +172,34 @@ fn turning(subject: &Subject) -> f64 {
 
 fn corners(subject: &Subject) -> Vec<Fact> {
     let domain = &subject.system.domain;
-    let vertices = domain.vertices.iter().filter_map(|vertex| {
-        let kind = match vertex.kind {
-            VertexKind::Smooth => return None,
-            VertexKind::Joint => "joint: smooth, with a jump of curvature".to_owned(),
-            VertexKind::Regular { n } => {
-                format!("corner of pi/{n}: rays go on after {n} reflections")
-            }
-            VertexKind::Corner => "corner that diffracts".to_owned(),
-        };
-        Some((vertex, kind))
-    });
-    vertices
-        .enumerate()
-        .map(|(index, (vertex, kind))| {
-            Fact::new(format!("corner_{}", index + 1), vertex.angle.to_degrees())
-                .unit("degrees")
-                .remark(format!(
-                    "at ({}, {}), {kind}",
-                    significant(vertex.point.x, 6),
-                    significant(vertex.point.y, 6)
-                ))
+    let (mut corners, mut joints) = (0, 0);
+    domain
+        .vertices
+        .iter()
+        .filter_map(|vertex| {
+            let kind = match vertex.kind {
+                VertexKind::Smooth => return None,
+                VertexKind::Joint => "smooth, with a jump of curvature".to_owned(),
+                VertexKind::Regular { n } => format!("pi/{n}: rays go on after {n} reflections"),
+                VertexKind::Corner => "diffracts".to_owned(),
+            };
+            let name = if vertex.kind == VertexKind::Joint {
+                joints += 1;
+                format!("joint_{joints}")
+            } else {
+                corners += 1;
+                format!("corner_{corners}")
+            };
+            let place = format!(
+                "at ({}, {}), {kind}",
+                significant(vertex.point.x, 6),
+                significant(vertex.point.y, 6)
+            );
+            Some(
+                Fact::new(name, vertex.angle.to_degrees())
+                    .unit("degrees")
+                    .remark(place),
+            )
         })
         .collect()
 }
@@ -276,24 +283,27 @@ fn summary(subject: &Subject, facts: &[Fact]) -> String {
         .iter()
         .map(|(name, value)| (format!("parameter {name}"), significant(*value, 10)))
         .collect();
-    let corners = facts
+    let is_vertex =
+        |fact: &Fact| fact.quantity.starts_with("corner_") || fact.quantity.starts_with("joint_");
+    let hidden = facts
         .iter()
-        .filter(|fact| fact.quantity.starts_with("corner_"))
-        .count();
+        .filter(|fact| is_vertex(fact))
+        .count()
+        .saturating_sub(SHOWN_CORNERS);
     let mut seen = 0;
     for fact in facts {
-        if fact.quantity.starts_with("corner_") {
+        let (name, text) = fact.line();
+        if is_vertex(fact) {
             seen += 1;
             if seen > SHOWN_CORNERS {
                 continue;
             }
         }
-        let (name, text) = fact.line();
         pairs.push((name.replace('_', " "), text));
-        if seen == SHOWN_CORNERS && corners > seen && fact.quantity.starts_with("corner_") {
+        if is_vertex(fact) && seen == SHOWN_CORNERS && hidden > 0 {
             pairs.push((
                 String::new(),
-                format!("and {} more corners", corners - SHOWN_CORNERS),
+                format!("and {hidden} more, see --format csv"),
             ));
         }
     }
