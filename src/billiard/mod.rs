@@ -4,10 +4,15 @@ mod bounce;
 pub(crate) use detect::Boundary;
 mod crossings;
 mod curve_hit;
+mod curve_piece;
 mod detect;
 mod domain;
+mod dynamics;
 mod isometry;
+mod lanes;
+mod obstacle;
 pub(crate) mod quadrature;
+mod start;
 mod symmetry;
 mod wall;
 
@@ -16,7 +21,9 @@ pub use crossings::Interior;
 pub use detect::{detect, is_rotationally_invariant};
 pub(crate) use domain::signed_area;
 pub use domain::{Domain, GeometryError, Role, Vertex, VertexKind, WallLoop};
+pub use dynamics::{Dynamics, KNOWN_TO, dynamics};
 pub use isometry::Isometry;
+pub use lanes::{Ending, Lanes, Rays};
 pub use symmetry::{Element, Irrep, Symmetry, SymmetryError, check_declared};
 pub use wall::{Arc, Condition, Curve, Frame, Line, PlaneCurve, Shape, Wall};
 

@@ -34,11 +34,12 @@ pub(crate) fn orbit(setting: &Setting, path: &ClosedPath, form: &LengthForm) -> 
     let points = bounce_points(setting, path, form)?;
     chords_are_free(setting, &points, path.element).then_some(())?;
     is_primitive(setting, &points).then_some(())?;
-    let determinant = setting.symmetry.elements[path.element].det();
+    let monodromy = path.monodromy(form, setting.symmetry.elements[path.element].det());
     let draft = Draft {
         element: path.element,
         length,
-        monodromy: path.monodromy(form, determinant),
+        monodromy: monodromy.matrix(),
+        determinant: monodromy.determinant(),
         residual: form.residual(),
         points,
     };
@@ -50,6 +51,7 @@ pub(crate) struct Draft {
     pub(crate) element: usize,
     pub(crate) length: f64,
     pub(crate) monodromy: Mat2,
+    pub(crate) determinant: f64,
     pub(crate) residual: f64,
     pub(crate) points: Vec<OrbitPoint>,
 }
@@ -65,6 +67,7 @@ pub(crate) fn finish(
         element,
         length,
         monodromy,
+        determinant,
         residual,
         points,
     } = draft;
@@ -93,6 +96,7 @@ pub(crate) fn finish(
         copies: copies(setting, &here, element),
         length,
         monodromy,
+        determinant,
         symmetry: element,
         partner,
         kind,

@@ -1,10 +1,10 @@
 //! Everything that contributes to the orbit sum of one domain, up to given limits.
 
 use super::analyse::Setting;
-use super::omission::{Omission, omissions};
+use super::omission::{Found, Omission, omissions};
 use super::periodic::Orbit;
 use super::phase::Comparison;
-use super::search::{Pass, curved_orbits, insert, sort};
+use super::search::{Curved, CurvedFamily, Pass, curved_orbits, insert, sort};
 use super::strip::{Strip, flat_orbits};
 use super::tori::{self, Integrable, TorusLimits, TorusSum};
 use crate::billiard::{Domain, Symmetry, Tracer, Wall};
@@ -27,6 +27,8 @@ pub struct Catalogue {
     pub orbits: Vec<Orbit>,
     /// Strips of parallel orbits, shortest first.
     pub strips: Vec<Strip>,
+    /// Families with curved bounces, which are not in the sum.
+    pub families: Vec<CurvedFamily>,
     /// The integrable shape, if the domain is one whose tori are known; then the search for orbits is not needed.
     pub integrable: Option<Integrable>,
     /// Tori of the integrable shape with their terms (whole domain).
@@ -55,6 +57,7 @@ impl Catalogue {
             limits,
             orbits: Vec::new(),
             strips: Vec::new(),
+            families: Vec::new(),
             integrable: Some(shape),
             omissions: tori.left_out.iter().map(Omission::from).collect(),
             tori,
@@ -73,7 +76,11 @@ impl Catalogue {
             max_length: limits.max_length,
             max_bounces: limits.max_bounces,
         };
-        let (mut orbits, passes) = curved_orbits(&setting);
+        let Curved {
+            mut orbits,
+            families,
+            passes,
+        } = curved_orbits(&setting);
         let flat = flat_orbits(&setting);
         for orbit in flat.orbits {
             insert(&setting, &mut orbits, orbit);
@@ -81,9 +88,19 @@ impl Catalogue {
         sort(&mut orbits);
         Self {
             limits,
-            omissions: omissions(domain, &tracer, &orbits, &flat.strips, limits.max_bounces),
+            omissions: omissions(
+                domain,
+                &tracer,
+                &Found {
+                    orbits: &orbits,
+                    strips: &flat.strips,
+                    families: &families,
+                    max_bounces: limits.max_bounces,
+                },
+            ),
             orbits,
             strips: flat.strips,
+            families,
             integrable: None,
             tori: TorusSum::default(),
             passes,

@@ -11,15 +11,15 @@
 //! subtracted: its term counts the side s < 0. With L the length of the single orbit and sigma its sign per passage, the
 //! level density has the term (L / pi) Re[sigma^n J_n e^(i n k L)].
 //!
-//! What is known of J_n (the reference script of the table derives the first three):
+//! What is known of J_n (the reference script of the table has more on the first two):
 //!
 //! * Turning all s by 45 degrees in the complex plane makes the flights real Gaussians and the arc a factor e^(c s^2):
 //!   J_n is real for c < 0 and, for c > 0, the boundary value at c - i0 of one analytic function.
 //! * It has no bifurcations where the orbit of the arc alone has them (c = 2, or 1 - c = cos(2 pi m / n)): the closed
 //!   paths that would cause them have hits on both sides of the joint. It is only not smooth at c = 1 - cos(pi / m),
 //!   2 <= m <= n, where paths from the joint to itself are stationary. Above c = 1 it is analytic, for every n.
-//! * For |c| to infinity the arc absorbs, and J_n = -(1 / (2 pi n)) sum_{j=1}^{n-1} ((n-j)/j)^(1/2) - i / (2 (2 n c)^(1/2))
-//!   + O(1/c). The constant is the mean maximum of a Gaussian bridge of n steps (F. Spitzer, Trans. Am. Math. Soc. 82, 323,
+//! * For |c| to infinity the arc absorbs, and J_n = -(1 / (2 pi n)) sum_{j=1}^{n-1} ((n-j)/j)^(1/2) - i / (2 (2 n c)^(1/2)),
+//!   up to terms of order 1/c. The constant is the mean maximum of a Gaussian bridge of n steps (F. Spitzer, Trans. Am. Math. Soc. 82, 323,
 //!   1956, for the maximum of partial sums), the next term one hit on the arc between steps that stay outside it, which
 //!   have probability 1/n (E. Sparre Andersen, Math. Scand. 1, 263, 1953; both from memory).
 
@@ -152,8 +152,10 @@ enum Kind {
     Focusing,
     /// Node in y = z / (1 + z), z = (-c)^(-1/2), value J_n / (1 + z): J_n grows like z.
     Defocusing,
-    /// Not a node: c and J_n for tests.
+    /// Not a node: c and J_n for tests, from another contour.
     Check,
+    /// Not a node: c and J_3 for tests, from orthant probabilities.
+    Orthant,
 }
 
 /// Chebyshev points of the second kind in ascending order with the values there.
@@ -230,7 +232,7 @@ fn parse(text: &str) -> Option<Table> {
         let side = match row.kind {
             Kind::Focusing => &mut table.focusing,
             Kind::Defocusing => &mut table.defocusing,
-            Kind::Check => continue,
+            Kind::Check | Kind::Orthant => continue,
         };
         if !(FIRST_REPETITION..=LARGEST_REPETITION).contains(&row.repetition) {
             return None;
@@ -374,13 +376,13 @@ mod tests {
     fn interpolation_reaches_the_check_rows() {
         let mut checked = 0;
         for row in rows(TABLE).expect("the table parses") {
-            if row.kind == Kind::Check {
+            if matches!(row.kind, Kind::Check | Kind::Orthant) {
                 let found = chain_coefficient(row.repetition, row.at).unwrap();
                 close(found, Complex64::new(row.re, row.im), TABLE_ERROR);
                 checked += 1;
             }
         }
-        assert_eq!(checked, 12 * 18);
+        assert_eq!(checked, 12 * 18 + 7);
     }
 
     /// -(1 / (2 pi n)) sum_{j=1}^{n-1} ((n-j)/j)^(1/2)
@@ -401,20 +403,21 @@ mod tests {
     fn three_hits_agree_with_orthant_probabilities() {
         use nalgebra::Matrix3;
         for c in [-0.01, -0.2, -1.0, -6.5, -300.0] {
-            let mut expected = absorbing(3);
+            let mut expected: f64 = absorbing(3);
             for pattern in 1..8u8 {
                 let positive = [0, 1, 2].map(|hit| pattern >> hit & 1 == 1);
-                let form = Matrix3::from_fn(|row, column| match (row == column, positive[row]) {
-                    (false, _) => -1.0,
-                    (true, true) => 2.0 - 2.0 * c,
-                    (true, false) => 2.0,
-                });
+                let form: Matrix3<f64> =
+                    Matrix3::from_fn(|row, column| match (row == column, positive[row]) {
+                        (false, _) => -1.0,
+                        (true, true) => 2.0 - 2.0 * c,
+                        (true, false) => 2.0,
+                    });
                 let covariance = form
                     .try_inverse()
                     .expect("Q is definite unless all hits are flat");
                 let arcs: f64 = [(0, 1), (1, 2), (2, 0)]
                     .map(|(one, other): (usize, usize)| {
-                        let scale = covariance[(one, one)] * covariance[(other, other)];
+                        let scale: f64 = covariance[(one, one)] * covariance[(other, other)];
                         let sign = if positive[one] == positive[other] {
                             1.0
                         } else {

@@ -33,8 +33,6 @@ pub(crate) struct Step {
     pub(crate) point: Vec2,
     /// Direction after the bounce.
     pub(crate) direction: Vec2,
-    /// Length from the start.
-    pub(crate) length: f64,
     /// Linearised map from the start.
     pub(crate) map: Mat2,
 }
@@ -113,7 +111,6 @@ pub(crate) fn follow_direction(
             t: hit.t,
             point: hit.point,
             direction: ray.direction,
-            length,
             map,
         });
     }

@@ -1,6 +1,7 @@
 //! What the orbit sum leaves out or describes badly, with estimates of the size.
 
 use super::periodic::Orbit;
+use super::search::CurvedFamily;
 use super::strip::{Strip, StripEdge};
 use super::tori::{LeftOut, LeftOutKind};
 use crate::billiard::{Domain, Event, Origin, Ray, Tracer, VertexKind, incidence, left};
@@ -16,6 +17,8 @@ pub enum OmissionKind {
     StripCorners,
     /// Edges of strips that graze a curved wall.
     StripGrazing,
+    /// Families of orbits with curved bounces, all of one length.
+    Families,
     /// Orbits with bounces at joints where only the leading rule of one half for each side is known.
     Joints,
     /// Orbits next to a bifurcation, whose isolated terms are too large.
@@ -32,6 +35,7 @@ impl fmt::Display for OmissionKind {
             Self::Corners => "orbits that diffract at corners",
             Self::StripCorners => "diffraction at the edges of strips",
             Self::StripGrazing => "strips whose edge grazes a wall",
+            Self::Families => "families of orbits between curved walls",
             Self::Joints => "repetitions of orbits through joints",
             Self::Bifurcations => "orbits near a bifurcation (their terms are too large)",
             Self::Bounces | Self::Tori(LeftOutKind::ManyBounces { .. }) => {
@@ -104,14 +108,22 @@ const NEAR_BIFURCATION: f64 = 0.25;
 /// Orbits with at least this part of the allowed bounces stand for those with more.
 const MANY_BOUNCES: f64 = 0.9;
 
+/// What the search found.
+pub(crate) struct Found<'a> {
+    pub(crate) orbits: &'a [Orbit],
+    pub(crate) strips: &'a [Strip],
+    pub(crate) families: &'a [CurvedFamily],
+    pub(crate) max_bounces: usize,
+}
+
 /// What the sum over these orbits and strips leaves out.
-pub(crate) fn omissions(
-    domain: &Domain,
-    tracer: &Tracer,
-    orbits: &[Orbit],
-    strips: &[Strip],
-    max_bounces: usize,
-) -> Vec<Omission> {
+pub(crate) fn omissions(domain: &Domain, tracer: &Tracer, found: &Found) -> Vec<Omission> {
+    let Found {
+        orbits,
+        strips,
+        families,
+        max_bounces,
+    } = *found;
     let edges = |wanted: StripEdge| {
         strips
             .iter()
@@ -135,6 +147,18 @@ pub(crate) fn omissions(
                 (
                     length,
                     domain.size.cbrt() * (2.0 / (PI * length)).sqrt() / (2.0 * PI),
+                )
+            }),
+        ),
+        // A family of width Y with M = ((1, b), (0, 1)) has the amplitude (1/pi) sqrt(k/(2 pi b)) Y; b is about the length
+        // and Y about a quarter of the domain's size.
+        Omission::of(
+            OmissionKind::Families,
+            0.5,
+            families.iter().map(|family| {
+                (
+                    family.length,
+                    0.25 * domain.size / (PI * (2.0 * PI * family.length).sqrt()),
                 )
             }),
         ),

@@ -6,7 +6,8 @@
 //! straight bounce adds a positive direction to the full Hessian, so the number of negative eigenvalues is unchanged.
 
 use super::cyclic::{Cyclic, Elimination};
-use crate::billiard::{Domain, Frame, Isometry, Mat2, flight, reflection};
+use super::monodromy::Monodromy;
+use crate::billiard::{Domain, Frame, Isometry};
 
 /// A bounce on a curved wall.
 #[derive(Clone, Copy, Debug)]
@@ -82,9 +83,9 @@ impl ClosedPath {
 
     /// Linearised map along the path, from just after the first bounce to just after its image, in (transverse
     /// displacement, transverse angle); `determinant` is that of the closing group element.
-    pub(crate) fn monodromy(&self, form: &LengthForm, determinant: f64) -> Mat2 {
+    pub(crate) fn monodromy(&self, form: &LengthForm, determinant: f64) -> Monodromy {
         let n = self.bounces.len();
-        let mut map = Mat2::identity() * determinant;
+        let mut map = Monodromy::identity(determinant);
         for i in 0..n {
             let next = (i + 1) % n;
             let flips = if self.links[i].straight.len() % 2 == 0 {
@@ -92,9 +93,9 @@ impl ClosedPath {
             } else {
                 -1.0
             };
-            let step = reflection(form.frames[next].curvature, form.cosines[next])
-                * flight(form.chords[i]);
-            map = step * map * flips;
+            map.fly(form.chords[i]);
+            map.reflect(2.0 * form.frames[next].curvature / form.cosines[next]);
+            map.scale(flips);
         }
         map
     }

@@ -25,6 +25,10 @@ impl OrbitKind {
     }
 }
 
+/// |det(M - 1)| below which an orbit belongs to a family: well above rounding, and so small that the term of an isolated
+/// orbit would be a hundred levels.
+const MARGINAL: f64 = 1e-5;
+
 /// One bounce of an orbit.
 #[derive(Clone, Copy, Debug)]
 pub struct OrbitPoint {
@@ -72,6 +76,8 @@ pub struct Orbit {
     pub length: f64,
     /// Linearised map closed by `symmetry`: det(g) M.
     pub monodromy: Mat2,
+    /// Its determinant, which must be 1, from entries in twice the working precision.
+    pub determinant: f64,
     /// Group element g that takes the first point to the end of the reduced orbit.
     pub symmetry: usize,
     /// Order of g up to elements that fix the orbit: reduced orbits in the full one.
@@ -119,6 +125,12 @@ impl Orbit {
     #[must_use]
     pub fn full_bounces(&self) -> usize {
         self.bounces() * self.copies
+    }
+
+    /// Does the orbit belong to a family of orbits of the same length? Then det(M - 1) = 0 for the primitive orbit. A chain
+    /// of joint hits is never marginal, since one side of the joint is curved.
+    pub(crate) fn is_marginal(&self) -> bool {
+        (2.0 - self.monodromy.trace()).abs() < MARGINAL
     }
 
     /// Largest repetition for which a joint orbit's term is known: all those with chain coefficients, or the first.

@@ -7,11 +7,12 @@
 
 use super::analyse::{self, Setting};
 use super::fan::{Reach, Resolution, Source, Step, Track, shoot};
-use super::path::{Bounce, ClosedPath, Link, Workspace, refine};
+use super::path::{Bounce, ClosedPath, LengthForm, Link, Workspace, refine};
 use super::periodic::Orbit;
 use super::phase::{Phase, phases};
-use crate::billiard::{Domain, Isometry, Mat2, Shape, Symmetry, Vec2, left};
+use crate::billiard::{Domain, Isometry, Mat2, Shape, Symmetry, Vec2, Wall, left};
 use rayon::prelude::*;
+use std::collections::{HashMap, HashSet};
 
 /// What one pass of the search did.
 #[derive(Clone, Copy, Debug)]
@@ -27,28 +28,35 @@ pub struct Pass {
 }
 
 /// Sources on the curved walls in the first pass, for one symmetry copy.
-const FIRST_SOURCES: usize = 24;
+const FIRST_SOURCES: usize = 12;
 /// Rays of a fan before refinement.
 const FIRST_RAYS: usize = 40;
 /// Smallest angle between rays in the first pass, radians.
-const FIRST_GAP: f64 = 1e-3;
+const FIRST_GAP: f64 = 5e-5;
 /// Neighbouring rays may land this far apart, as a fraction of the size, before they are refined.
-const SPREAD: f64 = 0.1;
+const SPREAD: f64 = 0.15;
 /// Number of passes after which the search gives up on settling; what is still being added then is said in the output.
 const MOST_PASSES: usize = 6;
 /// Each pass has this many times the sources of the one before, and gaps smaller by the same factor.
-const REFINEMENT: f64 = 1.6;
-/// Passes without anything new after which the search is complete.
-const QUIET_PASSES: usize = 1;
+const REFINEMENT: f64 = 1.5;
 
-/// All orbits with a curved bounce up to the limits of `setting`, shortest first, and what the passes did.
-pub(crate) fn curved_orbits(setting: &Setting) -> (Vec<Orbit>, Vec<Pass>) {
-    let mut orbits: Vec<Orbit> = Vec::new();
-    let mut passes: Vec<Pass> = Vec::new();
-    if setting.domain.walls.iter().all(|wall| wall.is_straight()) {
-        return (orbits, passes);
+/// What the search from curved walls finds.
+#[derive(Default)]
+pub(crate) struct Curved {
+    /// Isolated orbits, shortest first.
+    pub(crate) orbits: Vec<Orbit>,
+    /// Families that are not isolated.
+    pub(crate) families: Vec<CurvedFamily>,
+    /// What the passes did.
+    pub(crate) passes: Vec<Pass>,
+}
+
+/// All orbits with a curved bounce up to the limits of `setting`.
+pub(crate) fn curved_orbits(setting: &Setting) -> Curved {
+    let mut all = Curved::default();
+    if setting.domain.walls.iter().all(Wall::is_straight) {
+        return all;
     }
-    let mut quiet = 0;
     for pass in 0..MOST_PASSES {
         let factor = REFINEMENT.powi(pass as i32);
         let resolution = Resolution {
@@ -62,30 +70,32 @@ pub(crate) fn curved_orbits(setting: &Setting) -> (Vec<Orbit>, Vec<Pass>) {
         });
         let found: Vec<Harvest> = sources
             .par_iter()
-            .map(|source| from_source(setting, source, &resolution, &orbits))
+            .map(|source| from_source(setting, source, &resolution, &all.orbits))
             .collect();
-        let before = orbits.len();
+        let before = all.orbits.len();
         let rays = found.iter().map(|harvest| harvest.rays).sum();
-        for orbit in found.into_iter().flat_map(|harvest| harvest.orbits) {
-            insert(setting, &mut orbits, orbit);
+        for harvest in found {
+            for orbit in harvest.orbits {
+                insert(setting, &mut all.orbits, orbit);
+            }
+            for family in harvest.families {
+                join_family(&mut all.families, family);
+            }
         }
-        passes.push(Pass {
+        let added = all.orbits.len() - before;
+        all.passes.push(Pass {
             sources: sources.len(),
             smallest_gap: resolution.smallest_gap,
             rays,
-            added: orbits.len() - before,
+            added,
         });
-        quiet = if pass > 0 && orbits.len() == before {
-            quiet + 1
-        } else {
-            0
-        };
-        if quiet >= QUIET_PASSES {
+        if pass > 0 && added == 0 {
             break;
         }
     }
-    sort(&mut orbits);
-    (orbits, passes)
+    sort(&mut all.orbits);
+    all.families.sort_by(|a, b| a.length.total_cmp(&b.length));
+    all
 }
 
 /// Shortest first; equal lengths by bounces and word, so that the order does not depend on rounding.
@@ -183,9 +193,33 @@ const FAR_SPACINGS: f64 = 4.0;
 /// The periodic direction may differ by this angle (radians).
 const FAR_ANGLE: f64 = 0.8;
 
+/// A family of orbits with bounces on curved walls, all of the same length (such as the two-bounce orbits of two facing arcs
+/// that pass through each other's centres). Its term is not in the sum.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct CurvedFamily {
+    /// Length of the reduced orbits.
+    pub length: f64,
+    /// Their bounces.
+    pub bounces: usize,
+}
+
+fn join_family(families: &mut Vec<CurvedFamily>, new: CurvedFamily) {
+    let same = |family: &CurvedFamily| {
+        family.bounces == new.bounces
+            && (family.length - new.length).abs() < SAME_FAMILY * new.length
+    };
+    if !families.iter().any(same) {
+        families.push(new);
+    }
+}
+
+/// Members of a family agree in length to the square of the error of their points.
+const SAME_FAMILY: f64 = 1e-6;
+
 /// What one source adds.
 struct Harvest {
     orbits: Vec<Orbit>,
+    families: Vec<CurvedFamily>,
     rays: usize,
 }
 
@@ -204,12 +238,14 @@ fn from_source(
         setting,
         source,
         spread: resolution.spread,
-        nearby: Nearby::new(setting.max_bounces),
+        nearby: Nearby::new(source),
         found: Vec::new(),
+        families: Vec::new(),
+        tried: HashSet::new(),
         space: Workspace::default(),
     };
     for orbit in known {
-        hunt.nearby.add(setting, source, orbit);
+        hunt.nearby.add(setting, orbit);
     }
     let inverses: Vec<usize> = (0..setting.symmetry.order())
         .map(|g| setting.symmetry.inverse(g))
@@ -240,6 +276,7 @@ fn from_source(
     );
     Harvest {
         orbits: hunt.found,
+        families: hunt.families,
         rays,
     }
 }
@@ -251,6 +288,8 @@ struct Hunt<'a> {
     spread: f64,
     nearby: Nearby,
     found: Vec<Orbit>,
+    families: Vec<CurvedFamily>,
+    tried: HashSet<u64>,
     space: Workspace,
 }
 
@@ -266,8 +305,11 @@ impl Hunt<'_> {
         let direction = symmetry.turn(inverse, step.direction);
         let start = track.direction;
         let aside = left(start);
-        let angle = aside.dot(&direction).atan2(start.dot(&direction));
-        let mismatch = Vec2::new(aside.dot(&back), angle);
+        // The sine stands for the angle: exact where it matters, when the ray nearly closes.
+        let mismatch = Vec2::new(aside.dot(&back), aside.dot(&direction));
+        if start.dot(&direction) < 0.0 {
+            return None;
+        }
         let map = step.map * symmetry.elements[inverse].det();
         let shift = (Mat2::identity() - map).try_inverse()? * mismatch;
         let cosine = start.dot(&left(self.source.tangent)).max(LEAST_COSINE);
@@ -275,8 +317,24 @@ impl Hunt<'_> {
             .then_some(shift)
     }
 
+    /// The path in rough outline: the walls that it meets and the cells of its bounce points, hashed (FNV-1a).
+    fn outline(&self, track: &Track, last: usize, element: usize) -> u64 {
+        let mix = |hash: u64, value: u64| (hash ^ value).wrapping_mul(0x0100_0000_01b3);
+        let cell = OUTLINE_CELL * self.setting.domain.size;
+        track.steps[..=last].iter().fold(
+            mix(0xcbf2_9ce4_8422_2325, element as u64),
+            |hash, step| {
+                let place = (step.point / cell).map(|x| x.floor() as i64 as u64);
+                mix(mix(mix(hash, step.wall as u64), place.x), place.y)
+            },
+        )
+    }
+
     fn try_orbit(&mut self, track: &Track, last: usize, element: usize) {
         let setting = self.setting;
+        if !self.tried.insert(self.outline(track, last, element)) {
+            return;
+        }
         let mut path = closed_path(
             setting.domain,
             setting.symmetry,
@@ -287,55 +345,139 @@ impl Hunt<'_> {
         if refine(setting.domain, &mut path, &mut self.space).is_none() {
             return;
         }
+        if self
+            .nearby
+            .has(path.count(), first_phase(&path, &self.space.form))
+        {
+            return;
+        }
         if let Some(orbit) = analyse::orbit(setting, &path, &self.space.form) {
-            self.nearby.add(setting, self.source, &orbit);
-            insert(setting, &mut self.found, orbit);
+            if orbit.is_marginal() {
+                join_family(
+                    &mut self.families,
+                    CurvedFamily {
+                        length: orbit.length,
+                        bounces: orbit.bounces(),
+                    },
+                );
+            } else {
+                self.nearby.add(setting, &orbit);
+                insert(setting, &mut self.found, orbit);
+            }
         }
     }
 }
+
+/// Cells, as a fraction of the size, into which bounce points are sorted: paths whose points lie in the same cells lead
+/// Newton's method to the same orbit, since they differ by less than the steps it is allowed to take.
+const OUTLINE_CELL: f64 = 0.12;
 
 /// Cosine below which a grazing ray's window is not narrowed further.
 const LEAST_COSINE: f64 = 0.05;
 /// A known orbit explains a candidate if it lies within this fraction of the predicted shift from the predicted place.
 const EXPLAINS: f64 = 0.15;
 
-/// Phase points of known orbits near a source, by number of bounces.
+/// Phase points of known orbits near a source, sorted into cells by number of bounces, place along the wall and direction.
 struct Nearby {
-    points: Vec<Vec<Phase>>,
+    origin: Vec2,
+    tangent: Vec2,
+    /// Size of a cell: length along the wall, and component of the direction along the wall.
+    cell: [f64; 2],
+    window: f64,
+    cells: HashMap<[i32; 3], Vec<Phase>>,
 }
 
 impl Nearby {
-    fn new(max_bounces: usize) -> Self {
+    fn new(source: &Source) -> Self {
         Self {
-            points: vec![Vec::new(); max_bounces + 1],
+            origin: source.point,
+            tangent: source.tangent,
+            // No explained candidate lies further from its prediction than this.
+            cell: [
+                EXPLAINS * FAR_SPACINGS.hypot(FAR_ANGLE) * source.spacing.max(LEAST_CELL),
+                EXPLAINS * FAR_SPACINGS.hypot(FAR_ANGLE),
+            ],
+            window: 2.0 * FAR_SPACINGS * source.spacing,
+            cells: HashMap::new(),
         }
     }
 
-    fn add(&mut self, setting: &Setting, source: &Source, orbit: &Orbit) {
-        let window = 2.0 * FAR_SPACINGS * source.spacing;
+    fn cell(&self, bounces: usize, point: Vec2, direction: Vec2) -> [i32; 3] {
+        let place = self.tangent.dot(&(point - self.origin)) / self.cell[0];
+        let along = self.tangent.dot(&direction) / self.cell[1];
+        [bounces as i32, place.floor() as i32, along.floor() as i32]
+    }
+
+    fn add(&mut self, setting: &Setting, orbit: &Orbit) {
         let ahead = phases(&orbit.points);
         let back = setting.comparison.reversed(&orbit.points, orbit.symmetry);
         for (point, direction) in ahead.into_iter().chain(back) {
             for g in 0..setting.symmetry.order() {
                 let image = setting.symmetry.apply(g, point);
-                if (image - source.point).norm_squared() < window * window {
-                    self.points[orbit.bounces()].push((image, setting.symmetry.turn(g, direction)));
+                if (image - self.origin).norm_squared() < self.window * self.window {
+                    let turned = setting.symmetry.turn(g, direction);
+                    let cell = self.cell(orbit.bounces(), image, turned);
+                    self.cells.entry(cell).or_default().push((image, turned));
                 }
             }
         }
     }
 
+    /// Is this phase point on a known orbit with that many bounces?
+    fn has(&self, bounces: usize, (point, direction): Phase) -> bool {
+        let [n, place, along] = self.cell(bounces, point, direction);
+        let same = |phase: &Phase| {
+            (phase.0 - point).norm_squared() + (phase.1 - direction).norm_squared()
+                < SAME_PHASE * SAME_PHASE
+        };
+        (-1..=1).any(|i| {
+            (-1..=1).any(|j| {
+                self.cells
+                    .get(&[n, place + i, along + j])
+                    .is_some_and(|cell| cell.iter().any(same))
+            })
+        })
+    }
+
     /// Is there a known orbit with that many bounces where the shift points?
     fn explains(&self, track: &Track, bounces: usize, shift: Vec2) -> bool {
-        let aside = left(track.direction);
+        let start = track.direction;
+        let aside = left(start);
         let near = EXPLAINS * shift.norm() + SAME_LENGTH;
-        self.points[bounces].iter().any(|(point, direction)| {
-            let place = aside.dot(&(point - track.start)) - shift.x;
-            let angle = aside.dot(direction).atan2(track.direction.dot(direction)) - shift.y;
-            place * place + angle * angle < near * near
+        // The predicted point, moved along the ray onto the tangent of the wall.
+        let slant = aside.dot(&self.tangent);
+        let slant = slant.abs().max(LEAST_COSINE).copysign(slant);
+        let point = self.origin + self.tangent * (shift.x / slant);
+        let [n, place, along] = self.cell(bounces, point, start + aside * shift.y);
+        let explained = |phase: &Phase| {
+            let x = aside.dot(&(phase.0 - track.start)) - shift.x;
+            let y = aside.dot(&phase.1) - shift.y;
+            x * x + y * y < near * near && start.dot(&phase.1) > 0.0
+        };
+        (-1..=1).any(|i| {
+            (-1..=1).any(|j| {
+                self.cells
+                    .get(&[n, place + i, along + j])
+                    .is_some_and(|cell| cell.iter().any(explained))
+            })
         })
     }
 }
+
+/// Refined phase points closer than this are the same.
+const SAME_PHASE: f64 = 1e-7;
+
+/// Position and direction just after the first bounce of a refined path.
+fn first_phase(path: &ClosedPath, form: &LengthForm) -> Phase {
+    let next = usize::from(path.bounces.len() > 1);
+    let from = form.frames[0].point;
+    let to: Vec2 = path.links[0].unfold.apply(form.frames[next].point);
+    (from, (to - from) / form.chords[0])
+}
+
+/// Smallest size of a cell along the wall, as a part of the largest prediction: spacings are much below 1 only on short
+/// walls.
+const LEAST_CELL: f64 = 1e-3;
 
 /// The closed path that follows a ray from its source to a step near the source's image.
 fn closed_path(

@@ -563,6 +563,7 @@ fn glide_orbit(
             element: path.element,
             length,
             monodromy: flight(length) * sign,
+            determinant: 1.0,
             residual,
             points,
         },

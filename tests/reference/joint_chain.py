@@ -23,7 +23,7 @@ continuous but not analytic: hits exactly on the joint are stationary there. For
 Table. 'focusing' rows are nodes in x = c^(-1/2) between 0 (c infinite: the half line s > 0 absorbs) and c = FOCUSING_MIN,
 value J_n. 'defocusing' rows are nodes in y = z / (1 + z), z = (-c)^(-1/2), between 0 and c = -DEFOCUSING_MIN, value
 J_n / (1 + z). Both are Chebyshev points of the second kind. 'check' rows hold c and J_n between the nodes, from another
-contour and other panels.
+contour and other panels; 'orthant' rows likewise, from a formula for n = 3.
 """
 
 import sys
@@ -97,6 +97,36 @@ def chain(inverse, focusing, alpha, order, growth):
     )
 
 
+def orthants(c, steps=4000):
+    """J_3 by a formula that shares nothing with the quadrature: the signs of three hits select an orthant of a Gaussian with
+    matrix Q, of weight det(Q)^(-1/2) (1/8 + sum arcsin(rho) / (4 pi)) (F. N. David, Biometrika 40, 458, 1953; from memory),
+    continued from -|c| to c - i0 with the branches of roots and arcs followed by continuity."""
+    total = 0.0
+    for pattern in range(1, 8):
+        positive = [pattern >> hit & 1 for hit in range(3)]
+        roots = arcs = None
+        for turn in np.exp(1j * np.pi * np.arange(steps + 1) / steps):
+            form = np.full((3, 3), -1.0 + 0j)
+            np.fill_diagonal(form, [2 + 2 * abs(c) * turn * p for p in positive])
+            covariance = np.linalg.inv(form)
+            new_roots = np.sqrt(np.append(np.diag(covariance), np.linalg.det(form)))
+            if roots is not None:
+                new_roots = np.where(abs(new_roots - roots) < abs(new_roots + roots), new_roots, -new_roots)
+            roots = new_roots
+            pairs = ((0, 1), (1, 2), (2, 0))
+            sines = [(1 if positive[i] == positive[j] else -1) * covariance[i, j] / (roots[i] * roots[j]) for i, j in pairs]
+            principal = np.arcsin(np.array(sines))
+            if arcs is None:
+                arcs = principal
+            else:
+                shift = 2 * np.pi * np.arange(-2, 3)[:, None]
+                branches = np.concatenate([principal + shift, np.pi - principal + shift])
+                arcs = branches[abs(branches - arcs).argmin(0), range(3)]
+        total += (1 / 8 + arcs.sum() / (4 * np.pi)) / roots[3]
+    # The flat wall's share: the mean maximum of a bridge of three steps.
+    return total - (2**0.5 + 0.5**0.5) / (6 * np.pi)
+
+
 def chebyshev(count, end):
     return end * (1 - np.cos(np.pi * np.arange(count) / (count - 1))) / 2
 
@@ -132,6 +162,7 @@ def main():
     for n in range(2, REPETITIONS):
         rows += [("focusing", n + 1, a, b) for a, b in zip(x, focusing[:, n])]
         rows += [("defocusing", n + 1, a, b) for a, b in zip(y, defocusing[:, n])]
+    rows += [("orthant", 3, c, orthants(c)) for c in CHECKS if c > 0]
     print("# Computed by tests/reference/joint_chain.py (numpy 2.4.6): Gauss-Legendre panels on rotated half lines; the check")
     print(f"# rows differ by at most {worst_resolution[2:].max():.1e} between two contours and by {worst_table[2:].max():.1e} from the interpolated table.")
     print("kind,repetition,at,re,im")
