@@ -5,14 +5,22 @@ use super::arguments::Show;
 use super::error::CommandError;
 use super::note::Note;
 use super::options::Options;
+use super::progress;
 use super::subject::{Subject, class_name};
 use super::table::{Cell, Table};
 use super::text::{listed, significant};
-use orbitsum::billiard::{Condition, Role, VertexKind, is_rotationally_invariant};
+use orbitsum::billiard::{
+    self, Condition, KNOWN_TO, Role, Tracer, VertexKind, is_rotationally_invariant,
+};
 use orbitsum::report::shape_picture;
 
 /// Corners and joints that are listed for people.
 const SHOWN_CORNERS: usize = 24;
+
+/// Bounces that are followed for averages: errors of about a thousandth in a tenth of a second.
+const BOUNCES: usize = 1_000_000;
+/// Digits of measured numbers for people.
+const MEASURED_DIGITS: usize = 5;
 
 pub(super) fn run(typed: &Show, options: &Options) -> Result<Answer, CommandError> {
     let subject = Subject::load(&typed.system, options)?;
@@ -68,6 +76,11 @@ impl Fact {
         }
     }
 
+    fn error(mut self, error: f64) -> Self {
+        self.error = Some(error);
+        self
+    }
+
     fn unit(mut self, unit: impl Into<String>) -> Self {
         self.unit = unit.into();
         self
@@ -97,6 +110,8 @@ impl Fact {
 
     fn line(&self) -> (String, String) {
         let mut text = match &self.value {
+            // A measured number has no more digits than its error leaves it.
+            Cell::Number(value) if self.error.is_some() => significant(*value, MEASURED_DIGITS),
             Cell::Number(value) => significant(*value, 10),
             Cell::Count(count) => count.to_string(),
             Cell::Text(text) => text.clone(),
@@ -225,27 +240,61 @@ fn symmetry(subject: &Subject) -> Vec<Fact> {
     facts
 }
 
-fn dynamics(subject: &Subject, _options: &Options) -> Vec<Fact> {
+/// Integrable or not, mean chord, Lyapunov exponent and prediction horizon.
+fn dynamics(subject: &Subject, options: &Options) -> Vec<Fact> {
     let domain = &subject.system.domain;
     let length = subject.system.units.length_label();
     let integrable = super::fluctuation::is_integrable(subject);
-    vec![
-        Fact::new("integrable", if integrable { "yes" } else { "no" }).remark(
-            if subject.integrable.is_some() {
-                "(summed by tori)"
-            } else if integrable {
-                "(summed by strips of parallel orbits)"
-            } else {
-                ""
-            },
-        ),
-        Fact::new(
-            "mean_chord",
-            std::f64::consts::PI * domain.area / domain.perimeter,
-        )
-        .unit(length)
-        .remark("(pi area/perimeter)"),
-    ]
+    let how = match (integrable, subject.integrable.is_some()) {
+        (true, true) => "(summed by tori)",
+        (true, false) => "(summed by strips of parallel orbits)",
+        _ => "",
+    };
+    let measured = progress::during(options, "following rays", || {
+        billiard::dynamics(domain, &Tracer::new(domain), BOUNCES)
+    });
+    let chord = std::f64::consts::PI * domain.area / domain.perimeter;
+    let mut facts = vec![
+        Fact::new("integrable", if integrable { "yes" } else { "no" }).remark(how),
+        Fact::new("mean_chord", chord)
+            .unit(length)
+            .remark("(pi area/perimeter)"),
+        Fact::new("mean_chord_measured", measured.mean_chord)
+            .error(measured.mean_chord_error)
+            .unit(length)
+            .remark(format!("(over {BOUNCES} bounces)")),
+    ];
+    let Some(horizon) = measured.horizon_bounces else {
+        facts.push(Fact::new("lyapunov_per_bounce", Cell::Empty).error(measured.lyapunov_error).remark(
+            "compatible with zero: near rays separate as a power of time, and no prediction horizon exists",
+        ));
+        return facts;
+    };
+    let per_length = match length {
+        "" => String::new(),
+        unit => format!("1/{unit}"),
+    };
+    facts.extend([
+        Fact::new("lyapunov_per_bounce", measured.lyapunov_per_bounce)
+            .error(measured.lyapunov_error)
+            .remark("(mean over all of phase space)"),
+        Fact::new("lyapunov_per_length", measured.lyapunov_per_length)
+            .error(measured.lyapunov_error / measured.mean_chord)
+            .unit(per_length),
+        Fact::new("prediction_horizon", horizon.round())
+            .unit("bounces")
+            .remark(format!(
+                "(a start known to {} of the size is lost after that)",
+                significant(KNOWN_TO, 3)
+            )),
+    ]);
+    if measured.escaped > 0 {
+        facts.push(
+            Fact::new("escaped", measured.escaped)
+                .remark("trajectories left through a wall: please report this shape"),
+        );
+    }
+    facts
 }
 
 fn notes(subject: &Subject) -> Vec<Note> {
