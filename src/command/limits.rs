@@ -22,6 +22,8 @@ const SLACK: f64 = 1e-6;
 /// Longest orbit that is looked for without being asked, in mean chords of one symmetry copy of the shape: the number of
 /// orbits grows exponentially with this number, and so does the time of the search, which is about a second here.
 const MOST_CHORDS: f64 = 9.0;
+/// The same for polygons, whose strips grow in number only as a power of the length.
+const MOST_POLYGON_CHORDS: f64 = 25.0;
 /// Significant digits of numbers that are chosen here.
 const DIGITS: usize = 3;
 /// Largest number of bounces that can be asked for.
@@ -198,7 +200,9 @@ impl Plan {
             }
             None => (
                 ENOUGH / wanted,
-                format!("{ENOUGH}/(smoothing width): the next one counts 0.011 of its term"),
+                format!(
+                    "{ENOUGH}/(smoothing width in k): the next one would count 0.011 of its term"
+                ),
             ),
         };
         self.limits.max_length = length;
@@ -207,19 +211,23 @@ impl Plan {
         let reason = if asked.is_some() {
             "as asked"
         } else if from_length {
-            "3/(longest orbit)"
+            "width in k = 3/(longest orbit)"
         } else {
             "the default"
+        };
+        let constant = match units.column() {
+            "k" => String::new(),
+            _ => format!(
+                " there, {} in k throughout",
+                significant(self.width, DIGITS)
+            ),
         };
         self.choices.push((
             "smoothing".into(),
             format!(
-                "{} mean spacings at the middle of the window ({reason}): a Gaussian of standard deviation {} in {}, {} in k \
-                 throughout",
+                "{} mean spacings at the middle of the window ({reason}): Gaussian of standard deviation {}{constant}",
                 significant(self.width / self.spacing, DIGITS),
                 subject.level(self.width_in_units(subject), DIGITS),
-                units.column(),
-                significant(self.width, DIGITS),
             ),
         ));
         self.choices.push((
@@ -251,6 +259,9 @@ impl Plan {
             });
         }
         let units = &subject.system.units;
+        if self.width > units.k(self.window.to) - units.k(self.window.from) {
+            self.notes.push(Note::WiderThanWindow);
+        }
         let reach = REACH * self.width;
         if units.k(self.window.from) < reach {
             self.notes.push(Note::NearZero {
@@ -273,17 +284,16 @@ const REACH: f64 = 5.0;
 
 /// The longest orbits that are looked for without being asked.
 fn longest_default(subject: &Subject) -> f64 {
-    let domain = &subject.system.domain;
-    if subject.integrable.is_some()
-        || domain
-            .walls
-            .iter()
-            .all(orbitsum::billiard::Wall::is_straight)
-    {
-        // The number of families grows as a power of the length only.
+    if subject.integrable.is_some() {
+        // Tori are listed without a search.
         return f64::INFINITY;
     }
-    MOST_CHORDS * copy_chord(subject)
+    let chords = if subject.system.domain.walls.iter().all(Wall::is_straight) {
+        MOST_POLYGON_CHORDS
+    } else {
+        MOST_CHORDS
+    };
+    chords * copy_chord(subject)
 }
 
 /// Mean chord of one symmetry copy of the domain, pi area/perimeter, with the pieces of axes that bound it: its measures

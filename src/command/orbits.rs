@@ -33,7 +33,7 @@ const COLUMNS: [&str; 12] = [
 /// Rows of the table for people.
 const SHOWN_ROWS: usize = 40;
 /// Words longer than this are cut in the table for people.
-const LONGEST_WORD: usize = 40;
+const LONGEST_WORD: usize = 44;
 
 pub(super) fn run(typed: &Orbits, options: &Options) -> Result<Answer, CommandError> {
     let wishes = Wishes::of_limits(&typed.limits)?;
@@ -246,7 +246,14 @@ impl Entry {
             _ => "family",
         };
         Self {
-            word: format!("{}, {} turns", family.kind, family.winding),
+            word: match family.winding {
+                0 => family.kind.to_string(),
+                turns => format!(
+                    "{}, {}",
+                    family.kind,
+                    counted(turns as usize, "turn", "turns")
+                ),
+            },
             bounces: family.bounces as usize,
             length: family.length,
             trace: None,
