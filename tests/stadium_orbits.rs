@@ -1,125 +1,74 @@
-//! Orbit counts of the stadium.
+//! Periodic orbits of the stadium with radius 1 and half straight 1.
 
-use orbitsum::billiard::*;
-use orbitsum::orbit::*;
-use std::f64::consts::PI;
+use orbitsum::billiard::detect;
+use orbitsum::orbit::{Catalogue, Limits, Orbit, OrbitKind};
+use orbitsum::system;
+use std::path::Path;
 
-/// Stadium.
-#[allow(unreachable_pub)]
-pub fn stadium() -> Domain {
-    let line = |a: [f64; 2], b: [f64; 2]| {
-        Wall::new(
-            Shape::Line(Line {
-                start: Vec2::new(a[0], a[1]),
-                end: Vec2::new(b[0], b[1]),
-            }),
-            Condition::Dirichlet,
-        )
-    };
-    let arc = |c: f64, from: f64| {
-        Wall::new(
-            Shape::Arc(Arc {
-                center: Vec2::new(c, 0.0),
-                radius: 1.0,
-                from,
-                sweep: PI,
-            }),
-            Condition::Dirichlet,
-        )
-    };
-    Domain::new(vec![(
-        Role::Outer,
-        vec![
-            line([-1.0, -1.0], [1.0, -1.0]),
-            arc(1.0, -PI / 2.0),
-            line([1.0, 1.0], [-1.0, 1.0]),
-            arc(-1.0, PI / 2.0),
-        ],
-    )])
-    .expect("a stadium")
+fn find(max_length: f64, max_bounces: usize) -> Catalogue {
+    let domain = system::load(Path::new("billiards/stadium.toml"), &[])
+        .expect("a shipped file")
+        .domain;
+    let symmetry = detect(&domain);
+    Catalogue::find(
+        &domain,
+        &symmetry,
+        Limits {
+            max_length,
+            max_bounces,
+        },
+    )
 }
 
+fn counted(catalogue: &Catalogue) -> Vec<&Orbit> {
+    catalogue
+        .orbits
+        .iter()
+        .filter(|orbit| matches!(orbit.kind, OrbitKind::Isolated | OrbitKind::Axis))
+        .collect()
+}
+
+/// Lengths from elementary geometry: the long axis 4, the rhombus through both tips and the middles of the straight walls
+/// 2 sqrt 5, the bow tie and the rectangle 2 + 2 sqrt 2, and 5 (four hits of the arcs under 60 degrees); the others from an
+/// independent brute-force search (close returns from a start grid).
 #[test]
-fn counts() {
-    let domain = stadium();
-    let symmetry = detect(&domain);
-    for (length, bounces) in [(10.0, 12), (10.0, 20), (12.0, 12), (12.0, 20)] {
-        let start = std::time::Instant::now();
-        let catalogue = Catalogue::find(
-            &domain,
-            &symmetry,
-            Limits {
-                max_length: length,
-                max_bounces: bounces,
-            },
-        );
-        println!("{:?}", start.elapsed());
-        for pass in &catalogue.passes {
-            println!("{pass:?}");
-        }
-        let count = catalogue
-            .orbits
-            .iter()
-            .filter(|o| o.kind != OrbitKind::Joint)
-            .count();
-        println!(
-            "{length} {bounces}: {count} {} partner2 {}",
-            catalogue.orbits.len(),
-            catalogue.orbits.iter().filter(|o| o.partner == 2).count()
-        );
-        for partner in [1u8, 2] {
-            let on = |o: &&Orbit| {
-                o.points
-                    .iter()
-                    .any(|p| p.point.x.abs() < 1e-9 || p.point.y.abs() < 1e-9)
-            };
-            let ony = |o: &&Orbit| o.points.iter().any(|p| p.point.x.abs() < 1e-9);
-            let onx = |o: &&Orbit| o.points.iter().any(|p| p.point.y.abs() < 1e-9);
-            let center = |o: &&Orbit| {
-                (0..o.points.len()).any(|i| {
-                    let p = o.points[i];
-                    (p.point.x * p.direction.y - p.point.y * p.direction.x).abs() < 1e-9
-                })
-            };
-            let v: Vec<Orbit> = catalogue
-                .orbits
-                .iter()
-                .filter(|o| o.kind == OrbitKind::Isolated && o.partner == partner)
-                .cloned()
-                .collect();
-            println!(
-                "STAT {length} {bounces} partner {partner}: {} onaxis {} x0 {} y0 {} center {} twice-copies {:?}",
-                v.len(),
-                v.iter().filter(on).count(),
-                v.iter().filter(ony).count(),
-                v.iter().filter(onx).count(),
-                v.iter().filter(center).count(),
-                [1, 2, 4].map(|c| v.iter().filter(|o| o.copies == c).count())
-            );
-            let same: Vec<String> = v
-                .windows(2)
-                .filter(|w| (w[0].length - w[1].length).abs() < 1e-8)
-                .map(|w| format!("{:.6}", w[0].length))
-                .collect();
-            println!("STAT same {same:?}");
-        }
-        if length == 10.0 {
-            for orbit in catalogue.orbits.iter() {
-                println!(
-                    "{} {:.9} n={} tr={:.4} det-1={:.1e} mu={:?} {:?} p{} g={} copies={} res={:.1e}",
-                    orbit.word,
-                    orbit.length,
-                    orbit.bounces(),
-                    orbit.trace(),
-                    orbit.monodromy.determinant() - 1.0,
-                    orbit.index(),
-                    orbit.kind,
-                    orbit.partner,
-                    symmetry.elements[orbit.symmetry].name,
-                    orbit.copies,
-                    orbit.residual
-                );
-            }
-        }
+fn shortest_lengths() {
+    let lengths: Vec<f64> = counted(&find(5.07, 20))
+        .iter()
+        .map(|orbit| orbit.length)
+        .collect();
+    let expected = [
+        4.0,
+        2.0 * 5f64.sqrt(),
+        2.0 + 8f64.sqrt(),
+        2.0 + 8f64.sqrt(),
+        4.889431983,
+        5.0,
+        5.014969587,
+        5.061467459,
+    ];
+    for (length, wanted) in lengths.iter().zip(expected) {
+        assert!((length - wanted).abs() < 1e-9, "{length} against {wanted}");
     }
+}
+
+/// Every orbit listed: det M = 1, stationary length, and a search that has settled.
+#[test]
+fn every_orbit_is_sound() {
+    let catalogue = find(12.0, 20);
+    for orbit in &catalogue.orbits {
+        assert!(
+            (orbit.determinant - 1.0).abs() < 1e-9,
+            "{}: det {}",
+            orbit.word,
+            orbit.determinant
+        );
+        assert!(
+            orbit.residual < 1e-11,
+            "{}: residual {}",
+            orbit.word,
+            orbit.residual
+        );
+    }
+    assert_eq!(catalogue.passes.last().map(|pass| pass.added), Some(0));
 }

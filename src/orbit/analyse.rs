@@ -82,10 +82,13 @@ pub(crate) fn finish(
     let joint = points
         .iter()
         .any(|point| at_joint(setting.domain, point.point));
-    let kind = match (joint, fixed_by.len()) {
-        (true, _) => OrbitKind::Joint,
-        (false, 1) => OrbitKind::Isolated,
-        (false, _) => OrbitKind::Axis,
+    // A flat orbit on an axis closes both with and without the reflection: in one of the two ways with its whole strip.
+    let flat_family = curved.is_none() && fixed_by.len() > 1;
+    let kind = match (joint, flat_family, fixed_by.len()) {
+        (true, ..) => OrbitKind::Joint,
+        (_, true, _) => OrbitKind::InStrip,
+        (_, _, 1) => OrbitKind::Isolated,
+        _ => OrbitKind::Axis,
     };
     let dirichlet = points
         .iter()

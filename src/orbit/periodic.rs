@@ -11,6 +11,8 @@ pub enum OrbitKind {
     Axis,
     /// Has a bounce at a joint.
     Joint,
+    /// A symmetric orbit inside a strip: the strip counts it, and only what the reflections that fix it add is its own.
+    InStrip,
 }
 
 impl OrbitKind {
@@ -21,6 +23,7 @@ impl OrbitKind {
             Self::Isolated => "isolated",
             Self::Axis => "axis",
             Self::Joint => "joint",
+            Self::InStrip => "family",
         }
     }
 }
