@@ -111,8 +111,8 @@ pub(crate) fn finish(
         chain: None,
         points,
     };
-    orbit.closures = closures(setting, &orbit, curved.map(|(_, form)| form));
     orbit.chain = curved.and_then(|(path, form)| chain(setting, &orbit, path, form));
+    orbit.closures = closures(setting, &orbit, curved.map(|(_, form)| form));
     orbit
 }
 
@@ -338,7 +338,8 @@ fn closures(setting: &Setting, orbit: &Orbit, form: Option<&LengthForm>) -> Vec<
             };
             // det(h M - 1) = 2 - tr(h M) for det M = 1.
             let determinant = (2.0 - sign * power.trace()).abs();
-            if determinant < SINGULAR {
+            // The chain coefficients of a joint stay finite where the one-sided determinant vanishes.
+            if determinant < SINGULAR && orbit.chain.is_none() {
                 continue;
             }
             let negative = form.map_or(0, |form| {

@@ -96,7 +96,7 @@ pub struct Orbit {
     /// The elements that fix the orbit point by point, the identity first.
     pub fixed_by: Vec<Fixing>,
     /// Closures of all repetitions up to the length limit; those with a vanishing determinant (which belong to a family)
-    /// are left out.
+    /// are left out, except where chain coefficients take their place.
     pub closures: Vec<Closure>,
     /// Share of the isolated term that counts: 1, or 1/2 for each side of a joint.
     pub weight: f64,
