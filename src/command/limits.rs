@@ -4,7 +4,7 @@ use super::arguments::{Density, OrbitLimits};
 use super::error::CommandError;
 use super::note::Note;
 use super::subject::Subject;
-use super::text::{counted, significant};
+use super::text::significant;
 use super::value::{self, Window};
 use orbitsum::baseline::{Weyl, weyl};
 use orbitsum::billiard::Wall;
@@ -23,7 +23,7 @@ const SLACK: f64 = 1e-6;
 /// orbits grows exponentially with this number, and so does the time of the search, which is about a second here.
 const MOST_CHORDS: f64 = 9.0;
 /// The same for polygons, whose strips grow in number only as a power of the length.
-const MOST_POLYGON_CHORDS: f64 = 25.0;
+const MOST_POLYGON_CHORDS: f64 = 40.0;
 /// Significant digits of numbers that are chosen here.
 const DIGITS: usize = 3;
 /// Largest number of bounces that can be asked for.
@@ -373,98 +373,6 @@ fn rounded_down(value: f64) -> f64 {
 /// Value of the last of the digits that are kept.
 fn digit_unit(value: f64) -> f64 {
     10f64.powi(value.abs().max(f64::MIN_POSITIVE).log10().floor() as i32 + 1 - DIGITS as i32)
-}
-
-/// Notes about what the sum leaves out that would show at k under a smoothing of standard deviation `width`, largest first.
-pub(super) fn omissions(
-    subject: &Subject,
-    catalogue: &orbitsum::orbit::Catalogue,
-    k: f64,
-    width: f64,
-) -> Vec<Note> {
-    let mut kept: Vec<(f64, Note)> = Vec::new();
-    let mut kinds: Vec<(String, usize, f64, f64)> = Vec::new();
-    for omission in &catalogue.omissions {
-        let size = omission.size_at(k, width);
-        let what = omission.kind.to_string();
-        match kinds.iter_mut().find(|(known, ..)| *known == what) {
-            Some((_, count, length, largest)) => {
-                *count += omission.count;
-                *length = length.min(omission.length);
-                *largest = largest.max(size);
-            }
-            None => kinds.push((what, omission.count, omission.length, size)),
-        }
-    }
-    for (what, count, length, size) in kinds {
-        if size >= LEAST_OMISSION {
-            let length = subject.length(length, 4);
-            kept.push((
-                size,
-                Note::LeftOut {
-                    what,
-                    count,
-                    length,
-                    size,
-                },
-            ));
-        }
-    }
-    kept.sort_by(|a, b| b.0.total_cmp(&a.0));
-    kept.into_iter().map(|(_, note)| note).collect()
-}
-
-/// Omissions below this many levels are far below what the orbit sum is good for.
-const LEAST_OMISSION: f64 = 1e-4;
-
-/// How the search knows that it is complete, in words.
-pub(super) fn completeness(catalogue: &orbitsum::orbit::Catalogue) -> (String, Vec<Note>) {
-    if catalogue.integrable.is_some() {
-        return (
-            "complete: the tori of this integrable shape are listed from their winding numbers, no search was needed".into(),
-            Vec::new(),
-        );
-    }
-    let mut sentences = Vec::new();
-    let mut notes = Vec::new();
-    for (what, passes) in [
-        ("from curved walls", &catalogue.passes),
-        ("between straight walls", &catalogue.flat_passes),
-    ] {
-        let (Some(last), Some(first)) = (passes.last(), passes.first()) else {
-            continue;
-        };
-        let before = passes.len().checked_sub(2).map(|index| &passes[index]);
-        let rays: usize = passes.iter().map(|pass| pass.rays).sum();
-        match before {
-            Some(before) if last.added == 0 => sentences.push(format!(
-                "search {what}: a start set of {} points, {} times finer than the one before ({} points, rays {} rad apart), \
-                 added nothing ({}, {rays} rays)",
-                last.sources,
-                significant(before.smallest_gap / last.smallest_gap, 2),
-                before.sources,
-                significant(before.smallest_gap, 2),
-                counted(passes.len(), "pass", "passes"),
-            )),
-            None if first.added == 0 => {
-                sentences.push(format!("search {what}: nothing found with {} points", first.sources));
-            }
-            _ => {
-                sentences.push(format!(
-                    "search {what}: not settled after {}: the last one, with {} points and rays {} rad apart, still added {}",
-                    counted(passes.len(), "pass", "passes"),
-                    last.sources,
-                    significant(last.smallest_gap, 2),
-                    last.added,
-                ));
-                notes.push(Note::NotSettled {
-                    added: last.added,
-                    passes: passes.len(),
-                });
-            }
-        }
-    }
-    (sentences.join("\n"), notes)
 }
 
 #[cfg(test)]

@@ -2,6 +2,7 @@
 
 use super::answer::Answer;
 use super::arguments::Orbits;
+use super::completeness;
 use super::error::CommandError;
 use super::limits::{self, Plan, Wishes};
 use super::options::Options;
@@ -57,8 +58,8 @@ fn answer(subject: &Subject, plan: &Plan, catalogue: &Catalogue) -> Answer {
     for (index, entry) in entries.iter().enumerate() {
         table.push(entry.row(index + 1));
     }
-    let (completeness, mut notes) = limits::completeness(catalogue);
-    notes.extend(limits::omissions(
+    let (completeness, mut notes) = completeness::of_search(catalogue);
+    notes.extend(completeness::omissions(
         subject,
         catalogue,
         plan.middle,
