@@ -454,7 +454,7 @@ fn beams(
     )
 }
 
-/// What the edge at ends[0] of a strip that reaches to ends[1] runs into.
+/// What the edge at `ends[0]` of a strip that reaches to `ends[1]` runs into.
 fn classify(
     setting: &Setting,
     source: &Source,
