@@ -10,6 +10,9 @@ use super::{Domain, Event, Origin, Ray, Shape, Tracer, Vec2, cross, incidence};
 /// A tangent turn from which on two walls meet in a corner for sure, radians.
 const CLEAR_CORNER: f64 = 1e-2;
 
+/// Stands for no wall among the numbers of walls.
+const NO_WALL: f64 = -1.0;
+
 /// The bounce map of a domain of straight walls and arcs, for several rays at a time.
 ///
 /// It agrees with [`Tracer`] to rounding except for rays that graze a joint, where a ray may be given to the wall before or
@@ -41,7 +44,7 @@ struct Constants {
     curvature: f64,
     /// Corners at the ends; far away where there are none.
     corners: [Vec2; 2],
-    /// The other face of a thin wall, or the wall itself.
+    /// The other face of a thin wall, if this is one.
     twin: f64,
 }
 
@@ -142,7 +145,8 @@ impl<'a> Lanes<'a> {
         })
     }
 
-    /// One bounce of all rays. A lane whose ray ends is reported and left where it was: replace its ray.
+    /// One bounce of all rays. A lane whose ray ends is reported; it is put back to where it was before, and
+    /// ends again unless it is replaced.
     pub fn bounce<const N: usize>(&self, rays: &mut Rays<N>) -> [Option<Ending>; N] {
         let mut best = [f64::INFINITY; N];
         let mut wall = [0.0; N];
@@ -264,6 +268,18 @@ impl<'a> Lanes<'a> {
         }
     }
 
+    /// Puts a lane back to where it was, so that its numbers stay finite.
+    fn turn_back<const N: usize>(&self, lane: usize, before: &Rays<N>, rays: &mut Rays<N>) {
+        rays.x[lane] = before.x[lane];
+        rays.y[lane] = before.y[lane];
+        rays.direction_x[lane] = before.direction_x[lane];
+        rays.direction_y[lane] = before.direction_y[lane];
+        rays.wall[lane] = before.wall[lane];
+        rays.distance[lane] = 0.0;
+        rays.curvature[lane] = 0.0;
+        rays.cosine[lane] = 1.0;
+    }
+
     /// Traces the ray of one lane again, through a corner if it may, until it is on a wall.
     fn redo<const N: usize>(
         &self,
@@ -294,10 +310,16 @@ impl<'a> Lanes<'a> {
                     distance += hit.distance;
                     match self.tracer.pass_corner(ray.direction, vertex, hit.point) {
                         Some((next, _)) => ray = next,
-                        None => return Some(Ending::Stopped),
+                        None => {
+                            self.turn_back(lane, before, rays);
+                            return Some(Ending::Stopped);
+                        }
                     }
                 }
-                Event::Escaped => return Some(Ending::Escaped),
+                Event::Escaped => {
+                    self.turn_back(lane, before, rays);
+                    return Some(Ending::Escaped);
+                }
             }
         }
     }
@@ -307,7 +329,7 @@ impl Constants {
     fn new(domain: &Domain, tracer: &Tracer, w: usize) -> Self {
         let far = Vec2::repeat(f64::MAX.sqrt());
         let corners = tracer.corners[w].map(|corner| corner.unwrap_or(far));
-        let twin = domain.walls[w].twin.unwrap_or(w) as f64;
+        let twin = domain.walls[w].twin.map_or(NO_WALL, |twin| twin as f64);
         let constants = |normal: Vec2, center: Vec2, curvature: f64| Self {
             normal,
             center,
@@ -426,7 +448,12 @@ mod tests {
                         panic!("{ray:?} does not bounce");
                     };
                     let next = Tracer::reflect(ray.direction, &hit);
-                    assert_eq!(all.wall[l] as usize, hit.wall);
+                    assert_eq!(
+                        all.wall[l] as usize,
+                        hit.wall,
+                        "{ray:?} {hit:?} {:?}",
+                        (all.x[l], all.y[l], all.distance[l])
+                    );
                     let point = Vec2::new(all.x[l], all.y[l]);
                     let direction = Vec2::new(all.direction_x[l], all.direction_y[l]);
                     // Hits of a dispersing arc are as ill-conditioned as they are flat.
