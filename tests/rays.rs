@@ -178,15 +178,15 @@ impl<'a> Bench<'a> {
             Event::Escaped => panic!("{}: {ray:?} escapes", self.name),
         };
         self.check_hit(ray, &hit);
-        if count % INSIDE == 0 {
+        if count.is_multiple_of(INSIDE) {
             self.check_inside(ray, &hit, random.uniform());
         }
-        if count % SEARCHED == 0 {
+        if count.is_multiple_of(SEARCHED) {
             self.check_nearest(ray, &hit);
         }
         match event {
             Event::Wall(hit) => {
-                if count % REVERSED == 0 {
+                if count.is_multiple_of(REVERSED) {
                     self.check_reversed(ray, &hit);
                 }
                 Some(self.reflected(ray, &hit))

@@ -10,6 +10,8 @@ use super::{Domain, Event, Origin, Ray, Shape, Tracer, Vec2, cross, incidence};
 /// A tangent turn from which on two walls meet in a corner for sure, radians.
 const CLEAR_CORNER: f64 = 1e-2;
 
+/// Stands for no hit.
+const FAR: f64 = f64::INFINITY;
 /// Stands for no wall among the numbers of walls.
 const NO_WALL: f64 = -1.0;
 
@@ -214,22 +216,32 @@ impl<'a> Lanes<'a> {
         let slack = self.tracer.slack;
         let index = line.wall as f64;
         let (tx, ty) = (line.tangent.x, line.tangent.y);
+        let (low, high) = (-slack.overlap, line.length + slack.overlap);
         for l in 0..N {
             let (dx, dy) = (rays.direction_x[l], rays.direction_y[l]);
             let (x, y) = (rays.x[l] - line.start.x, rays.y[l] - line.start.y);
             let rate = ty * dx - tx * dy;
-            let distance = (tx * y - ty * x) / rate;
-            let mut takes = (rate > 0.0)
-                & (distance < best[l])
-                & (distance > -slack.behind)
-                & (rays.wall[l] != index)
-                & (twin[l] != index);
+            let mut distance = (tx * y - ty * x) / rate;
+            let along = tx * (x + dx * distance) + ty * (y + dy * distance);
+            // One plain selection after the other: the compiler makes them vector instructions.
+            distance = if rate > 0.0 { distance } else { FAR };
+            distance = if distance > -slack.behind {
+                distance
+            } else {
+                FAR
+            };
+            distance = if rays.wall[l] != index { distance } else { FAR };
+            distance = if twin[l] != index { distance } else { FAR };
             if BOUNDED {
-                let along = tx * (x + dx * distance) + ty * (y + dy * distance);
-                takes &= (along >= -slack.overlap) & (along <= line.length + slack.overlap);
+                distance = if along >= low { distance } else { FAR };
+                distance = if along <= high { distance } else { FAR };
             }
-            best[l] = if takes { distance } else { best[l] };
-            wall[l] = if takes { index } else { wall[l] };
+            wall[l] = if distance < best[l] { index } else { wall[l] };
+            best[l] = if distance < best[l] {
+                distance
+            } else {
+                best[l]
+            };
         }
     }
 
@@ -244,27 +256,39 @@ impl<'a> Lanes<'a> {
     ) {
         let slack = self.tracer.slack;
         let index = arc.wall as f64;
+        // A focusing arc may be touched from outside by rounding. From itself it is met at -2 along; a dispersing arc is
+        // never met again by a ray that leaves it (the factor makes the distance hugely negative, as along is positive).
         let focuses = arc.turn > 0.0;
+        let least = if focuses { -slack.overlap } else { 0.0 };
+        let own = if focuses { -2.0 } else { f64::NEG_INFINITY };
         for l in 0..N {
             let (dx, dy) = (rays.direction_x[l], rays.direction_y[l]);
             let (x, y) = (rays.x[l] - arc.center.x, rays.y[l] - arc.center.y);
             let along = dx * x + dy * y;
             let aside = (dx * y - dy * x).abs();
-            let own = rays.wall[l] == index;
             let margin = arc.radius - aside;
-            // A focusing arc may be touched from outside by rounding.
-            let touches = margin >= if focuses { -slack.overlap } else { 0.0 };
             let root = (margin.max(0.0) * (arc.radius + aside)).sqrt();
-            let other = -along + arc.turn * root;
-            let distance = if own { -2.0 * along } else { other };
+            let mut distance = -along + arc.turn * root;
+            distance = if margin >= least { distance } else { FAR };
+            distance = if rays.wall[l] != index {
+                distance
+            } else {
+                own * along
+            };
             let reach = (x + dx * distance) * arc.middle.x + (y + dy * distance) * arc.middle.y;
-            let takes = (distance < best[l])
-                & (distance > -slack.behind)
-                & (reach >= arc.reach)
-                & ((own & focuses) | (!own & touches))
-                & (twin[l] != index);
-            best[l] = if takes { distance } else { best[l] };
-            wall[l] = if takes { index } else { wall[l] };
+            distance = if reach >= arc.reach { distance } else { FAR };
+            distance = if distance > -slack.behind {
+                distance
+            } else {
+                FAR
+            };
+            distance = if twin[l] != index { distance } else { FAR };
+            wall[l] = if distance < best[l] { index } else { wall[l] };
+            best[l] = if distance < best[l] {
+                distance
+            } else {
+                best[l]
+            };
         }
     }
 
