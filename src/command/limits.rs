@@ -19,10 +19,8 @@ const DEFAULT_SMOOTHING: f64 = 2.0;
 pub(super) const ENOUGH: f64 = 3.0;
 /// Rounding of width x length that is no reason for a warning.
 const SLACK: f64 = 1e-6;
-/// Longest orbit that is looked for without being asked, in mean chords of one symmetry copy of the shape: the number of
-/// orbits grows exponentially with this number, and so does the time of the search, which is about a second here.
-const MOST_CHORDS: f64 = 9.0;
-/// The same for polygons, whose strips grow in number only as a power of the length.
+/// Longest orbit of a polygon that is looked for without being asked, in mean chords of one symmetry copy of the shape: the
+/// strips grow in number as a power of the length, and so does the time of the search.
 const MOST_POLYGON_CHORDS: f64 = 40.0;
 /// Significant digits of numbers that are chosen here.
 const DIGITS: usize = 3;
@@ -188,7 +186,10 @@ impl Plan {
             (None, None) => None,
         };
         let wanted = asked.unwrap_or(DEFAULT_SMOOTHING * self.spacing);
-        let most = longest_default(subject);
+        let most = match wishes.length {
+            Some(length) => length,
+            None => longest_default(subject, ENOUGH / wanted),
+        };
         let (length, why) = match wishes.length {
             Some(length) => (length, "as asked".to_owned()),
             None if ENOUGH / wanted > most => {
@@ -282,18 +283,24 @@ impl Plan {
 /// Distance in standard deviations at which a Gaussian has ended.
 const REACH: f64 = 5.0;
 
-/// The longest orbits that are looked for without being asked.
-fn longest_default(subject: &Subject) -> f64 {
+/// The longest orbits, up to `wanted`, that are looked for without being asked.
+fn longest_default(subject: &Subject, wanted: f64) -> f64 {
+    let domain = &subject.system.domain;
     if subject.integrable.is_some() {
         // Tori are listed without a search.
-        return f64::INFINITY;
+        return wanted;
     }
-    let chords = if subject.system.domain.walls.iter().all(Wall::is_straight) {
-        MOST_POLYGON_CHORDS
+    if domain.walls.iter().all(Wall::is_straight) {
+        return wanted.min(MOST_POLYGON_CHORDS * copy_chord(subject));
+    }
+    let affordable = Limits::up_to(wanted, domain)
+        .affordable(domain, &subject.symmetry)
+        .max_length;
+    if affordable < wanted {
+        rounded_down(affordable)
     } else {
-        MOST_CHORDS
-    };
-    chords * copy_chord(subject)
+        wanted
+    }
 }
 
 /// Mean chord of one symmetry copy of the domain, pi area/perimeter, with the pieces of axes that bound it: its measures
