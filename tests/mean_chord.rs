@@ -59,7 +59,6 @@ fn mean_chord_is_pi_times_area_over_perimeter() {
         let domain = shape(name, settings);
         let found = measure(&domain);
         let exact = PI * domain.area / domain.perimeter;
-        println!("{name} {settings:?}: {found:?}, mean chord {exact}");
         let error = found.mean_chord_error;
         assert!(
             (found.mean_chord - exact).abs() < STANDARD_ERRORS * error,
