@@ -184,7 +184,7 @@ fn add(symmetry: &Symmetry, found: &mut Vec<Found>, start: Start, visits: &[Visi
         .iter()
         .all(|&later| !same(symmetry, phases[0], later));
     // Newton may also run into a ray along the wall, which closes at once.
-    if length > MAX_LENGTH + 1e-9 || length < 1e-3 || !primitive {
+    if !(1e-3..=MAX_LENGTH + 1e-9).contains(&length) || !primitive {
         return;
     }
     let reversed = (visits[0].point, -phases[0].1);
