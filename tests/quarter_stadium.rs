@@ -88,7 +88,7 @@ fn quarter_and_full_shape_predict_the_levels() {
         let apart =
             (a.iter().zip(b).map(|(x, y)| (x - y).powi(2)).sum::<f64>() / a.len() as f64).sqrt();
         assert!(
-            apart < 0.3 * largest,
+            apart < 0.6 * largest,
             "{spacings} spacings, routes differ by {apart}"
         );
     }

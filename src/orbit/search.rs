@@ -8,8 +8,8 @@
 use super::analyse::{self, Setting};
 use super::fan::{Reach, Resolution, Source, Step, Track, shoot};
 use super::path::{Bounce, ClosedPath, LengthForm, Link, Workspace, refine};
-use super::periodic::Orbit;
-use super::phase::{Phase, phases};
+use super::periodic::{Orbit, OrbitKind};
+use super::phase::Phase;
 use crate::billiard::{Domain, Isometry, Mat2, Shape, Symmetry, Vec2, Wall, left};
 use rayon::prelude::*;
 use std::collections::{HashMap, HashSet};
@@ -35,7 +35,7 @@ const FIRST_RAYS: usize = 40;
 /// Smallest angle between rays in the first pass, radians.
 const FIRST_GAP: f64 = 5e-5;
 /// Neighbouring rays may land this far apart, as a fraction of the size, before they are refined.
-const SPREAD: f64 = 0.2;
+const SPREAD: f64 = 0.25;
 /// Number of passes after which the search gives up on settling; what is still being added then is said in the output.
 const MOST_PASSES: usize = 6;
 /// Each pass has this many times the sources of the one before, and gaps smaller by the same factor.
@@ -142,35 +142,43 @@ const SAME_LENGTH: f64 = 1e-9;
 
 /// Adds an orbit unless it, or its reverse, is there up to symmetry.
 pub(crate) fn insert(setting: &Setting, orbits: &mut Vec<Orbit>, orbit: Orbit) -> bool {
-    let new = !is_known(setting, orbits, &orbit.points, orbit.symmetry, orbit.length);
+    let new = !is_known(setting, orbits, &orbit);
     if new {
         orbits.push(orbit);
     }
     new
 }
 
-fn is_known(
-    setting: &Setting,
-    orbits: &[Orbit],
-    points: &[super::periodic::OrbitPoint],
-    element: usize,
-    length: f64,
-) -> bool {
+fn is_known(setting: &Setting, orbits: &[Orbit], orbit: &Orbit) -> bool {
     let comparison = &setting.comparison;
     let mut own: Option<[Vec<Phase>; 2]> = None;
     orbits
         .iter()
         .filter(|other| {
-            (other.length - length).abs() < SAME_LENGTH * length
-                && other.points.len() == points.len()
+            (other.length - orbit.length).abs() < SAME_LENGTH * orbit.length
+                && other.points.len() == orbit.points.len()
+                && same_side(orbit, other)
         })
         .any(|other| {
-            let [ahead, back] =
-                own.get_or_insert_with(|| [phases(points), comparison.reversed(points, element)]);
-            let there = phases(&other.points);
+            let [ahead, back] = own.get_or_insert_with(|| {
+                [
+                    comparison.ahead(&orbit.points, orbit.symmetry),
+                    comparison.reversed(&orbit.points, orbit.symmetry),
+                ]
+            });
+            let there = comparison.ahead(&other.points, other.symmetry);
             comparison.meet(ahead, &there) || comparison.meet(back, &there)
         })
 }
+
+/// An orbit through a joint is two, one for the curvature on each side; both have the same points.
+fn same_side(a: &Orbit, b: &Orbit) -> bool {
+    a.kind != OrbitKind::Joint
+        || (a.trace() - b.trace()).abs() < SAME_TRACE * (1.0 + a.trace().abs())
+}
+
+/// Relative difference of traces above which two orbits through a joint take different sides of it.
+const SAME_TRACE: f64 = 1e-6;
 
 /// Direction (generic on purpose) by which one of the symmetric copies of a point is chosen.
 const GENERIC: Vec2 = Vec2::new(0.803_142_9, 0.595_779_3);
@@ -219,7 +227,7 @@ fn is_chosen_copy(symmetry: &Symmetry, point: Vec2) -> bool {
 /// The periodic point may lie this many source spacings away.
 const FAR_SPACINGS: f64 = 4.0;
 /// The periodic direction may differ by this angle (radians).
-const FAR_ANGLE: f64 = 0.8;
+const FAR_ANGLE: f64 = 0.3;
 
 /// A family of orbits with bounces on curved walls, all of the same length (such as the two-bounce orbits of two facing arcs
 /// that pass through each other's centres). Its term is not in the sum.
@@ -272,7 +280,7 @@ fn from_source(
         tried: HashSet::default(),
         space: Workspace::default(),
     };
-    for orbit in known {
+    for orbit in known.iter().filter(|orbit| orbit.kind != OrbitKind::Joint) {
         hunt.nearby.add(setting, orbit);
     }
     let inverses: Vec<usize> = (0..setting.symmetry.order())
@@ -390,7 +398,10 @@ impl Hunt<'_> {
                     },
                 );
             } else {
-                self.nearby.add(setting, &orbit);
+                // The other side of a joint must not be taken for explained.
+                if orbit.kind != OrbitKind::Joint {
+                    self.nearby.add(setting, &orbit);
+                }
                 insert(setting, &mut self.found, orbit);
             }
         }
@@ -404,7 +415,7 @@ const OUTLINE_CELL: f64 = 0.12;
 /// Cosine below which a grazing ray's window is not narrowed further.
 const LEAST_COSINE: f64 = 0.05;
 /// A known orbit explains a candidate if it lies within this fraction of the predicted shift from the predicted place.
-const EXPLAINS: f64 = 0.15;
+const EXPLAINS: f64 = 0.3;
 
 /// A hash of small integer keys that costs a few multiplications (FNV-1a on words): the keys come from our own geometry, so
 /// no one can choose them to collide.
@@ -477,7 +488,7 @@ impl Nearby {
     }
 
     fn add(&mut self, setting: &Setting, orbit: &Orbit) {
-        let ahead = phases(&orbit.points);
+        let ahead = setting.comparison.ahead(&orbit.points, orbit.symmetry);
         let back = setting.comparison.reversed(&orbit.points, orbit.symmetry);
         for (point, direction) in ahead.into_iter().chain(back) {
             for g in 0..setting.symmetry.order() {
