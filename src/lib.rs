@@ -12,7 +12,7 @@
 //! * [`billiard`] holds walls, outline, symmetry group and the bounce map.
 //! * [`orbit`] finds periodic orbits and families and turns them into terms.
 //! * [`baseline`] counts levels smoothly (Weyl).
-//! * [`trace`] smooths and sums the terms.
+//! * [`trace`] smooths and sums the terms, and estimates how far the staircase strays from its smooth part.
 //! * [`levels`] reads level lists and smooths their staircase.
 //! * [`report`] draws pictures.
 

@@ -12,12 +12,12 @@ use std::path::Path;
 const RAYS: usize = 1_000_000;
 /// Rays per chunk, and bounces after which a new random start is drawn.
 const CHUNK: usize = 20_000;
-const BOUNCES: usize = 10;
+const BOUNCES: usize = 40;
 /// Adversarial starts per shape.
 const ADVERSARIAL: usize = 40_000;
 /// Every so many rays the slow checks are made.
-const INSIDE: usize = 4;
-const REVERSED: usize = 16;
+const INSIDE: usize = 32;
+const REVERSED: usize = 8;
 const SEARCHED: usize = 256;
 /// Distances (fractions of the domain's size) that hits may be off.
 const ACCURACY: f64 = 1e-9;
@@ -178,15 +178,15 @@ impl<'a> Bench<'a> {
             Event::Escaped => panic!("{}: {ray:?} escapes", self.name),
         };
         self.check_hit(ray, &hit);
-        if count % INSIDE == 0 {
+        if count.is_multiple_of(INSIDE) {
             self.check_inside(ray, &hit, random.uniform());
         }
-        if count % SEARCHED == 0 {
+        if count.is_multiple_of(SEARCHED) {
             self.check_nearest(ray, &hit);
         }
         match event {
             Event::Wall(hit) => {
-                if count % REVERSED == 0 {
+                if count.is_multiple_of(REVERSED) {
                     self.check_reversed(ray, &hit);
                 }
                 Some(self.reflected(ray, &hit))
@@ -332,8 +332,9 @@ impl<'a> Bench<'a> {
             .dot(&start.normal())
             .min(-ray.direction.dot(&Vec2::new(-hit.tangent.y, hit.tangent.x)));
         let end = self.domain.walls[hit.wall].frame(hit.t);
-        // Nor near a cusp, where both branches are one within rounding.
-        if slope < 1e-3 || start.speed.min(end.speed) < 1e-3 {
+        // Nor near a cusp or a tip, where both branches are one within rounding.
+        let short = hit.distance < 1e-7 * self.domain.size;
+        if slope < 1e-3 || short || start.speed.min(end.speed) < 1e-3 {
             return;
         }
         let back = Ray {
@@ -393,7 +394,7 @@ fn check(name: &str, domain: &Domain) {
             let mut ray = bench.adversarial(&mut random);
             for bounce in 0..4 {
                 let count = if bounce == 0 { start * 32 } else { start };
-                match bench.step(&ray, 4 * count, &mut random) {
+                match bench.step(&ray, count, &mut random) {
                     Some(next) => ray = next,
                     None => break,
                 }
@@ -415,9 +416,7 @@ fn shape(name: &str, settings: &[(&str, &str)]) -> Domain {
 }
 
 fn check_shape(name: &str, settings: &[(&str, &str)]) {
-    let started = std::time::Instant::now();
     check(&format!("{name} {settings:?}"), &shape(name, settings));
-    eprintln!("{name} {settings:?} {:?}", started.elapsed());
 }
 
 #[test]
@@ -450,7 +449,7 @@ fn lines_and_arcs() {
     ] {
         check_shape(name, &[]);
     }
-    check_shape("annulus", &[("r", "0.99")]);
+    check_shape("annulus", &[("r", "0.9")]);
     check_shape("stadium", &[("a", "0.001")]);
     check_shape("lemon", &[("d", "0.01")]);
     check_shape("lemon", &[("d", "1.95")]);

@@ -13,6 +13,8 @@ use super::{Curve, Hit, Ray, Vec2, cross};
 const ON_PIECE: f64 = 1e-7;
 /// A ray that runs parallel to the wall this close to its start (fraction of the piece) grazes it.
 const GRAZING: f64 = 1e-9;
+/// Tangents of two walls that meet smoothly may differ by this angle (radians) from rounding.
+const SAME_TANGENT: f64 = 1e-12;
 /// Steps after which the bracketed Newton iteration has long converged (bisection alone needs 52).
 const LARGEST_STEPS: usize = 80;
 /// Newton steps on the polynomial: it is nearly linear, and the error is squared by each.
@@ -166,11 +168,13 @@ impl CurvedWall {
         if !piece.focuses() {
             return None;
         }
-        let parallel = self.parallel_point(piece, sight.direction)?;
         let forward = sight
             .direction
             .dot(&(piece.start_tangent + piece.end_tangent))
             > 0.0;
+        let Some(parallel) = self.parallel_point(piece, sight.direction) else {
+            return self.grazes_end(piece, sight, own, forward);
+        };
         if (parallel - own).abs() <= GRAZING * (piece.to - piece.from) {
             let mirrored = (2.0 * parallel - own).clamp(piece.from, piece.to);
             return self
@@ -192,6 +196,23 @@ impl CurvedWall {
         }
         let mirrored = (2.0 * parallel - own).clamp(bracket[0], bracket[1]);
         Some(self.root(piece, sight, bracket, mirrored))
+    }
+
+    /// The meeting of a ray that starts at the smooth end of the wall and runs along it, where the tangents of the two ends
+    /// that meet there differ by rounding and the parallel point lies between them.
+    fn grazes_end(&self, piece: &Piece, sight: Sight, own: f64, forward: bool) -> Option<Meeting> {
+        let slack = ON_PIECE * self.extent;
+        let (tangent, at_end) = if forward {
+            (
+                piece.start_tangent,
+                piece.from == 0.0 && own < slack && self.smooth_ends[0],
+            )
+        } else {
+            let at_end = piece.to == self.extent && own > self.extent - slack;
+            (piece.end_tangent, at_end && self.smooth_ends[1])
+        };
+        let flat = cross(sight.direction, tangent).abs() < SAME_TANGENT;
+        (at_end && flat).then(|| self.meeting(sight, own))
     }
 
     /// Does the wall go on smoothly from t in the direction of the ray?

@@ -63,7 +63,7 @@ pub struct Domain {
     pub walls: Vec<Wall>,
     /// Closed chains of walls.
     pub loops: Vec<WallLoop>,
-    /// vertices[w] is the vertex at the start of wall w.
+    /// `vertices[w]` is the vertex at the start of wall w.
     pub vertices: Vec<Vertex>,
     /// Area.
     pub area: f64,

@@ -1,7 +1,7 @@
 //! How chaotic the motion in a billiard is: mean chord, Lyapunov exponent, prediction horizon.
 
 use super::start::{Random, Starts};
-use super::{Domain, Event, Ray, Tracer, Vec2, flight, incidence, reflection};
+use super::{Domain, Ending, Event, Lanes, Ray, Rays, Tracer, Vec2, flight, incidence, reflection};
 use rayon::prelude::*;
 
 /// Independent blocks of trajectories; the scatter of their means gives the errors.
@@ -10,6 +10,8 @@ const BLOCKS: usize = 32;
 const TRAJECTORY: usize = 256;
 /// Bounces between two renormalisations of a tangent vector: its growth stays far inside the range of numbers.
 const RENORMALISE: usize = 8;
+/// Rays traced side by side where the walls are lines and arcs.
+const LANES: usize = 8;
 /// Relative precision with which the start of a trajectory can be known in double precision.
 pub const KNOWN_TO: f64 = 1e-14;
 /// The exponent is compatible with zero within this many standard errors. Four: the question is asked for many shapes, and
@@ -41,7 +43,7 @@ pub struct Dynamics {
     pub trajectories: usize,
 }
 
-/// Follows trajectories with `bounces` bounces in all (rounded up to at least one short trajectory per block).
+/// Follows trajectories with `bounces` bounces in all (rounded up to at least eight short trajectories per block).
 ///
 /// Deterministic, and independent of the number of threads. The exponent is the growth of a tangent vector of random
 /// direction over the second half of each trajectory; in mixed phase space it is the average over all of it, so smaller
@@ -54,17 +56,33 @@ pub struct Dynamics {
 pub fn dynamics(domain: &Domain, tracer: &Tracer, bounces: usize) -> Dynamics {
     let starts = Starts::new(domain);
     let per_block = bounces.div_ceil(BLOCKS).max(4);
-    let trajectories = (per_block / TRAJECTORY).max(1);
-    let length = 4 * (per_block / trajectories).div_ceil(4);
+    let groups = per_block.div_ceil(LANES * TRAJECTORY);
+    let trajectories = LANES * groups;
+    let length = 4 * (per_block / trajectories).div_ceil(4).max(1);
+    let lanes = Lanes::new(domain, tracer);
     let blocks: Vec<Block> = (0..BLOCKS)
         .into_par_iter()
         .map(|block| {
             let mut random = Random::new(block as u64);
             let mut sum = Block::default();
-            for _ in 0..trajectories {
-                let ray = starts.draw(&mut random);
-                let angle = std::f64::consts::TAU * random.uniform();
-                follow(tracer, ray, angle, length, &mut sum);
+            for _ in 0..groups {
+                let rays: [Ray; LANES] = std::array::from_fn(|_| starts.draw(&mut random));
+                let angles: [f64; LANES] =
+                    std::array::from_fn(|_| std::f64::consts::TAU * random.uniform());
+                match (&lanes, Rays::new(&rays)) {
+                    (Some(lanes), Ok(rays)) => {
+                        let motion = Motion {
+                            size: tracer.size(),
+                            length,
+                        };
+                        motion.follow_lanes(lanes, rays, &angles, &mut sum);
+                    }
+                    _ => {
+                        for (ray, angle) in rays.into_iter().zip(angles) {
+                            follow(tracer, ray, angle, length, &mut sum);
+                        }
+                    }
+                }
             }
             sum
         })
@@ -177,6 +195,84 @@ fn follow(tracer: &Tracer, mut ray: Ray, angle: f64, length: usize, sum: &mut Bl
     sum.second_quarter += growth[1] - growth[0];
     sum.second_half += tangent.growth - growth[1];
     sum.complete += 1.0;
+}
+
+/// How trajectories are followed.
+#[derive(Clone, Copy, Debug)]
+struct Motion {
+    size: f64,
+    length: usize,
+}
+
+impl Motion {
+    /// The same as [`follow`], for rays side by side. A corner that is passed counts with the bounce after it.
+    fn follow_lanes(
+        &self,
+        lanes: &Lanes<'_>,
+        mut rays: Rays<LANES>,
+        angles: &[f64; LANES],
+        sum: &mut Block,
+    ) {
+        let mut displacement = angles.map(|angle| angle.cos());
+        let mut turn = angles.map(f64::sin);
+        let mut growth = [0.0; LANES];
+        let mut checkpoints = [[0.0; LANES]; 2];
+        let mut alive = [1.0; LANES];
+        let mut chord = [0.0; LANES];
+        let mut chords = [0.0; LANES];
+        for bounce in 1..=self.length {
+            let endings = lanes.bounce(&mut rays);
+            for l in 0..LANES {
+                // The displacement in units of the size: flight, then reflection.
+                let moved = displacement[l] + rays.distance[l] / self.size * turn[l];
+                let focus = 2.0 * rays.curvature[l] * self.size / rays.cosine[l];
+                displacement[l] = -moved;
+                turn[l] = focus * moved - turn[l];
+                chord[l] += alive[l] * rays.distance[l];
+                chords[l] += alive[l];
+            }
+            if endings != [None; LANES] {
+                self.bury(&endings, &mut alive, sum);
+            }
+            if bounce % RENORMALISE == 0 || bounce % (self.length / 4) == 0 {
+                for l in 0..LANES {
+                    let norm = displacement[l].hypot(turn[l]);
+                    growth[l] += norm.ln();
+                    displacement[l] /= norm;
+                    turn[l] /= norm;
+                }
+            }
+            if bounce == self.length / 4 {
+                checkpoints[0] = growth;
+            } else if bounce == self.length / 2 {
+                checkpoints[1] = growth;
+            }
+        }
+        for l in 0..LANES {
+            sum.chord += chord[l];
+            sum.chords += chords[l];
+            if alive[l] == 1.0 {
+                sum.second_quarter += checkpoints[1][l] - checkpoints[0][l];
+                sum.second_half += growth[l] - checkpoints[1][l];
+                sum.complete += 1.0;
+            }
+        }
+    }
+
+    /// Lanes whose rays have ended no longer count.
+    fn bury(&self, endings: &[Option<Ending>; LANES], alive: &mut [f64; LANES], sum: &mut Block) {
+        for (lane, ending) in endings.iter().enumerate() {
+            let counter = match ending {
+                Some(Ending::Stopped) => &mut sum.stopped,
+                Some(Ending::Escaped) => &mut sum.escaped,
+                None => continue,
+            };
+            if alive[lane] == 1.0 {
+                *counter += 1;
+            }
+            alive[lane] = 0.0;
+        }
+    }
 }
 
 /// Mean and its standard error.

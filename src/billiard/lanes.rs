@@ -10,6 +10,11 @@ use super::{Domain, Event, Origin, Ray, Shape, Tracer, Vec2, cross, incidence};
 /// A tangent turn from which on two walls meet in a corner for sure, radians.
 const CLEAR_CORNER: f64 = 1e-2;
 
+/// Stands for no hit.
+const FAR: f64 = f64::INFINITY;
+/// Stands for no wall among the numbers of walls.
+const NO_WALL: f64 = -1.0;
+
 /// The bounce map of a domain of straight walls and arcs, for several rays at a time.
 ///
 /// It agrees with [`Tracer`] to rounding except for rays that graze a joint, where a ray may be given to the wall before or
@@ -41,7 +46,7 @@ struct Constants {
     curvature: f64,
     /// Corners at the ends; far away where there are none.
     corners: [Vec2; 2],
-    /// The other face of a thin wall, or the wall itself.
+    /// The other face of a thin wall, if this is one.
     twin: f64,
 }
 
@@ -142,7 +147,8 @@ impl<'a> Lanes<'a> {
         })
     }
 
-    /// One bounce of all rays. A lane whose ray ends is reported and left where it was: replace its ray.
+    /// One bounce of all rays. A lane whose ray ends is reported; it is put back to where it was before, and
+    /// ends again unless it is replaced.
     pub fn bounce<const N: usize>(&self, rays: &mut Rays<N>) -> [Option<Ending>; N] {
         let mut best = [f64::INFINITY; N];
         let mut wall = [0.0; N];
@@ -210,22 +216,32 @@ impl<'a> Lanes<'a> {
         let slack = self.tracer.slack;
         let index = line.wall as f64;
         let (tx, ty) = (line.tangent.x, line.tangent.y);
+        let (low, high) = (-slack.overlap, line.length + slack.overlap);
         for l in 0..N {
             let (dx, dy) = (rays.direction_x[l], rays.direction_y[l]);
             let (x, y) = (rays.x[l] - line.start.x, rays.y[l] - line.start.y);
             let rate = ty * dx - tx * dy;
-            let distance = (tx * y - ty * x) / rate;
-            let mut takes = (rate > 0.0)
-                & (distance < best[l])
-                & (distance > -slack.behind)
-                & (rays.wall[l] != index)
-                & (twin[l] != index);
+            let mut distance = (tx * y - ty * x) / rate;
+            let along = tx * (x + dx * distance) + ty * (y + dy * distance);
+            // One plain selection after the other: the compiler makes them vector instructions.
+            distance = if rate > 0.0 { distance } else { FAR };
+            distance = if distance > -slack.behind {
+                distance
+            } else {
+                FAR
+            };
+            distance = if rays.wall[l] != index { distance } else { FAR };
+            distance = if twin[l] != index { distance } else { FAR };
             if BOUNDED {
-                let along = tx * (x + dx * distance) + ty * (y + dy * distance);
-                takes &= (along >= -slack.overlap) & (along <= line.length + slack.overlap);
+                distance = if along >= low { distance } else { FAR };
+                distance = if along <= high { distance } else { FAR };
             }
-            best[l] = if takes { distance } else { best[l] };
-            wall[l] = if takes { index } else { wall[l] };
+            wall[l] = if distance < best[l] { index } else { wall[l] };
+            best[l] = if distance < best[l] {
+                distance
+            } else {
+                best[l]
+            };
         }
     }
 
@@ -240,28 +256,52 @@ impl<'a> Lanes<'a> {
     ) {
         let slack = self.tracer.slack;
         let index = arc.wall as f64;
+        // A focusing arc may be touched from outside by rounding. From itself it is met at -2 along; a dispersing arc is
+        // never met again by a ray that leaves it (the factor makes the distance hugely negative, as along is positive).
         let focuses = arc.turn > 0.0;
+        let least = if focuses { -slack.overlap } else { 0.0 };
+        let own = if focuses { -2.0 } else { f64::NEG_INFINITY };
         for l in 0..N {
             let (dx, dy) = (rays.direction_x[l], rays.direction_y[l]);
             let (x, y) = (rays.x[l] - arc.center.x, rays.y[l] - arc.center.y);
             let along = dx * x + dy * y;
             let aside = (dx * y - dy * x).abs();
-            let own = rays.wall[l] == index;
             let margin = arc.radius - aside;
-            // A focusing arc may be touched from outside by rounding.
-            let touches = margin >= if focuses { -slack.overlap } else { 0.0 };
             let root = (margin.max(0.0) * (arc.radius + aside)).sqrt();
-            let other = -along + arc.turn * root;
-            let distance = if own { -2.0 * along } else { other };
+            let mut distance = -along + arc.turn * root;
+            distance = if margin >= least { distance } else { FAR };
+            distance = if rays.wall[l] != index {
+                distance
+            } else {
+                own * along
+            };
             let reach = (x + dx * distance) * arc.middle.x + (y + dy * distance) * arc.middle.y;
-            let takes = (distance < best[l])
-                & (distance > -slack.behind)
-                & (reach >= arc.reach)
-                & ((own & focuses) | (!own & touches))
-                & (twin[l] != index);
-            best[l] = if takes { distance } else { best[l] };
-            wall[l] = if takes { index } else { wall[l] };
+            distance = if reach >= arc.reach { distance } else { FAR };
+            distance = if distance > -slack.behind {
+                distance
+            } else {
+                FAR
+            };
+            distance = if twin[l] != index { distance } else { FAR };
+            wall[l] = if distance < best[l] { index } else { wall[l] };
+            best[l] = if distance < best[l] {
+                distance
+            } else {
+                best[l]
+            };
         }
+    }
+
+    /// Puts a lane back to where it was, so that its numbers stay finite.
+    fn turn_back<const N: usize>(&self, lane: usize, before: &Rays<N>, rays: &mut Rays<N>) {
+        rays.x[lane] = before.x[lane];
+        rays.y[lane] = before.y[lane];
+        rays.direction_x[lane] = before.direction_x[lane];
+        rays.direction_y[lane] = before.direction_y[lane];
+        rays.wall[lane] = before.wall[lane];
+        rays.distance[lane] = 0.0;
+        rays.curvature[lane] = 0.0;
+        rays.cosine[lane] = 1.0;
     }
 
     /// Traces the ray of one lane again, through a corner if it may, until it is on a wall.
@@ -294,10 +334,16 @@ impl<'a> Lanes<'a> {
                     distance += hit.distance;
                     match self.tracer.pass_corner(ray.direction, vertex, hit.point) {
                         Some((next, _)) => ray = next,
-                        None => return Some(Ending::Stopped),
+                        None => {
+                            self.turn_back(lane, before, rays);
+                            return Some(Ending::Stopped);
+                        }
                     }
                 }
-                Event::Escaped => return Some(Ending::Escaped),
+                Event::Escaped => {
+                    self.turn_back(lane, before, rays);
+                    return Some(Ending::Escaped);
+                }
             }
         }
     }
@@ -307,7 +353,7 @@ impl Constants {
     fn new(domain: &Domain, tracer: &Tracer, w: usize) -> Self {
         let far = Vec2::repeat(f64::MAX.sqrt());
         let corners = tracer.corners[w].map(|corner| corner.unwrap_or(far));
-        let twin = domain.walls[w].twin.unwrap_or(w) as f64;
+        let twin = domain.walls[w].twin.map_or(NO_WALL, |twin| twin as f64);
         let constants = |normal: Vec2, center: Vec2, curvature: f64| Self {
             normal,
             center,
@@ -426,7 +472,12 @@ mod tests {
                         panic!("{ray:?} does not bounce");
                     };
                     let next = Tracer::reflect(ray.direction, &hit);
-                    assert_eq!(all.wall[l] as usize, hit.wall);
+                    assert_eq!(
+                        all.wall[l] as usize,
+                        hit.wall,
+                        "{ray:?} {hit:?} {:?}",
+                        (all.x[l], all.y[l], all.distance[l])
+                    );
                     let point = Vec2::new(all.x[l], all.y[l]);
                     let direction = Vec2::new(all.direction_x[l], all.direction_y[l]);
                     // Hits of a dispersing arc are as ill-conditioned as they are flat.

@@ -84,7 +84,8 @@ pub(crate) struct Weyl {
     /// System file
     #[arg(value_name = "SYSTEM.toml")]
     pub(crate) system: PathBuf,
-    /// Where to count: a value in the unit of the file's levels, or several with commas; may be repeated
+    /// Where to count: a value in the unit of the file's levels, or several with commas; may be repeated [default: near the
+    /// 10th, 100th and 1000th level]
     #[arg(long, value_name = "VALUE", allow_hyphen_values = true)]
     pub(crate) at: Vec<String>,
 }
@@ -92,10 +93,11 @@ pub(crate) struct Weyl {
 /// How far orbits are looked for.
 #[derive(Debug, Args)]
 pub(crate) struct OrbitLimits {
-    /// Longest orbit (of the orbit reduced by symmetry), in the file's unit of length
+    /// Longest orbit (reduced by symmetry), in the file's unit of length [default: 3/(smoothing width in k), or what is
+    /// quick to find]
     #[arg(long, value_name = "LENGTH", allow_hyphen_values = true)]
     pub(crate) max_length: Option<String>,
-    /// Largest number of bounces on walls (of the orbit reduced by symmetry)
+    /// Largest number of bounces on walls (reduced by symmetry) [default: 24; more for polygons and integrable shapes]
     #[arg(long, value_name = "N", allow_hyphen_values = true)]
     pub(crate) max_bounces: Option<String>,
 }
@@ -114,7 +116,8 @@ pub(crate) struct Density {
     /// System file
     #[arg(value_name = "SYSTEM.toml")]
     pub(crate) system: PathBuf,
-    /// Window in k, for files whose levels are wave numbers
+    /// Window in k, for files whose levels are wave numbers [default: from the 10th to the 250th level, or to the end of
+    /// the list]
     #[arg(long, value_name = "FROM:TO", allow_hyphen_values = true)]
     pub(crate) k: Option<String>,
     /// Window in energy, for files whose levels are energies
@@ -123,7 +126,8 @@ pub(crate) struct Density {
     /// Window in frequency, for files whose levels are frequencies
     #[arg(long, value_name = "FROM:TO", allow_hyphen_values = true)]
     pub(crate) frequency: Option<String>,
-    /// Standard deviation of the Gaussian in mean spacings at the middle of the window [default: 2]
+    /// Standard deviation of the Gaussian in mean spacings at the middle of the window [default: 2, or more
+    /// where the longest orbit asks for it]
     #[arg(
         long,
         value_name = "S",

@@ -47,6 +47,11 @@ impl<'a> Fluctuation<'a> {
         }
     }
 
+    /// Is there an estimate? Not for single classes of shapes whose tori are known for all classes together only.
+    pub(super) fn is_known(&self) -> bool {
+        self.subject.check_class_of_orbits().is_ok()
+    }
+
     /// Root mean square of the staircase about the smooth count near k, in levels.
     pub(super) fn at(&self, k: f64) -> Option<f64> {
         let subject = self.subject;
@@ -67,16 +72,9 @@ impl<'a> Fluctuation<'a> {
                 dimension: irrep.dimension,
             })
             .collect();
-        if self.terms.is_empty() && subject.integrable.is_some() {
-            return None;
-        }
-        Some(expected_fluctuation(
-            &self.terms,
-            k,
-            self.max_length,
-            &classes,
-            self.statistics,
-        ))
+        self.is_known().then(|| {
+            expected_fluctuation(&self.terms, k, self.max_length, &classes, self.statistics)
+        })
     }
 
     /// Where the estimate comes from, for people.

@@ -4,7 +4,7 @@ use super::arguments::{Density, OrbitLimits};
 use super::error::CommandError;
 use super::note::Note;
 use super::subject::Subject;
-use super::text::{counted, significant};
+use super::text::significant;
 use super::value::{self, Window};
 use orbitsum::baseline::{Weyl, weyl};
 use orbitsum::billiard::Wall;
@@ -19,9 +19,9 @@ const DEFAULT_SMOOTHING: f64 = 2.0;
 pub(super) const ENOUGH: f64 = 3.0;
 /// Rounding of width x length that is no reason for a warning.
 const SLACK: f64 = 1e-6;
-/// Longest orbit that is looked for without being asked, in mean chords of one symmetry copy of the shape: the number of
-/// orbits grows exponentially with this number, and so does the time of the search, which is about a second here.
-const MOST_CHORDS: f64 = 9.0;
+/// Longest orbit of a polygon that is looked for without being asked, in mean chords of one symmetry copy of the shape: the
+/// strips grow in number as a power of the length, and so does the time of the search.
+const MOST_POLYGON_CHORDS: f64 = 40.0;
 /// Significant digits of numbers that are chosen here.
 const DIGITS: usize = 3;
 /// Largest number of bounces that can be asked for.
@@ -186,7 +186,10 @@ impl Plan {
             (None, None) => None,
         };
         let wanted = asked.unwrap_or(DEFAULT_SMOOTHING * self.spacing);
-        let most = longest_default(subject);
+        let most = match wishes.length {
+            Some(length) => length,
+            None => longest_default(subject, ENOUGH / wanted),
+        };
         let (length, why) = match wishes.length {
             Some(length) => (length, "as asked".to_owned()),
             None if ENOUGH / wanted > most => {
@@ -198,7 +201,9 @@ impl Plan {
             }
             None => (
                 ENOUGH / wanted,
-                format!("{ENOUGH}/(smoothing width): the next one counts 0.011 of its term"),
+                format!(
+                    "{ENOUGH}/(smoothing width in k): the next one would count 0.011 of its term"
+                ),
             ),
         };
         self.limits.max_length = length;
@@ -207,19 +212,23 @@ impl Plan {
         let reason = if asked.is_some() {
             "as asked"
         } else if from_length {
-            "3/(longest orbit)"
+            "width in k = 3/(longest orbit)"
         } else {
             "the default"
+        };
+        let constant = match units.column() {
+            "k" => String::new(),
+            _ => format!(
+                " there, {} in k throughout",
+                significant(self.width, DIGITS)
+            ),
         };
         self.choices.push((
             "smoothing".into(),
             format!(
-                "{} mean spacings at the middle of the window ({reason}): a Gaussian of standard deviation {} in {}, {} in k \
-                 throughout",
+                "{} mean spacings at the middle of the window ({reason}): Gaussian of standard deviation {}{constant}",
                 significant(self.width / self.spacing, DIGITS),
                 subject.level(self.width_in_units(subject), DIGITS),
-                units.column(),
-                significant(self.width, DIGITS),
             ),
         ));
         self.choices.push((
@@ -251,6 +260,9 @@ impl Plan {
             });
         }
         let units = &subject.system.units;
+        if self.width > units.k(self.window.to) - units.k(self.window.from) {
+            self.notes.push(Note::WiderThanWindow);
+        }
         let reach = REACH * self.width;
         if units.k(self.window.from) < reach {
             self.notes.push(Note::NearZero {
@@ -271,19 +283,24 @@ impl Plan {
 /// Distance in standard deviations at which a Gaussian has ended.
 const REACH: f64 = 5.0;
 
-/// The longest orbits that are looked for without being asked.
-fn longest_default(subject: &Subject) -> f64 {
+/// The longest orbits, up to `wanted`, that are looked for without being asked.
+fn longest_default(subject: &Subject, wanted: f64) -> f64 {
     let domain = &subject.system.domain;
-    if subject.integrable.is_some()
-        || domain
-            .walls
-            .iter()
-            .all(orbitsum::billiard::Wall::is_straight)
-    {
-        // The number of families grows as a power of the length only.
-        return f64::INFINITY;
+    if subject.integrable.is_some() {
+        // Tori are listed without a search.
+        return wanted;
     }
-    MOST_CHORDS * copy_chord(subject)
+    if domain.walls.iter().all(Wall::is_straight) {
+        return wanted.min(MOST_POLYGON_CHORDS * copy_chord(subject));
+    }
+    let affordable = Limits::up_to(wanted, domain)
+        .affordable(domain, &subject.symmetry)
+        .max_length;
+    if affordable < wanted {
+        rounded_down(affordable)
+    } else {
+        wanted
+    }
 }
 
 /// Mean chord of one symmetry copy of the domain, pi area/perimeter, with the pieces of axes that bound it: its measures
@@ -363,98 +380,6 @@ fn rounded_down(value: f64) -> f64 {
 /// Value of the last of the digits that are kept.
 fn digit_unit(value: f64) -> f64 {
     10f64.powi(value.abs().max(f64::MIN_POSITIVE).log10().floor() as i32 + 1 - DIGITS as i32)
-}
-
-/// Notes about what the sum leaves out that would show at k under a smoothing of standard deviation `width`, largest first.
-pub(super) fn omissions(
-    subject: &Subject,
-    catalogue: &orbitsum::orbit::Catalogue,
-    k: f64,
-    width: f64,
-) -> Vec<Note> {
-    let mut kept: Vec<(f64, Note)> = Vec::new();
-    let mut kinds: Vec<(String, usize, f64, f64)> = Vec::new();
-    for omission in &catalogue.omissions {
-        let size = omission.size_at(k, width);
-        let what = omission.kind.to_string();
-        match kinds.iter_mut().find(|(known, ..)| *known == what) {
-            Some((_, count, length, largest)) => {
-                *count += omission.count;
-                *length = length.min(omission.length);
-                *largest = largest.max(size);
-            }
-            None => kinds.push((what, omission.count, omission.length, size)),
-        }
-    }
-    for (what, count, length, size) in kinds {
-        if size >= LEAST_OMISSION {
-            let length = subject.length(length, 4);
-            kept.push((
-                size,
-                Note::LeftOut {
-                    what,
-                    count,
-                    length,
-                    size,
-                },
-            ));
-        }
-    }
-    kept.sort_by(|a, b| b.0.total_cmp(&a.0));
-    kept.into_iter().map(|(_, note)| note).collect()
-}
-
-/// Omissions below this many levels are far below what the orbit sum is good for.
-const LEAST_OMISSION: f64 = 1e-4;
-
-/// How the search knows that it is complete, in words.
-pub(super) fn completeness(catalogue: &orbitsum::orbit::Catalogue) -> (String, Vec<Note>) {
-    if catalogue.integrable.is_some() {
-        return (
-            "complete: the tori of this integrable shape are listed from their winding numbers, no search was needed".into(),
-            Vec::new(),
-        );
-    }
-    let mut sentences = Vec::new();
-    let mut notes = Vec::new();
-    for (what, passes) in [
-        ("from curved walls", &catalogue.passes),
-        ("between straight walls", &catalogue.flat_passes),
-    ] {
-        let (Some(last), Some(first)) = (passes.last(), passes.first()) else {
-            continue;
-        };
-        let before = passes.len().checked_sub(2).map(|index| &passes[index]);
-        let rays: usize = passes.iter().map(|pass| pass.rays).sum();
-        match before {
-            Some(before) if last.added == 0 => sentences.push(format!(
-                "search {what}: a start set of {} points, {} times finer than the one before ({} points, rays {} rad apart), \
-                 added nothing ({}, {rays} rays)",
-                last.sources,
-                significant(before.smallest_gap / last.smallest_gap, 2),
-                before.sources,
-                significant(before.smallest_gap, 2),
-                counted(passes.len(), "pass", "passes"),
-            )),
-            None if first.added == 0 => {
-                sentences.push(format!("search {what}: nothing found with {} points", first.sources));
-            }
-            _ => {
-                sentences.push(format!(
-                    "search {what}: not settled after {}: the last one, with {} points and rays {} rad apart, still added {}",
-                    counted(passes.len(), "pass", "passes"),
-                    last.sources,
-                    significant(last.smallest_gap, 2),
-                    last.added,
-                ));
-                notes.push(Note::NotSettled {
-                    added: last.added,
-                    passes: passes.len(),
-                });
-            }
-        }
-    }
-    (sentences.join("\n"), notes)
 }
 
 #[cfg(test)]

@@ -6,6 +6,7 @@
 
 mod answer;
 mod arguments;
+mod completeness;
 mod density;
 mod error;
 mod fluctuation;

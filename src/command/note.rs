@@ -27,6 +27,8 @@ pub(super) enum Note {
     NotFlat(NotFlat),
     /// The smoothing is too narrow for the known orbits.
     TooNarrow { product: f64, enough: f64 },
+    /// The smoothing is wider than the window.
+    WiderThanWindow,
     /// The Gaussian reaches down to k = 0.
     NearZero { reach: String },
     /// The search did not settle.
@@ -58,6 +60,7 @@ impl Note {
                 | Self::ListTooShort { .. }
                 | Self::NotFlat(_)
                 | Self::TooNarrow { .. }
+                | Self::WiderThanWindow
                 | Self::NotSettled { .. }
         )
     }
@@ -104,6 +107,10 @@ impl fmt::Display for Note {
                 "smoothing width x longest orbit = {}, below {enough}: orbits that were not looked for would still show; \
                  raise --max-length or the smoothing",
                 significant(*product, 3)
+            ),
+            Self::WiderThanWindow => f.write_str(
+                "the smoothing is wider than the window: little but the smooth part is left; raise --max-length or choose a \
+                 wider window",
             ),
             Self::NearZero { reach } => write!(
                 f,

@@ -2,6 +2,7 @@
 
 use super::answer::Answer;
 use super::arguments::Orbits;
+use super::completeness;
 use super::error::CommandError;
 use super::limits::{self, Plan, Wishes};
 use super::options::Options;
@@ -33,7 +34,7 @@ const COLUMNS: [&str; 12] = [
 /// Rows of the table for people.
 const SHOWN_ROWS: usize = 40;
 /// Words longer than this are cut in the table for people.
-const LONGEST_WORD: usize = 40;
+const LONGEST_WORD: usize = 44;
 
 pub(super) fn run(typed: &Orbits, options: &Options) -> Result<Answer, CommandError> {
     let wishes = Wishes::of_limits(&typed.limits)?;
@@ -57,8 +58,8 @@ fn answer(subject: &Subject, plan: &Plan, catalogue: &Catalogue) -> Answer {
     for (index, entry) in entries.iter().enumerate() {
         table.push(entry.row(index + 1));
     }
-    let (completeness, mut notes) = limits::completeness(catalogue);
-    notes.extend(limits::omissions(
+    let (completeness, mut notes) = completeness::of_search(catalogue);
+    notes.extend(completeness::omissions(
         subject,
         catalogue,
         plan.middle,
@@ -246,7 +247,14 @@ impl Entry {
             _ => "family",
         };
         Self {
-            word: format!("{}, {} turns", family.kind, family.winding),
+            word: match family.winding {
+                0 => family.kind.to_string(),
+                turns => format!(
+                    "{}, {}",
+                    family.kind,
+                    counted(turns as usize, "turn", "turns")
+                ),
+            },
             bounces: family.bounces as usize,
             length: family.length,
             trace: None,

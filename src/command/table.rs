@@ -234,7 +234,7 @@ mod tests {
     fn words_stand_left_and_numbers_right() {
         assert_eq!(
             table().aligned(),
-            "word  length  index\n1,2      0.1      3\n            -     10\n"
+            "word  length  index\n1,2      0.1      3\n           -     10\n"
         );
     }
 }

@@ -45,6 +45,11 @@ pub(super) fn run(typed: &Weyl, options: &Options) -> Result<Answer, CommandErro
         row("fluctuation", fluctuation.at(k).into());
     }
     let mut notes: Vec<Note> = weyl.omissions.iter().filter_map(omission).collect();
+    if !fluctuation.is_known() {
+        notes.push(Note::SmoothPart(
+            "the fluctuation is not estimated for single classes of this integrable shape",
+        ));
+    }
     if places
         .iter()
         .any(|&at| !weyl.mean_spacing(units.k(at)).is_finite())

@@ -2,7 +2,7 @@
 
 use super::path::{ClosedPath, LengthForm};
 use super::periodic::{Closure, Fixing, Orbit, OrbitKind, OrbitPoint};
-use super::phase::{Comparison, phases};
+use super::phase::{Comparison, Phase};
 use crate::billiard::{
     Condition, Domain, Event, Mat2, Origin, Ray, Shape, Symmetry, Tracer, Vec2, VertexKind, cross,
     left,
@@ -33,7 +33,7 @@ pub(crate) fn orbit(setting: &Setting, path: &ClosedPath, form: &LengthForm) -> 
     }
     let points = bounce_points(setting, path, form)?;
     chords_are_free(setting, &points, path.element).then_some(())?;
-    is_primitive(setting, &points).then_some(())?;
+    is_primitive(setting, &points, path.element).then_some(())?;
     let monodromy = path.monodromy(form, setting.symmetry.elements[path.element].det());
     let draft = Draft {
         element: path.element,
@@ -72,19 +72,20 @@ pub(crate) fn finish(
         points,
     } = draft;
     let comparison = &setting.comparison;
-    let here = phases(&points);
+    let here = comparison.ahead(&points, element);
     let partner = if comparison.meet(&comparison.reversed(&points, element), &here) {
         1
     } else {
         2
     };
     let fixed_by = fixing(setting, &points, element);
-    let joint = points
+    let joints = points
         .iter()
-        .any(|point| at_joint(setting.domain, point.point));
+        .filter(|point| at_joint(setting.domain, point.point))
+        .count();
     // A flat orbit on an axis closes both with and without the reflection: in one of the two ways with its whole strip.
     let flat_family = curved.is_none() && fixed_by.len() > 1;
-    let kind = match (joint, flat_family, fixed_by.len()) {
+    let kind = match (joints > 0, flat_family, fixed_by.len()) {
         (true, ..) => OrbitKind::Joint,
         (_, true, _) => OrbitKind::InStrip,
         (_, _, 1) => OrbitKind::Isolated,
@@ -107,12 +108,12 @@ pub(crate) fn finish(
         dirichlet,
         fixed_by,
         closures: Vec::new(),
-        weight: if joint { 0.5 } else { 1.0 },
+        weight: 0.5f64.powi(joints as i32),
         chain: None,
         points,
     };
-    orbit.closures = closures(setting, &orbit, curved.map(|(_, form)| form));
     orbit.chain = curved.and_then(|(path, form)| chain(setting, &orbit, path, form));
+    orbit.closures = closures(setting, &orbit, curved.map(|(_, form)| form));
     orbit
 }
 
@@ -240,10 +241,10 @@ fn origin(domain: &Domain, from: OrbitPoint) -> Origin {
     }
 }
 
-pub(crate) fn is_primitive(setting: &Setting, points: &[OrbitPoint]) -> bool {
-    let here = phases(points);
-    here[1..]
-        .iter()
+pub(crate) fn is_primitive(setting: &Setting, points: &[OrbitPoint], element: usize) -> bool {
+    let here = setting.comparison.ahead(points, element);
+    here.iter()
+        .skip(1)
         .all(|&later| setting.comparison.element(here[0], later).is_none())
 }
 
@@ -315,7 +316,7 @@ pub(crate) fn at_joint(domain: &Domain, point: Vec2) -> bool {
 }
 
 /// Smallest m for which g^m takes the first phase point to itself.
-pub(crate) fn copies(setting: &Setting, here: &[(Vec2, Vec2)], element: usize) -> usize {
+pub(crate) fn copies(setting: &Setting, here: &[Phase], element: usize) -> usize {
     let mut power = element;
     let mut count = 1;
     while !setting.comparison.takes(power, here[0], here[0]) && count <= setting.symmetry.order() {
@@ -338,7 +339,8 @@ fn closures(setting: &Setting, orbit: &Orbit, form: Option<&LengthForm>) -> Vec<
             };
             // det(h M - 1) = 2 - tr(h M) for det M = 1.
             let determinant = (2.0 - sign * power.trace()).abs();
-            if determinant < SINGULAR {
+            // The chain coefficients of a joint stay finite where the one-sided determinant vanishes.
+            if determinant < SINGULAR && orbit.chain.is_none() {
                 continue;
             }
             let negative = form.map_or(0, |form| {

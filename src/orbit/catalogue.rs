@@ -4,7 +4,7 @@ use super::analyse::Setting;
 use super::omission::{Found, Omission, omissions};
 use super::periodic::Orbit;
 use super::phase::Comparison;
-use super::search::{Curved, CurvedFamily, Pass, curved_orbits, insert, sort};
+use super::search::{Curved, CurvedFamily, Pass, curved_orbits, insert, scout, sort};
 use super::strip::{Strip, flat_orbits};
 use super::tori::{self, Integrable, TorusLimits, TorusSum};
 use crate::billiard::{Domain, Symmetry, Tracer, Wall};
@@ -115,6 +115,13 @@ const DEFAULT_BOUNCES: usize = 24;
 /// Bounces allowed per mean chord of the longest orbit: in polygons strips of many short chords count in full.
 const BOUNCES_PER_CHORD: f64 = 4.0;
 
+/// Length of the first coarse search in mean chords, and growth from one to the next.
+const FIRST_SCOUT: f64 = 2.0;
+const SCOUT_STEP: f64 = 1.2;
+/// Orbits and rays of a coarse search above which the full one takes more than about a second.
+const MANY_ORBITS: usize = 400;
+const MANY_RAYS: usize = 4000;
+
 impl Limits {
     /// Limits for all orbits up to a length, with a number of bounces that suits the domain.
     #[must_use]
@@ -130,6 +137,39 @@ impl Limits {
         Self {
             max_length,
             max_bounces,
+        }
+    }
+
+    /// These limits, or shorter ones if the orbits up to them would take long to find: coarse searches at growing lengths
+    /// stop where they find very many orbits or follow very many rays. For a domain with curved walls that is not
+    /// integrable; the numbers of strips and tori grow slowly.
+    #[must_use]
+    pub fn affordable(self, domain: &Domain, symmetry: &Symmetry) -> Self {
+        if tori::recognise(domain).is_some() || domain.walls.iter().all(Wall::is_straight) {
+            return self;
+        }
+        let tracer = Tracer::new(domain);
+        let chord = std::f64::consts::PI * domain.area / domain.perimeter;
+        let mut affordable = FIRST_SCOUT * chord;
+        while affordable < self.max_length {
+            let next = (affordable * SCOUT_STEP).min(self.max_length);
+            let setting = Setting {
+                domain,
+                symmetry,
+                tracer: &tracer,
+                comparison: Comparison::new(domain, symmetry),
+                max_length: next,
+                max_bounces: self.max_bounces,
+            };
+            let (orbits, rays) = scout(&setting);
+            if orbits > MANY_ORBITS || rays > MANY_RAYS {
+                break;
+            }
+            affordable = next;
+        }
+        Self {
+            max_length: affordable.min(self.max_length),
+            ..self
         }
     }
 

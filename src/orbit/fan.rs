@@ -58,16 +58,62 @@ pub(crate) struct Source {
     pub(crate) spacing: f64,
 }
 
-/// Follows the ray that leaves `source` at `angle` from the normal towards the tangent.
-pub(crate) fn follow(
-    domain: &Domain,
-    tracer: &Tracer,
-    source: &Source,
-    angle: f64,
-    reach: &Reach,
-) -> Track {
-    let direction = left(source.tangent) * angle.cos() + source.tangent * angle.sin();
-    follow_direction(domain, tracer, source, direction, reach)
+impl Track {
+    fn empty() -> Self {
+        Self {
+            start: Vec2::zeros(),
+            direction: Vec2::zeros(),
+            steps: Vec::new(),
+            stopped: false,
+        }
+    }
+
+    /// Follows the ray that leaves `source` along `direction`, in the memory of this track.
+    fn follow(
+        &mut self,
+        domain: &Domain,
+        tracer: &Tracer,
+        source: &Source,
+        direction: Vec2,
+        reach: &Reach,
+    ) {
+        self.start = source.point;
+        self.direction = direction;
+        self.steps.clear();
+        self.stopped = false;
+        let mut ray = Ray {
+            point: source.point,
+            direction,
+            origin: Origin::Wall {
+                wall: source.wall,
+                t: source.t,
+            },
+        };
+        let mut length = 0.0;
+        let mut map = Mat2::identity();
+        while self.steps.len() < reach.bounces {
+            let Event::Wall(hit) = tracer.next(&ray) else {
+                self.stopped = true;
+                break;
+            };
+            length += hit.distance;
+            let cosine = incidence(ray.direction, &hit);
+            if length > reach.length
+                || (reach.straight_only && !domain.walls[hit.wall].is_straight())
+            {
+                break;
+            }
+            map = reflection(hit.curvature, cosine) * (flight(hit.distance) * map);
+            ray = Tracer::reflect(ray.direction, &hit);
+            self.steps.push(Step {
+                wall: hit.wall,
+                t: hit.t,
+                point: hit.point,
+                direction: ray.direction,
+                map,
+            });
+        }
+    }
 }
 
 /// Follows the ray that leaves `source` along `direction`.
@@ -78,42 +124,8 @@ pub(crate) fn follow_direction(
     direction: Vec2,
     reach: &Reach,
 ) -> Track {
-    let mut ray = Ray {
-        point: source.point,
-        direction,
-        origin: Origin::Wall {
-            wall: source.wall,
-            t: source.t,
-        },
-    };
-    let mut track = Track {
-        start: source.point,
-        direction,
-        steps: Vec::new(),
-        stopped: false,
-    };
-    let mut length = 0.0;
-    let mut map = Mat2::identity();
-    while track.steps.len() < reach.bounces {
-        let Event::Wall(hit) = tracer.next(&ray) else {
-            track.stopped = true;
-            break;
-        };
-        length += hit.distance;
-        let cosine = incidence(ray.direction, &hit);
-        if length > reach.length || (reach.straight_only && !domain.walls[hit.wall].is_straight()) {
-            break;
-        }
-        map = reflection(hit.curvature, cosine) * (flight(hit.distance) * map);
-        ray = Tracer::reflect(ray.direction, &hit);
-        track.steps.push(Step {
-            wall: hit.wall,
-            t: hit.t,
-            point: hit.point,
-            direction: ray.direction,
-            map,
-        });
-    }
+    let mut track = Track::empty();
+    track.follow(domain, tracer, source, direction, reach);
     track
 }
 
@@ -135,24 +147,27 @@ pub(crate) fn shoot(
 ) {
     let width = (FRAC_PI_2 + BEYOND_NORMAL) / resolution.rays as f64;
     let angle = |i: usize| (i as f64 + 0.5) * width - BEYOND_NORMAL;
-    let at = |angle: f64| follow(domain, tracer, source, angle, reach);
-    let mut near = (angle(0), at(angle(0)));
-    visit(&near.1);
+    let mut spare: Vec<Track> = Vec::new();
+    let mut at = |angle: f64, spare: &mut Vec<Track>| {
+        let mut track = spare.pop().unwrap_or_else(Track::empty);
+        let direction = left(source.tangent) * angle.cos() + source.tangent * angle.sin();
+        track.follow(domain, tracer, source, direction, reach);
+        visit(&track);
+        track
+    };
+    let mut near = (angle(0), at(angle(0), &mut spare));
+    // Rays still to be compared with `near`, the nearest one on top.
+    let mut waiting: Vec<(f64, Track)> = Vec::new();
     for i in 1..resolution.rays {
-        let last = (angle(i), at(angle(i)));
-        visit(&last.1);
-        // Rays still to be compared with `near`, the nearest one on top.
-        let mut waiting = vec![last];
+        waiting.push((angle(i), at(angle(i), &mut spare)));
         while let Some((high, track)) = waiting.pop() {
             if high - near.0 > resolution.smallest_gap && differ(&near.1, &track, resolution.spread)
             {
                 let middle = 0.5 * (near.0 + high);
-                let between = at(middle);
-                visit(&between);
                 waiting.push((high, track));
-                waiting.push((middle, between));
+                waiting.push((middle, at(middle, &mut spare)));
             } else {
-                near = (high, track);
+                spare.push(std::mem::replace(&mut near, (high, track)).1);
             }
         }
     }

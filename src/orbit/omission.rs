@@ -102,6 +102,8 @@ impl From<&LeftOut> for Omission {
     }
 }
 
+/// Chain coefficients of joints are about this large.
+const LARGEST_CHAIN: f64 = 0.25;
 /// A determinant below this makes a term larger than 0.6/r levels: the orbit is close to a bifurcation and leading order is
 /// not to be trusted.
 const NEAR_BIFURCATION: f64 = 0.25;
@@ -180,11 +182,11 @@ fn amplitudes(orbit: &Orbit) -> impl Iterator<Item = (f64, f64, f64)> {
         let r = f64::from(closure.repetition);
         let share =
             orbit.weight * f64::from(orbit.partner) / (PI * r * orbit.fixed_by.len() as f64);
-        (
-            r * orbit.length,
-            closure.determinant,
-            share / closure.determinant.sqrt(),
-        )
+        let size = match orbit.chain {
+            Some(_) => LARGEST_CHAIN,
+            None => 1.0 / closure.determinant.sqrt(),
+        };
+        (r * orbit.length, closure.determinant, share * size)
     })
 }
 

@@ -88,7 +88,7 @@ impl ClosedPath {
         let mut map = Monodromy::identity(determinant);
         for i in 0..n {
             let next = (i + 1) % n;
-            let flips = if self.links[i].straight.len() % 2 == 0 {
+            let flips = if self.links[i].straight.len().is_multiple_of(2) {
                 1.0
             } else {
                 -1.0

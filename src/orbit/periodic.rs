@@ -96,9 +96,9 @@ pub struct Orbit {
     /// The elements that fix the orbit point by point, the identity first.
     pub fixed_by: Vec<Fixing>,
     /// Closures of all repetitions up to the length limit; those with a vanishing determinant (which belong to a family)
-    /// are left out.
+    /// are left out, except where chain coefficients take their place.
     pub closures: Vec<Closure>,
-    /// Share of the isolated term that counts: 1, or 1/2 for each side of a joint.
+    /// Share of the isolated term that counts: 1, or 1/2 for each bounce at a joint, since each side of it has its own orbit.
     pub weight: f64,
     /// For an orbit that is the edge of a strip and hits one joint per period: the parameter c = D kappa / cos(theta) of
     /// its chain coefficients.

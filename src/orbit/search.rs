@@ -8,11 +8,12 @@
 use super::analyse::{self, Setting};
 use super::fan::{Reach, Resolution, Source, Step, Track, shoot};
 use super::path::{Bounce, ClosedPath, LengthForm, Link, Workspace, refine};
-use super::periodic::Orbit;
-use super::phase::{Phase, phases};
+use super::periodic::{Orbit, OrbitKind};
+use super::phase::Phase;
 use crate::billiard::{Domain, Isometry, Mat2, Shape, Symmetry, Vec2, Wall, left};
 use rayon::prelude::*;
 use std::collections::{HashMap, HashSet};
+use std::hash::{BuildHasher, Hasher};
 
 /// What one pass of the search did.
 #[derive(Clone, Copy, Debug)]
@@ -34,11 +35,11 @@ const FIRST_RAYS: usize = 40;
 /// Smallest angle between rays in the first pass, radians.
 const FIRST_GAP: f64 = 5e-5;
 /// Neighbouring rays may land this far apart, as a fraction of the size, before they are refined.
-const SPREAD: f64 = 0.15;
+const SPREAD: f64 = 0.25;
 /// Number of passes after which the search gives up on settling; what is still being added then is said in the output.
 const MOST_PASSES: usize = 6;
 /// Each pass has this many times the sources of the one before, and gaps smaller by the same factor.
-const REFINEMENT: f64 = 1.5;
+const REFINEMENT: f64 = 1.4;
 
 /// What the search from curved walls finds.
 #[derive(Default)]
@@ -98,6 +99,33 @@ pub(crate) fn curved_orbits(setting: &Setting) -> Curved {
     all
 }
 
+/// A coarse search: how many orbits it finds, and how many rays it follows.
+pub(crate) fn scout(setting: &Setting) -> (usize, usize) {
+    let domain = setting.domain;
+    let resolution = Resolution {
+        rays: FIRST_RAYS,
+        spread: SPREAD * domain.size,
+        smallest_gap: SCOUT_GAP,
+    };
+    let sources = sources(domain, setting.symmetry, SCOUT_SOURCES, |wall| {
+        !domain.walls[wall].is_straight()
+    });
+    let found: Vec<Harvest> = sources
+        .par_iter()
+        .map(|source| from_source(setting, source, &resolution, &[]))
+        .collect();
+    let rays = found.iter().map(|harvest| harvest.rays).sum();
+    let mut orbits = Vec::new();
+    for orbit in found.into_iter().flat_map(|harvest| harvest.orbits) {
+        insert(setting, &mut orbits, orbit);
+    }
+    (orbits.len(), rays)
+}
+
+/// Sources and smallest angle of a coarse search: it finds most orbits at a twentieth of the cost.
+const SCOUT_SOURCES: usize = 4;
+const SCOUT_GAP: f64 = 1e-3;
+
 /// Shortest first; equal lengths by bounces and word, so that the order does not depend on rounding.
 pub(crate) fn sort(orbits: &mut [Orbit]) {
     orbits.sort_by(|a, b| {
@@ -114,35 +142,43 @@ const SAME_LENGTH: f64 = 1e-9;
 
 /// Adds an orbit unless it, or its reverse, is there up to symmetry.
 pub(crate) fn insert(setting: &Setting, orbits: &mut Vec<Orbit>, orbit: Orbit) -> bool {
-    let new = !is_known(setting, orbits, &orbit.points, orbit.symmetry, orbit.length);
+    let new = !is_known(setting, orbits, &orbit);
     if new {
         orbits.push(orbit);
     }
     new
 }
 
-fn is_known(
-    setting: &Setting,
-    orbits: &[Orbit],
-    points: &[super::periodic::OrbitPoint],
-    element: usize,
-    length: f64,
-) -> bool {
+fn is_known(setting: &Setting, orbits: &[Orbit], orbit: &Orbit) -> bool {
     let comparison = &setting.comparison;
     let mut own: Option<[Vec<Phase>; 2]> = None;
     orbits
         .iter()
         .filter(|other| {
-            (other.length - length).abs() < SAME_LENGTH * length
-                && other.points.len() == points.len()
+            (other.length - orbit.length).abs() < SAME_LENGTH * orbit.length
+                && other.points.len() == orbit.points.len()
+                && same_side(orbit, other)
         })
         .any(|other| {
-            let [ahead, back] =
-                own.get_or_insert_with(|| [phases(points), comparison.reversed(points, element)]);
-            let there = phases(&other.points);
+            let [ahead, back] = own.get_or_insert_with(|| {
+                [
+                    comparison.ahead(&orbit.points, orbit.symmetry),
+                    comparison.reversed(&orbit.points, orbit.symmetry),
+                ]
+            });
+            let there = comparison.ahead(&other.points, other.symmetry);
             comparison.meet(ahead, &there) || comparison.meet(back, &there)
         })
 }
+
+/// An orbit through a joint is two, one for the curvature on each side; both have the same points.
+fn same_side(a: &Orbit, b: &Orbit) -> bool {
+    a.kind != OrbitKind::Joint
+        || (a.trace() - b.trace()).abs() < SAME_TRACE * (1.0 + a.trace().abs())
+}
+
+/// Relative difference of traces above which two orbits through a joint take different sides of it.
+const SAME_TRACE: f64 = 1e-6;
 
 /// Direction (generic on purpose) by which one of the symmetric copies of a point is chosen.
 const GENERIC: Vec2 = Vec2::new(0.803_142_9, 0.595_779_3);
@@ -191,7 +227,7 @@ fn is_chosen_copy(symmetry: &Symmetry, point: Vec2) -> bool {
 /// The periodic point may lie this many source spacings away.
 const FAR_SPACINGS: f64 = 4.0;
 /// The periodic direction may differ by this angle (radians).
-const FAR_ANGLE: f64 = 0.8;
+const FAR_ANGLE: f64 = 0.3;
 
 /// A family of orbits with bounces on curved walls, all of the same length (such as the two-bounce orbits of two facing arcs
 /// that pass through each other's centres). Its term is not in the sum.
@@ -241,10 +277,10 @@ fn from_source(
         nearby: Nearby::new(source),
         found: Vec::new(),
         families: Vec::new(),
-        tried: HashSet::new(),
+        tried: HashSet::default(),
         space: Workspace::default(),
     };
-    for orbit in known {
+    for orbit in known.iter().filter(|orbit| orbit.kind != OrbitKind::Joint) {
         hunt.nearby.add(setting, orbit);
     }
     let inverses: Vec<usize> = (0..setting.symmetry.order())
@@ -289,7 +325,7 @@ struct Hunt<'a> {
     nearby: Nearby,
     found: Vec<Orbit>,
     families: Vec<CurvedFamily>,
-    tried: HashSet<u64>,
+    tried: HashSet<u64, Mixing>,
     space: Workspace,
 }
 
@@ -317,17 +353,18 @@ impl Hunt<'_> {
             .then_some(shift)
     }
 
-    /// The path in rough outline: the walls that it meets and the cells of its bounce points, hashed (FNV-1a).
+    /// The path in rough outline: the walls that it meets and the cells of its bounce points, hashed.
     fn outline(&self, track: &Track, last: usize, element: usize) -> u64 {
-        let mix = |hash: u64, value: u64| (hash ^ value).wrapping_mul(0x0100_0000_01b3);
         let cell = OUTLINE_CELL * self.setting.domain.size;
-        track.steps[..=last].iter().fold(
-            mix(0xcbf2_9ce4_8422_2325, element as u64),
-            |hash, step| {
-                let place = (step.point / cell).map(|x| x.floor() as i64 as u64);
-                mix(mix(mix(hash, step.wall as u64), place.x), place.y)
-            },
-        )
+        let mut hasher = Mixing.build_hasher();
+        hasher.write_usize(element);
+        for step in &track.steps[..=last] {
+            let place = (step.point / cell).map(|x| x.floor() as i32);
+            hasher.write_usize(step.wall);
+            hasher.write_i32(place.x);
+            hasher.write_i32(place.y);
+        }
+        hasher.finish()
     }
 
     fn try_orbit(&mut self, track: &Track, last: usize, element: usize) {
@@ -361,7 +398,10 @@ impl Hunt<'_> {
                     },
                 );
             } else {
-                self.nearby.add(setting, &orbit);
+                // The other side of a joint must not be taken for explained.
+                if orbit.kind != OrbitKind::Joint {
+                    self.nearby.add(setting, &orbit);
+                }
                 insert(setting, &mut self.found, orbit);
             }
         }
@@ -375,7 +415,46 @@ const OUTLINE_CELL: f64 = 0.12;
 /// Cosine below which a grazing ray's window is not narrowed further.
 const LEAST_COSINE: f64 = 0.05;
 /// A known orbit explains a candidate if it lies within this fraction of the predicted shift from the predicted place.
-const EXPLAINS: f64 = 0.15;
+const EXPLAINS: f64 = 0.3;
+
+/// A hash of small integer keys that costs a few multiplications (FNV-1a on words): the keys come from our own geometry, so
+/// no one can choose them to collide.
+#[derive(Clone, Copy, Default)]
+struct Mixing;
+
+impl BuildHasher for Mixing {
+    type Hasher = Mixer;
+    fn build_hasher(&self) -> Mixer {
+        Mixer(0xcbf2_9ce4_8422_2325)
+    }
+}
+
+struct Mixer(u64);
+
+impl Mixer {
+    fn mix(&mut self, value: u64) {
+        self.0 = (self.0 ^ value).wrapping_mul(0x0000_0100_0000_01b3);
+        self.0 ^= self.0 >> 29;
+    }
+}
+
+impl Hasher for Mixer {
+    fn finish(&self) -> u64 {
+        self.0
+    }
+    fn write(&mut self, bytes: &[u8]) {
+        bytes.iter().for_each(|&byte| self.mix(u64::from(byte)));
+    }
+    fn write_i32(&mut self, value: i32) {
+        self.mix(u64::from(value.cast_unsigned()));
+    }
+    fn write_u64(&mut self, value: u64) {
+        self.mix(value);
+    }
+    fn write_usize(&mut self, value: usize) {
+        self.mix(value as u64);
+    }
+}
 
 /// Phase points of known orbits near a source, sorted into cells by number of bounces, place along the wall and direction.
 struct Nearby {
@@ -384,7 +463,7 @@ struct Nearby {
     /// Size of a cell: length along the wall, and component of the direction along the wall.
     cell: [f64; 2],
     window: f64,
-    cells: HashMap<[i32; 3], Vec<Phase>>,
+    cells: HashMap<[i32; 3], Vec<Phase>, Mixing>,
 }
 
 impl Nearby {
@@ -398,7 +477,7 @@ impl Nearby {
                 EXPLAINS * FAR_SPACINGS.hypot(FAR_ANGLE),
             ],
             window: 2.0 * FAR_SPACINGS * source.spacing,
-            cells: HashMap::new(),
+            cells: HashMap::default(),
         }
     }
 
@@ -409,7 +488,7 @@ impl Nearby {
     }
 
     fn add(&mut self, setting: &Setting, orbit: &Orbit) {
-        let ahead = phases(&orbit.points);
+        let ahead = setting.comparison.ahead(&orbit.points, orbit.symmetry);
         let back = setting.comparison.reversed(&orbit.points, orbit.symmetry);
         for (point, direction) in ahead.into_iter().chain(back) {
             for g in 0..setting.symmetry.order() {

@@ -7,7 +7,6 @@
 use super::analyse::{self, Draft, Setting, bounce_along, chords_are_free, is_primitive};
 use super::fan::{Reach, Resolution, Source, Track, follow_direction, shoot};
 use super::periodic::{Orbit, OrbitPoint};
-use super::phase::phases;
 use super::search::{Pass, insert, sort, sources};
 use crate::billiard::{
     Condition, Domain, Isometry, Mat2, Shape, Vec2, VertexKind, cross, flight, left,
@@ -349,7 +348,7 @@ fn strip(
         direction,
         &path.walls,
     )?;
-    if !is_primitive(setting, &middle) {
+    if !is_primitive(setting, &middle, path.element) {
         return None;
     }
     let own = Beam {
@@ -374,7 +373,11 @@ fn strip(
             .map(Condition::sign)
             .product(),
         symmetry: path.element,
-        copies: analyse::copies(setting, &phases(&middle), path.element),
+        copies: analyse::copies(
+            setting,
+            &setting.comparison.ahead(&middle, path.element),
+            path.element,
+        ),
         partner: 2,
         edges,
         beams: beams(setting, source, direction, path, [low, high])?,
@@ -454,7 +457,7 @@ fn beams(
     )
 }
 
-/// What the edge at ends[0] of a strip that reaches to ends[1] runs into.
+/// What the edge at `ends[0]` of a strip that reaches to `ends[1]` runs into.
 fn classify(
     setting: &Setting,
     source: &Source,
@@ -553,7 +556,7 @@ fn glide_orbit(
     }
     let points = bounce_along(setting.domain, source.wall, t, direction, &path.walls)?;
     chords_are_free(setting, &points, path.element).then_some(())?;
-    is_primitive(setting, &points).then_some(())?;
+    is_primitive(setting, &points, path.element).then_some(())?;
     let residual = (total.apply(points[0].point) - points[0].point - direction * length).norm();
     let flips = if points.len() % 2 == 0 { 1.0 } else { -1.0 };
     let sign = flips * setting.symmetry.elements[path.element].det();

@@ -2,7 +2,7 @@
 
 use super::{Comparison, Findings};
 use crate::command::answer::Answer;
-use crate::command::limits;
+use crate::command::completeness;
 use crate::command::note::Note;
 use crate::command::table::{Cell, Table};
 use crate::command::text::{counted, listed, significant};
@@ -17,11 +17,11 @@ const DIGITS: usize = 3;
 /// Everything that `density` has to say.
 pub(super) fn answer(findings: &Findings<'_>) -> Answer {
     let table = table(findings);
-    let (completeness, mut notes) = limits::completeness(findings.catalogue);
+    let (completeness, mut notes) = completeness::of_search(findings.catalogue);
     let plan = findings.plan;
     notes.extend(plan.notes.iter().cloned());
     notes.extend(list_notes(findings));
-    notes.extend(limits::omissions(
+    notes.extend(completeness::omissions(
         findings.subject,
         findings.catalogue,
         plan.middle,

@@ -9,7 +9,7 @@
 //! n periods of the radial motion, omega = w/n the rotation number, J = (1/2 pi) closed integral of p ds over a section,
 //! alpha the sum of the phase losses, f the number of directions.
 //!
-//! * [`recognise`] decides whether a domain is one of these shapes.
+//! * [`recognise()`] decides whether a domain is one of these shapes.
 //! * [`terms`] lists the families and their terms, with the phase of next order in 1/k where it is known (not for the
 //!   ellipse), and says what it leaves out.
 //!
