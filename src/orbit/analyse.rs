@@ -294,7 +294,8 @@ pub(crate) fn wall_along(domain: &Domain, from: Vec2, to: Vec2) -> Option<f64> {
     wall_within(domain, from, to, SLACK * domain.size)
 }
 
-/// Sign of the straight wall that the chord runs along, to within a distance.
+/// Sign of the straight wall that the chord runs along from end to end, to within a distance. A wall that covers a part of the
+/// chord only, such as a slit, is none: the orbit meets its tips, and what a reflection across it would add is diffraction.
 pub(crate) fn wall_within(domain: &Domain, from: Vec2, to: Vec2, near: f64) -> Option<f64> {
     domain.walls.iter().find_map(|wall| {
         let Shape::Line(line) = &wall.shape else {
@@ -302,9 +303,10 @@ pub(crate) fn wall_within(domain: &Domain, from: Vec2, to: Vec2, near: f64) -> O
         };
         let tangent = (line.end - line.start).normalize();
         let off = |p: Vec2| cross(tangent, p - line.start).abs();
-        let middle = tangent.dot(&((from + to) * 0.5 - line.start));
-        let beside = middle > 0.0 && middle < (line.end - line.start).norm();
-        (off(from) < near && off(to) < near && beside).then_some(wall.condition.sign())
+        let length = (line.end - line.start).norm();
+        let beside = |p: Vec2| (-near..=length + near).contains(&tangent.dot(&(p - line.start)));
+        let along = |p: Vec2| off(p) < near && beside(p);
+        (along(from) && along(to)).then_some(wall.condition.sign())
     })
 }
 
