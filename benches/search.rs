@@ -31,9 +31,8 @@ fn search(criterion: &mut Criterion) {
     let mut group = criterion.benchmark_group("search");
     group.sample_size(10);
     group.bench_function("stadium, length 12, 20 bounces, one thread", |bencher| {
-        bencher.iter(|| {
-            one_thread.install(|| black_box(Catalogue::find(&domain, &symmetry, LIMITS)))
-        });
+        bencher
+            .iter(|| one_thread.install(|| black_box(Catalogue::find(&domain, &symmetry, LIMITS))));
     });
     group.finish();
 }

@@ -1,8 +1,10 @@
 //! What must hold for the orbits of any billiard: unit determinant, stationary length, closure under the bounce map, time
-//! reversal, scaling, motions of the plane, and that the symmetry group only sorts the orbits.
+//! reversal, the Hessian's determinant and index, scaling, motions of the plane, and that the symmetry group only sorts the
+//! orbits.
 
-use orbitsum::billiard::{Domain, Event, Origin, Ray, Symmetry, Tracer, Vec2, detect};
-use orbitsum::orbit::{Catalogue, Limits, Orbit, OrbitKind};
+use nalgebra::DMatrix;
+use orbitsum::billiard::{Domain, Event, Frame, Origin, Ray, Symmetry, Tracer, Vec2, detect};
+use orbitsum::orbit::{Catalogue, Fixing, Limits, Orbit, OrbitKind};
 use orbitsum::system;
 use proptest::prelude::*;
 use std::path::Path;
@@ -18,6 +20,8 @@ const FOLLOWED_TRACE: f64 = 1e3;
 /// A point refined to 1e-12 and carried round an orbit of trace 10^3 has moved by 1e-9; the rest is margin for orbits whose
 /// trace is smaller than the stretching on their way.
 const CLOSES: f64 = 1e-7;
+/// Relative difference of determinants from the Hessian and from M: eigenvalues of chords as short as 0.01 lose some digits.
+const HESSIAN: f64 = 1e-8;
 /// Largest relative difference of lengths found in two ways.
 const SAME_LENGTH: f64 = 1e-9;
 /// Orbits whose length differs from the limit by less than this fraction may be found in one way and not in another.
@@ -31,12 +35,7 @@ struct Case {
     limits: Limits,
 }
 
-fn case(
-    file: &'static str,
-    set: &[(&str, f64)],
-    max_length: f64,
-    max_bounces: usize,
-) -> Case {
+fn case(file: &'static str, set: &[(&str, f64)], max_length: f64, max_bounces: usize) -> Case {
     Case {
         file,
         set: set
@@ -63,12 +62,7 @@ impl Case {
 /// Chaotic and mixed shapes, with lengths that leave some tens of orbits.
 fn shapes() -> impl Strategy<Value = Case> {
     prop_oneof![
-        (0.7..1.4, 0.3..1.5).prop_map(|(r, a)| case(
-            "stadium",
-            &[("R", r), ("a", a)],
-            7.0 * r,
-            8
-        )),
+        (0.7..1.4, 0.3..1.5).prop_map(|(r, a)| case("stadium", &[("R", r), ("a", a)], 7.0 * r, 8)),
         (0.3..1.6).prop_map(|d| case("lemon", &[("d", d)], 5.0, 8)),
         (0.08..0.16, 0.02..0.06, 0.0..0.02).prop_map(|(c2, c3, c4)| case(
             "oval",
@@ -121,7 +115,14 @@ fn check_closure(domain: &Domain, symmetry: &Symmetry, orbit: &Orbit) -> Result<
     let n = orbit.bounces();
     let image = |point: Vec2| symmetry.apply(orbit.symmetry, point);
     let first = orbit.points[0];
-    let ahead = follow(&tracer, first.wall, first.t, first.point, first.direction, n);
+    let ahead = follow(
+        &tracer,
+        first.wall,
+        first.t,
+        first.point,
+        first.direction,
+        n,
+    );
     let Some(ahead) = ahead else {
         return Err(TestCaseError::fail("an orbit runs into a corner"));
     };
@@ -131,7 +132,11 @@ fn check_closure(domain: &Domain, symmetry: &Symmetry, orbit: &Orbit) -> Result<
         } else {
             image(first.point)
         };
-        prop_assert!((ahead[i].0 - wanted).norm() < CLOSES * domain.size, "bounce {i} of {}", orbit.word);
+        prop_assert!(
+            (ahead[i].0 - wanted).norm() < CLOSES * domain.size,
+            "bounce {i} of {}",
+            orbit.word
+        );
     }
     // Backwards from the last bounce: the same points in reverse, the image of the last one under the inverse element at the end.
     let last = orbit.points[n - 1];
@@ -154,7 +159,11 @@ fn check_closure(domain: &Domain, symmetry: &Symmetry, orbit: &Orbit) -> Result<
         } else {
             symmetry.apply(inverse, last.point)
         };
-        prop_assert!((back[i].0 - wanted).norm() < CLOSES * domain.size, "reversed bounce {i} of {}", orbit.word);
+        prop_assert!(
+            (back[i].0 - wanted).norm() < CLOSES * domain.size,
+            "reversed bounce {i} of {}",
+            orbit.word
+        );
         length += (back[i].0 - here).norm();
         here = back[i].0;
     }
@@ -162,13 +171,84 @@ fn check_closure(domain: &Domain, symmetry: &Symmetry, orbit: &Orbit) -> Result<
     Ok(())
 }
 
-/// (length, |trace|, index) of the orbits clearly inside the limit, ascending.
+/// Length Hessian over the arc-length coordinates of all bounces, straight walls included, and the product of
+/// l_i/(cos theta_i cos theta_(i+1)) over the chords, from the bounce points alone.
+fn hessian(domain: &Domain, symmetry: &Symmetry, orbit: &Orbit) -> (DMatrix<f64>, f64) {
+    let n = orbit.bounces();
+    let frames: Vec<Frame> = orbit
+        .points
+        .iter()
+        .map(|bounce| domain.walls[bounce.wall].frame(bounce.t))
+        .collect();
+    let mut matrix = DMatrix::zeros(n, n);
+    let mut product = 1.0;
+    for i in 0..n {
+        let j = (i + 1) % n;
+        let last = i + 1 == n;
+        let turn = |v: Vec2| {
+            if last {
+                symmetry.turn(orbit.symmetry, v)
+            } else {
+                v
+            }
+        };
+        let end = if last {
+            symmetry.apply(orbit.symmetry, frames[j].point)
+        } else {
+            frames[j].point
+        };
+        let chord = end - frames[i].point;
+        let length = chord.norm();
+        let e = chord / length;
+        let (near, far) = (frames[i].tangent, turn(frames[j].tangent));
+        let leaves = e.dot(&frames[i].normal());
+        let arrives = -e.dot(&turn(frames[j].normal()));
+        // l(s, s') = |q'(s') - q(s)|: second derivatives, curvature positive where the wall bends towards its normal.
+        matrix[(i, i)] += leaves * leaves / length - frames[i].curvature * leaves;
+        matrix[(j, j)] += arrives * arrives / length - frames[j].curvature * arrives;
+        let mixed = -(near.dot(&far) - e.dot(&near) * e.dot(&far)) / length;
+        matrix[(i, j)] += mixed;
+        matrix[(j, i)] += mixed;
+        product *= length / (leaves * arrives);
+    }
+    (matrix, product)
+}
+
+/// |det(g M - 1)| = |det H| times the product of l_i/(cos theta_i cos theta_(i+1)) (Mackay & Meiss, Phys. Lett. 98A (1983) 92, from
+/// memory), and the index is the number of negative eigenvalues of H, here from a dense matrix over all bounces.
+fn check_hessian(domain: &Domain, symmetry: &Symmetry, orbit: &Orbit) -> Result<(), TestCaseError> {
+    let (matrix, product) = hessian(domain, symmetry, orbit);
+    let eigenvalues = matrix.clone().symmetric_eigenvalues();
+    let from_hessian = (eigenvalues.product() * product).abs();
+    let determinant = (2.0 - orbit.trace()).abs();
+    prop_assert!(
+        (from_hessian - determinant).abs() < HESSIAN * determinant.max(1.0),
+        "{}: {from_hessian} from the Hessian, {determinant} from M",
+        orbit.word
+    );
+    let negative = eigenvalues.iter().filter(|&&value| value < 0.0).count();
+    for closure in &orbit.closures {
+        if closure.repetition == 1 && closure.fixing == Fixing::Element(0) {
+            prop_assert_eq!(closure.negative, negative, "index of {}", &orbit.word);
+        }
+    }
+    Ok(())
+}
+
+/// (length, trace, index, partner) of the orbits clearly inside the limit, ascending.
 fn summary(catalogue: &Catalogue, unit: f64) -> Vec<(f64, f64, Option<usize>, u8)> {
     catalogue
         .orbits
         .iter()
         .filter(|orbit| orbit.length < catalogue.limits.max_length * (1.0 - AT_LIMIT))
-        .map(|orbit| (orbit.length / unit, orbit.trace(), orbit.index(), orbit.partner))
+        .map(|orbit| {
+            (
+                orbit.length / unit,
+                orbit.trace(),
+                orbit.index(),
+                orbit.partner,
+            )
+        })
         .collect()
 }
 
@@ -256,6 +336,7 @@ proptest! {
             prop_assert!((orbit.determinant - 1.0).abs() < DETERMINANT, "det {}", orbit.determinant);
             prop_assert!(orbit.residual < RESIDUAL, "gradient {}", orbit.residual);
             if orbit.trace().abs() < FOLLOWED_TRACE && !near_vertex(&domain, orbit) {
+                check_hessian(&domain, &symmetry, orbit)?;
                 check_closure(&domain, &symmetry, orbit)?;
             }
         }

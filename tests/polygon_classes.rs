@@ -11,7 +11,9 @@ mod shapes;
 use exact::{ExactSum, box_value, equilateral_value, levels};
 use orbitsum::baseline::weyl;
 use orbitsum::billiard::{Condition, Domain, detect};
-use shapes::{D, N, centered_rectangle_walls, domain, line, point, polygon, regular_walls, with_slits};
+use shapes::{
+    D, N, centered_rectangle_walls, domain, line, point, polygon, regular_walls, with_slits,
+};
 
 /// Largest rms residual in levels.
 const LARGEST: f64 = 1e-6;
@@ -25,7 +27,12 @@ fn check(
     class_of: impl Fn(i32, i32) -> Option<&'static str>,
 ) {
     let symmetry = detect(shape);
-    assert_eq!(symmetry.irreps.len(), classes.len(), "{name}: {}", symmetry.name);
+    assert_eq!(
+        symmetry.irreps.len(),
+        classes.len(),
+        "{name}: {}",
+        symmetry.name
+    );
     let sum = ExactSum::new(shape, &symmetry);
     for &class in classes {
         let irrep = symmetry.class(class).expect("a class");
@@ -104,7 +111,13 @@ fn equilateral_triangles() {
         let shape = domain(
             regular_walls(3, 90.0, &[condition])
                 .iter()
-                .map(|wall| line(wall.start() / 3f64.sqrt(), wall.end() / 3f64.sqrt(), condition))
+                .map(|wall| {
+                    line(
+                        wall.start() / 3f64.sqrt(),
+                        wall.end() / 3f64.sqrt(),
+                        condition,
+                    )
+                })
                 .collect(),
         );
         check(
