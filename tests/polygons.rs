@@ -38,11 +38,11 @@ fn between(first: Condition, second: Condition) -> (f64, i32) {
 fn check_rectangle(name: &str, [a, b]: [f64; 2], conditions: [Condition; 4]) {
     let [left, right, bottom, top] = conditions;
     let ((x, least_m), (y, least_n)) = (between(left, right), between(bottom, top));
-    check(
-        name,
-        &rectangle(a, b, [bottom, right, top, left]),
-        |end| levels(end, box_value(a, b, x, y), |m, n| m >= least_m && n >= least_n),
-    );
+    check(name, &rectangle(a, b, [bottom, right, top, left]), |end| {
+        levels(end, box_value(a, b, x, y), |m, n| {
+            m >= least_m && n >= least_n
+        })
+    });
 }
 
 /// Conditions left, right, bottom, top.
