@@ -65,9 +65,12 @@ fn circles_and_lines() {
     let eighth = 0.25 + 0.5 + (0.5f64.sqrt() - 0.25) + PI / 16.0;
     check("sinai-eighth", &[], (1.0 - PI / 16.0) / 8.0, eighth);
     check("mushroom", &[], PI / 2.0 + 1.0, 1.0 + 2.0 + 1.0 + PI);
-    // Two circular segments of half angle acos(d/(2R)): R = 1, d = 1.
+    // Two circular segments of half angle h = acos(d/(2R)), R = 1: area 2 h - (d/2) sqrt(4 - d^2), perimeter 4 h. d = 0.4, then 1.
+    let half = 0.2f64.acos();
+    check("lemon", &[], 2.0 * half - 0.2 * 3.84f64.sqrt(), 4.0 * half);
     let half = 0.5f64.acos();
-    check("lemon", &[], 2.0 * half - 0.5 * 3f64.sqrt(), 4.0 * half);
+    let area = 2.0 * half - 0.5 * 3f64.sqrt();
+    check("lemon", &[("d", "1")], area, 4.0 * half);
 }
 
 #[test]

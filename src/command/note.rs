@@ -25,6 +25,10 @@ pub(super) enum Note {
     ListTooShort { end: String },
     /// The cavity is not flat up to the end of the window.
     NotFlat(NotFlat),
+    /// The residual is as large as a whole level somewhere.
+    LargeResidual { from: String, size: f64 },
+    /// Only the first rows are shown.
+    MoreRows { shown: usize, all: usize },
     /// The smoothing is too narrow for the known orbits.
     TooNarrow { product: f64, enough: f64 },
     /// The smoothing is wider than the window.
@@ -58,6 +62,7 @@ impl Note {
             self,
             Self::ListBegins { .. }
                 | Self::ListTooShort { .. }
+                | Self::LargeResidual { .. }
                 | Self::NotFlat(_)
                 | Self::TooNarrow { .. }
                 | Self::WiderThanWindow
@@ -100,6 +105,16 @@ impl fmt::Display for Note {
                 f,
                 "the level list ends at {end}, before the window or within five smoothing widths of its beginning: there is \
                  nothing to compare; choose a lower window"
+            ),
+            Self::LargeResidual { from, size } => write!(
+                f,
+                "the residual passes half a level at {from} and reaches {}: a lasting step of -1 marks a missing level and of +1 a false one; values \
+                 far larger belong to a list of another shape, class or unit",
+                significant(*size, 2)
+            ),
+            Self::MoreRows { shown, all } => write!(
+                f,
+                "the table shows the {shown} shortest of {all}; --format csv or --out gives all"
             ),
             Self::NotFlat(warning) => warning.fmt(f),
             Self::TooNarrow { product, enough } => write!(

@@ -5,6 +5,7 @@ use super::arguments::Orbits;
 use super::completeness;
 use super::error::CommandError;
 use super::limits::{self, Plan, Wishes};
+use super::note::Note;
 use super::options::Options;
 use super::progress;
 use super::subject::Subject;
@@ -65,6 +66,12 @@ fn answer(subject: &Subject, plan: &Plan, catalogue: &Catalogue) -> Answer {
         plan.middle,
         plan.width,
     ));
+    if table.rows.len() > SHOWN_ROWS {
+        notes.push(Note::MoreRows {
+            shown: SHOWN_ROWS,
+            all: table.rows.len(),
+        });
+    }
     let mut metadata = subject.metadata("orbits");
     metadata.insert("max_length".into(), plan.limits.max_length.into());
     metadata.insert("max_bounces".into(), plan.limits.max_bounces.into());

@@ -1,5 +1,7 @@
 //! From a stationary closed path to a periodic orbit: is it real, is it primitive, what fixes it, how does it close?
 
+use super::chain::chain_coefficient;
+use super::joint;
 use super::path::{ClosedPath, LengthForm};
 use super::periodic::{Closure, Fixing, Orbit, OrbitKind, OrbitPoint};
 use super::phase::{Comparison, Phase};
@@ -7,6 +9,8 @@ use crate::billiard::{
     Condition, Domain, Event, Mat2, Origin, Ray, Shape, Symmetry, Tracer, Vec2, VertexKind, cross,
     left,
 };
+use num_complex::Complex64;
+use std::f64::consts::FRAC_PI_2;
 
 /// A point may miss its wall, and a chord may end early, by this fraction of the domain's size.
 const SLACK: f64 = 1e-8;
@@ -79,13 +83,12 @@ pub(crate) fn finish(
         2
     };
     let fixed_by = fixing(setting, &points, element);
-    let joints = points
+    let joint = points
         .iter()
-        .filter(|point| at_joint(setting.domain, point.point))
-        .count();
+        .any(|point| at_joint(setting.domain, point.point));
     // A flat orbit on an axis closes both with and without the reflection: in one of the two ways with its whole strip.
     let flat_family = curved.is_none() && fixed_by.len() > 1;
-    let kind = match (joints > 0, flat_family, fixed_by.len()) {
+    let kind = match (joint, flat_family, fixed_by.len()) {
         (true, ..) => OrbitKind::Joint,
         (_, true, _) => OrbitKind::InStrip,
         (_, _, 1) => OrbitKind::Isolated,
@@ -108,12 +111,11 @@ pub(crate) fn finish(
         dirichlet,
         fixed_by,
         closures: Vec::new(),
-        weight: 0.5f64.powi(joints as i32),
         chain: None,
         points,
     };
     orbit.chain = curved.and_then(|(path, form)| chain(setting, &orbit, path, form));
-    orbit.closures = closures(setting, &orbit, curved.map(|(_, form)| form));
+    orbit.closures = closures(setting, &orbit, curved);
     orbit
 }
 
@@ -328,7 +330,11 @@ pub(crate) fn copies(setting: &Setting, here: &[Phase], element: usize) -> usize
     count
 }
 
-fn closures(setting: &Setting, orbit: &Orbit, form: Option<&LengthForm>) -> Vec<Closure> {
+fn closures(
+    setting: &Setting,
+    orbit: &Orbit,
+    curved: Option<(&ClosedPath, &LengthForm)>,
+) -> Vec<Closure> {
     let repetitions = (setting.max_length / orbit.length * (1.0 + 1e-12)).floor() as u32;
     let mut found = Vec::new();
     let mut power = Mat2::identity();
@@ -345,14 +351,25 @@ fn closures(setting: &Setting, orbit: &Orbit, form: Option<&LengthForm>) -> Vec<
             if determinant < SINGULAR && orbit.chain.is_none() {
                 continue;
             }
-            let negative = form.map_or(0, |form| {
+            let negative = curved.map_or(0, |(_, form)| {
                 form.hessian.repeated(repetition as usize, sign).negative()
             });
+            let amplitude = match (orbit.chain, orbit.kind, curved) {
+                (Some(c), ..) => chain_coefficient(repetition, c),
+                (None, OrbitKind::Joint, Some((path, form))) => {
+                    joint::amplitude(setting, path, form, repetition as usize, sign)
+                }
+                _ => Some(Complex64::from_polar(
+                    1.0 / determinant.sqrt(),
+                    -FRAC_PI_2 * negative as f64,
+                )),
+            };
             found.push(Closure {
                 repetition,
                 fixing,
                 determinant,
                 negative,
+                amplitude,
             });
         }
     }

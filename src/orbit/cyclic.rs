@@ -1,5 +1,7 @@
 //! Symmetric cyclic tridiagonal matrices: the Hessian of a closed path's length.
 
+use nalgebra::DMatrix;
+
 /// Pivots smaller than this fraction of the largest entry are replaced by it: the inertia of a matrix that is not itself
 /// nearly singular is unchanged by so small a shift.
 const SMALLEST_PIVOT: f64 = 1e-14;
@@ -32,6 +34,19 @@ impl Cyclic {
             diagonal: self.diagonal.repeat(times),
             off,
         }
+    }
+
+    /// The whole matrix.
+    pub(crate) fn dense(&self) -> DMatrix<f64> {
+        let n = self.diagonal.len();
+        let mut full = DMatrix::zeros(n, n);
+        for i in 0..n {
+            let next = (i + 1) % n;
+            full[(i, i)] += self.diagonal[i];
+            full[(i, next)] += self.off[i];
+            full[(next, i)] += self.off[i];
+        }
+        full
     }
 
     fn scale(&self) -> f64 {
@@ -134,17 +149,6 @@ mod tests {
     use super::*;
     use proptest::prelude::*;
 
-    fn dense(matrix: &Cyclic) -> nalgebra::DMatrix<f64> {
-        let n = matrix.diagonal.len();
-        let mut full = nalgebra::DMatrix::zeros(n, n);
-        for i in 0..n {
-            full[(i, i)] += matrix.diagonal[i];
-            full[(i, (i + 1) % n)] += matrix.off[i];
-            full[((i + 1) % n, i)] += matrix.off[i];
-        }
-        full
-    }
-
     proptest! {
         /// Against nalgebra's dense symmetric eigenvalues and determinant.
         #[test]
@@ -156,7 +160,7 @@ mod tests {
                 diagonal: entries.iter().map(|e| e.0).collect(),
                 off: entries.iter().map(|e| e.1).collect(),
             };
-            let full = dense(&matrix);
+            let full = matrix.dense();
             let values = full.clone().symmetric_eigenvalues();
             prop_assume!(values.iter().all(|v| v.abs() > 1e-3));
             prop_assert_eq!(matrix.negative(), values.iter().filter(|v| **v < 0.0).count());

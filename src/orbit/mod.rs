@@ -2,10 +2,10 @@
 
 mod analyse;
 mod catalogue;
-#[allow(dead_code, reason = "the terms of strip edges are the caller")]
 mod chain;
 mod cyclic;
 mod fan;
+mod joint;
 mod monodromy;
 mod omission;
 mod path;

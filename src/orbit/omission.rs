@@ -1,6 +1,6 @@
 //! What the orbit sum leaves out or describes badly, with estimates of the size.
 
-use super::periodic::Orbit;
+use super::periodic::{Closure, Orbit, OrbitKind};
 use super::search::CurvedFamily;
 use super::strip::{Strip, StripEdge};
 use super::tori::{LeftOut, LeftOutKind};
@@ -19,7 +19,7 @@ pub enum OmissionKind {
     StripGrazing,
     /// Families of orbits with curved bounces, all of one length.
     Families,
-    /// Orbits with bounces at joints where only the leading rule of one half for each side is known.
+    /// Repetitions of orbits with three or more bounces at joints.
     Joints,
     /// Orbits next to a bifurcation, whose isolated terms are too large.
     Bifurcations,
@@ -177,42 +177,34 @@ pub(crate) fn omissions(domain: &Domain, tracer: &Tracer, found: &Found) -> Vec<
     .collect()
 }
 
-fn amplitudes(orbit: &Orbit) -> impl Iterator<Item = (f64, f64, f64)> {
-    orbit.closures.iter().map(|closure| {
-        let r = f64::from(closure.repetition);
-        let share =
-            orbit.weight * f64::from(orbit.partner) / (PI * r * orbit.fixed_by.len() as f64);
-        let size = match orbit.chain {
-            Some(_) => LARGEST_CHAIN,
-            None => 1.0 / closure.determinant.sqrt(),
-        };
-        (r * orbit.length, closure.determinant, share * size)
-    })
+/// Length and size of a closure's term; where the amplitude is not known, that of one side of the joint, but no more than
+/// chain coefficients are.
+fn size(orbit: &Orbit, closure: &Closure) -> (f64, f64) {
+    let r = f64::from(closure.repetition);
+    let share = f64::from(orbit.partner) / (PI * r * orbit.fixed_by.len() as f64);
+    let amplitude = closure.amplitude.map_or_else(
+        || (0.5 / closure.determinant.sqrt()).min(LARGEST_CHAIN),
+        |known| known.norm(),
+    );
+    (r * orbit.length, share * amplitude)
 }
 
 fn bifurcations(orbits: &[Orbit]) -> impl Iterator<Item = (f64, f64)> {
     orbits
         .iter()
-        .filter(|orbit| orbit.chain.is_none())
-        .flat_map(amplitudes)
-        .filter(|(_, determinant, _)| *determinant < NEAR_BIFURCATION)
-        .map(|(length, _, amplitude)| (length, amplitude))
+        .filter(|orbit| orbit.kind != OrbitKind::Joint)
+        .flat_map(|orbit| orbit.closures.iter().map(move |closure| (orbit, closure)))
+        .filter(|(_, closure)| closure.determinant < NEAR_BIFURCATION)
+        .map(|(orbit, closure)| size(orbit, closure))
 }
 
-/// Second and later repetitions of orbits through joints: the half rule is right for one hit of one joint only.
+/// Repetitions of orbits through joints whose amplitude is not known.
 fn joints(orbits: &[Orbit]) -> impl Iterator<Item = (f64, f64)> {
     orbits
         .iter()
-        .filter(|orbit| orbit.kind == super::periodic::OrbitKind::Joint)
-        .flat_map(|orbit| {
-            let known = orbit.known_chain();
-            orbit
-                .closures
-                .iter()
-                .zip(amplitudes(orbit))
-                .filter(move |(closure, _)| closure.repetition > known)
-                .map(|(_, (length, _, amplitude))| (length, amplitude))
-        })
+        .flat_map(|orbit| orbit.closures.iter().map(move |closure| (orbit, closure)))
+        .filter(|(_, closure)| closure.amplitude.is_none())
+        .map(|(orbit, closure)| size(orbit, closure))
 }
 
 /// The largest term among the orbits with nearly as many bounces as allowed: their series goes on with terms that are
@@ -221,8 +213,7 @@ fn many_bounces(orbits: &[Orbit], max_bounces: usize) -> impl Iterator<Item = (f
     orbits
         .iter()
         .filter(move |orbit| orbit.bounces() as f64 >= MANY_BOUNCES * max_bounces as f64)
-        .flat_map(|orbit| amplitudes(orbit).take(1))
-        .map(|(length, _, amplitude)| (length, amplitude))
+        .filter_map(|orbit| Some(size(orbit, orbit.closures.first()?)))
 }
 
 /// Directions into the wedge of a corner in which a way back is looked for.

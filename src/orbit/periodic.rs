@@ -1,6 +1,7 @@
 //! The periodic orbit, as everything after the search knows it.
 
 use crate::billiard::{Mat2, Vec2};
+use num_complex::Complex64;
 
 /// What sort of orbit it is.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -62,10 +63,13 @@ pub struct Closure {
     pub repetition: u32,
     /// The h of h g^r.
     pub fixing: Fixing,
-    /// |det(h g^r M^r - 1)|.
+    /// |det(h g^r M^r - 1)|, for a joint with the curvature of the wall that the orbit is listed with.
     pub determinant: f64,
     /// Negative eigenvalues of the length Hessian of the path closed by h g^r.
     pub negative: usize,
+    /// Amplitude with the phase of the Hessian, |det|^(-1/2) exp(-i (pi/2) negative) for an isolated orbit; `None` where it
+    /// is not known (some repetitions of orbits through joints).
+    pub amplitude: Option<Complex64>,
 }
 
 /// A periodic orbit of a billiard: a primitive relative orbit, closed by the group element `symmetry`.
@@ -98,8 +102,6 @@ pub struct Orbit {
     /// Closures of all repetitions up to the length limit; those with a vanishing determinant (which belong to a family)
     /// are left out, except where chain coefficients take their place.
     pub closures: Vec<Closure>,
-    /// Share of the isolated term that counts: 1, or 1/2 for each bounce at a joint, since each side of it has its own orbit.
-    pub weight: f64,
     /// For an orbit that is the edge of a strip and hits one joint per period: the parameter c = D kappa / cos(theta) of
     /// its chain coefficients.
     pub chain: Option<f64>,
@@ -134,16 +136,6 @@ impl Orbit {
     /// of joint hits is never marginal, since one side of the joint is curved.
     pub(crate) fn is_marginal(&self) -> bool {
         (2.0 - self.monodromy.trace()).abs() < MARGINAL
-    }
-
-    /// Largest repetition for which a joint orbit's term is known: all those with chain coefficients, or the first.
-    pub(crate) fn known_chain(&self) -> u32 {
-        match self.chain {
-            Some(c) => (1..)
-                .take_while(|&r| super::chain::chain_coefficient(r, c).is_some())
-                .count() as u32,
-            None => 1,
-        }
     }
 
     /// Maslov index of the primitive orbit: negative eigenvalues plus two per Dirichlet bounce.

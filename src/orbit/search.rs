@@ -8,7 +8,7 @@
 use super::analyse::{self, Setting};
 use super::fan::{Reach, Resolution, Source, Step, Track, shoot};
 use super::path::{Bounce, ClosedPath, LengthForm, Link, Workspace, refine};
-use super::periodic::{Orbit, OrbitKind};
+use super::periodic::{Orbit, OrbitKind, OrbitPoint};
 use super::phase::Phase;
 use crate::billiard::{Domain, Isometry, Mat2, Shape, Symmetry, Vec2, Wall, left};
 use rayon::prelude::*;
@@ -140,45 +140,43 @@ pub(crate) fn sort(orbits: &mut [Orbit]) {
 /// Orbits whose lengths differ by more than this (relative) are different ones.
 const SAME_LENGTH: f64 = 1e-9;
 
-/// Adds an orbit unless it, or its reverse, is there up to symmetry.
-pub(crate) fn insert(setting: &Setting, orbits: &mut Vec<Orbit>, orbit: Orbit) -> bool {
-    let new = !is_known(setting, orbits, &orbit);
-    if new {
-        orbits.push(orbit);
+/// Adds an orbit unless it, or its reverse, is there up to symmetry. An orbit through a joint may be found with either wall
+/// of the joint; that with more bounces on curved walls stays, since the bounces at joints must be variables of its length.
+pub(crate) fn insert(setting: &Setting, orbits: &mut Vec<Orbit>, orbit: Orbit) {
+    match position(setting, orbits, &orbit) {
+        None => orbits.push(orbit),
+        Some(index) => {
+            let curved = |orbit: &Orbit| {
+                let is_curved =
+                    |point: &&OrbitPoint| !setting.domain.walls[point.wall].is_straight();
+                orbit.points.iter().filter(is_curved).count()
+            };
+            if curved(&orbit) > curved(&orbits[index]) {
+                orbits[index] = orbit;
+            }
+        }
     }
-    new
 }
 
-fn is_known(setting: &Setting, orbits: &[Orbit], orbit: &Orbit) -> bool {
+fn position(setting: &Setting, orbits: &[Orbit], orbit: &Orbit) -> Option<usize> {
     let comparison = &setting.comparison;
     let mut own: Option<[Vec<Phase>; 2]> = None;
-    orbits
-        .iter()
-        .filter(|other| {
-            (other.length - orbit.length).abs() < SAME_LENGTH * orbit.length
-                && other.points.len() == orbit.points.len()
-                && same_side(orbit, other)
-        })
-        .any(|other| {
-            let [ahead, back] = own.get_or_insert_with(|| {
-                [
-                    comparison.ahead(&orbit.points, orbit.symmetry),
-                    comparison.reversed(&orbit.points, orbit.symmetry),
-                ]
-            });
-            let there = comparison.ahead(&other.points, other.symmetry);
-            comparison.meet(ahead, &there) || comparison.meet(back, &there)
-        })
+    orbits.iter().position(|other| {
+        if (other.length - orbit.length).abs() > SAME_LENGTH * orbit.length
+            || other.points.len() != orbit.points.len()
+        {
+            return false;
+        }
+        let [ahead, back] = own.get_or_insert_with(|| {
+            [
+                comparison.ahead(&orbit.points, orbit.symmetry),
+                comparison.reversed(&orbit.points, orbit.symmetry),
+            ]
+        });
+        let there = comparison.ahead(&other.points, other.symmetry);
+        comparison.meet(ahead, &there) || comparison.meet(back, &there)
+    })
 }
-
-/// An orbit through a joint is two, one for the curvature on each side; both have the same points.
-fn same_side(a: &Orbit, b: &Orbit) -> bool {
-    a.kind != OrbitKind::Joint
-        || (a.trace() - b.trace()).abs() < SAME_TRACE * (1.0 + a.trace().abs())
-}
-
-/// Relative difference of traces above which two orbits through a joint take different sides of it.
-const SAME_TRACE: f64 = 1e-6;
 
 /// Direction (generic on purpose) by which one of the symmetric copies of a point is chosen.
 const GENERIC: Vec2 = Vec2::new(0.803_142_9, 0.595_779_3);

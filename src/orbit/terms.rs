@@ -1,14 +1,13 @@
 //! From orbits and strips to terms of the sum, for the whole domain or one symmetry class.
 
 use super::catalogue::Catalogue;
-use super::chain::chain_coefficient;
 use super::periodic::{Closure, Fixing, Orbit};
 use super::strip::{Strip, StripEdge};
 use super::tori::Integrable;
 use crate::billiard::{Condition, Irrep, Symmetry};
 use crate::trace::{Amplitude, Term};
 use num_complex::Complex64;
-use std::f64::consts::{FRAC_PI_2, PI};
+use std::f64::consts::PI;
 
 /// Weights of the group elements in a class: dimension times character, or |G| times the delta at the identity for the
 /// whole domain.
@@ -118,32 +117,21 @@ pub fn orbit_terms(orbit: &Orbit, weights: &ClassWeights) -> Vec<Term> {
         .collect()
 }
 
-/// N(k) = (weight / (pi r |K|)) w(h g^r) |det(h g^r M^r - 1)|^(-1/2) sin(r k L - (pi/2) mu), for each of the `partner`
-/// directions (Gutzwiller 1971; with symmetry Robbins 1989, Lauritzen 1991).
+/// N(k) = (1/(pi r |K|)) w(h g^r) Im[A exp(i r k L)] times the wall signs, for each of the `partner` directions, with
+/// A = |det(h g^r M^r - 1)|^(-1/2) exp(-i (pi/2) nu) (Gutzwiller 1971; with symmetry Robbins 1989, Lauritzen 1991).
 fn closure_term(orbit: &Orbit, closure: &Closure, weights: &ClassWeights) -> Option<Term> {
     let r = closure.repetition;
     let share = f64::from(orbit.partner) * weights.closed(orbit.symmetry, r, closure.fixing)
         / (PI * f64::from(r) * orbit.fixed_by.len() as f64);
-    let index = (closure.negative + 2 * orbit.dirichlet * r as usize) as f64;
-    let amplitude = match orbit.chain {
-        // The chain coefficient replaces amplitude and the phase of the Hessian; the wall signs stay.
-        Some(c) => {
-            let sign = if (orbit.dirichlet * r as usize).is_multiple_of(2) {
-                1.0
-            } else {
-                -1.0
-            };
-            chain_coefficient(r, c)? * sign
-        }
-        None => Complex64::from_polar(
-            orbit.weight / closure.determinant.sqrt(),
-            -FRAC_PI_2 * index,
-        ),
+    let walls = if (orbit.dirichlet * r as usize).is_multiple_of(2) {
+        1.0
+    } else {
+        -1.0
     };
     Some(Term {
         length: orbit.length * f64::from(r),
-        // sin x = Re[-i e^(i x)]
-        coefficient: amplitude * share * Complex64::new(0.0, -1.0),
+        // Im z = Re[-i z]
+        coefficient: closure.amplitude? * share * walls * Complex64::new(0.0, -1.0),
         amplitude: Amplitude::Constant,
         repetition: r,
     })

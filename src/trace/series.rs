@@ -89,6 +89,7 @@ impl PowerSeries {
                     term.coefficient,
                     gaussian.series(0).collect(),
                     gaussian.bounds(0).collect(),
+                    smoothing,
                     accuracy,
                 )
             }
@@ -113,7 +114,13 @@ impl PowerSeries {
             hankel *= Complex64::I * ((4.0 - odd * odd) / (8.0 * next * term.length));
         }
         let front = Complex64::from_polar((FRAC_2_PI / term.length).sqrt(), -0.75 * PI);
-        Self::truncated(front * term.coefficient.re, coefficients, bounds, accuracy)
+        Self::truncated(
+            front * term.coefficient.re,
+            coefficients,
+            bounds,
+            smoothing,
+            accuracy,
+        )
     }
 
     /// Cuts a series in front of the term that falls below the accuracy first as k grows, and scales it.
@@ -121,17 +128,22 @@ impl PowerSeries {
         front: Complex64,
         coefficients: Vec<Complex64>,
         bounds: Vec<f64>,
+        smoothing: f64,
         accuracy: f64,
     ) -> Self {
         let tolerance = accuracy / OMITTED_TERMS;
         let mut omitted = MAX_ORDER;
         let mut valid_from = f64::INFINITY;
+        // The series know nothing of the branch point at k = 0, whose part in the mean is exp(-(k/s)^2/2), also where the
+        // wave itself is smoothed away.
+        let clear_of_zero = smoothing * (-2.0 * tolerance.min(1.0).ln()).sqrt();
         for (order, bound) in bounds.iter().enumerate().skip(1) {
             let from = (bound / tolerance).powf(1.0 / order as f64);
             if from < valid_from {
                 (omitted, valid_from) = (order, from);
             }
         }
+        valid_from = valid_from.max(clear_of_zero);
         if !front.is_finite() {
             valid_from = f64::INFINITY;
         }

@@ -95,8 +95,27 @@ fn list_notes(findings: &Findings<'_>) -> Vec<Note> {
             used_to: subject.level(used_to, 6),
         });
     }
+    let counted: Vec<usize> = (0..comparison.residual.len())
+        .filter(|&index| comparison.counts(findings.curves.k[index]))
+        .collect();
+    let size = |index: &usize| comparison.residual[*index].abs();
+    let first = counted.iter().find(|index| size(index) > LARGE_RESIDUAL);
+    let largest = counted.iter().max_by(|a, b| size(a).total_cmp(&size(b)));
+    if let (Some(&first), Some(&largest)) = (first, largest) {
+        notes.push(Note::LargeResidual {
+            from: format!(
+                "{} = {}",
+                subject.system.units.column(),
+                subject.level(findings.curves.at[first], 4)
+            ),
+            size: comparison.residual[largest],
+        });
+    }
     notes
 }
+
+/// A residual above this many levels is more than the error of a usable orbit sum: half of a missing level.
+const LARGE_RESIDUAL: f64 = 0.5;
 
 /// Name and value of what a comparison found, for people.
 fn result_lines(comparison: &Comparison) -> Vec<(String, String)> {
