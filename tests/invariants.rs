@@ -126,14 +126,14 @@ fn check_closure(domain: &Domain, symmetry: &Symmetry, orbit: &Orbit) -> Result<
     let Some(ahead) = ahead else {
         return Err(TestCaseError::fail("an orbit runs into a corner"));
     };
-    for i in 0..n {
+    for (i, (there, _)) in ahead.iter().enumerate() {
         let wanted = if i + 1 < n {
             orbit.points[i + 1].point
         } else {
             image(first.point)
         };
         prop_assert!(
-            (ahead[i].0 - wanted).norm() < CLOSES * domain.size,
+            (there - wanted).norm() < CLOSES * domain.size,
             "bounce {i} of {}",
             orbit.word
         );
@@ -153,19 +153,19 @@ fn check_closure(domain: &Domain, symmetry: &Symmetry, orbit: &Orbit) -> Result<
     let inverse = symmetry.inverse(orbit.symmetry);
     let mut length = 0.0;
     let mut here = last.point;
-    for i in 0..n {
+    for (i, &(there, _)) in back.iter().enumerate() {
         let wanted = if i + 1 < n {
             orbit.points[n - 2 - i].point
         } else {
             symmetry.apply(inverse, last.point)
         };
         prop_assert!(
-            (back[i].0 - wanted).norm() < CLOSES * domain.size,
+            (there - wanted).norm() < CLOSES * domain.size,
             "reversed bounce {i} of {}",
             orbit.word
         );
-        length += (back[i].0 - here).norm();
-        here = back[i].0;
+        length += (there - here).norm();
+        here = there;
     }
     prop_assert!((length - orbit.length).abs() < CLOSES * orbit.length);
     Ok(())
