@@ -150,7 +150,7 @@ impl LengthForm {
 /// Largest residual gradient of an orbit that counts as found.
 pub(crate) const LARGEST_RESIDUAL: f64 = 1e-11;
 /// Newton steps; convergence is quadratic, so more only help a start that is far off.
-const LARGEST_STEPS: usize = 14;
+const LARGEST_STEPS: usize = 9;
 /// Longest step of a bounce point, as a fraction of the domain's size: longer ones leave the region where the quadratic
 /// form means anything.
 const LONGEST_STEP: f64 = 0.12;
