@@ -19,7 +19,7 @@ pub(crate) struct Reach {
 pub(crate) struct Resolution {
     /// Rays before refinement.
     pub(crate) rays: usize,
-    /// Neighbours whose bounce points lie further apart than this are refined; infinite: those that meet other walls.
+    /// Neighbours whose bounce points lie further apart than this, or on other walls, are refined.
     pub(crate) spread: f64,
     /// Neighbours closer than this angle (radians) are not refined further.
     pub(crate) smallest_gap: f64,
@@ -173,16 +173,14 @@ pub(crate) fn shoot(
     }
 }
 
-/// Do two neighbouring rays leave room for a third story between them? Bounce points that stay close, even on two walls
-/// that meet, do not: the return map is continuous between them.
+/// Do two neighbouring rays leave room for a third story between them? Where they meet different walls they may, however
+/// close the points are: next to a smooth joint the return map is continuous, but each word has its own orbits.
 fn differ(a: &Track, b: &Track, spread: f64) -> bool {
-    let apart = a.steps.iter().zip(&b.steps).any(|(x, y)| {
-        if spread.is_finite() {
-            (x.point - y.point).norm_squared() > spread * spread
-        } else {
-            x.wall != y.wall
-        }
-    });
+    let apart = a
+        .steps
+        .iter()
+        .zip(&b.steps)
+        .any(|(x, y)| x.wall != y.wall || (x.point - y.point).norm_squared() > spread * spread);
     let cut_short =
         |short: &Track, long: &Track| short.stopped && short.steps.len() < long.steps.len();
     apart || cut_short(a, b) || cut_short(b, a)

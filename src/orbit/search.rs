@@ -293,14 +293,21 @@ fn from_source(
         resolution,
         &mut |track| {
             rays += 1;
+            let mut kind = Kind {
+                bounces: 0,
+                curved: 0,
+            };
             for n in 0..track.steps.len() {
                 let step = &track.steps[n];
+                kind.bounces += 1;
                 if setting.domain.walls[step.wall].is_straight() {
                     continue;
                 }
+                // The bounce at step n is the image of that at the source.
+                kind.curved += 1;
                 for (element, &inverse) in inverses.iter().enumerate() {
                     if let Some(shift) = hunt.shift(track, step, inverse)
-                        && !hunt.nearby.explains(track, n + 1, shift)
+                        && !hunt.nearby.explains(track, kind, shift)
                     {
                         hunt.try_orbit(track, n, element);
                     }
@@ -380,10 +387,13 @@ impl Hunt<'_> {
         if refine(setting.domain, &mut path, &mut self.space).is_none() {
             return;
         }
-        if self
-            .nearby
-            .has(path.count(), first_phase(&path, &self.space.form))
-        {
+        if self.nearby.has(
+            Kind {
+                bounces: path.count(),
+                curved: path.bounces.len(),
+            },
+            first_phase(&path, &self.space.form),
+        ) {
             return;
         }
         if let Some(orbit) = analyse::orbit(setting, &path, &self.space.form) {
@@ -454,6 +464,29 @@ impl Hasher for Mixer {
     }
 }
 
+/// How many bounces an orbit has, in all and on curved walls. Orbits that differ in this are never taken for each other,
+/// however close they are: next to a joint an orbit with one wall of it lies beside one with the other.
+#[derive(Clone, Copy)]
+struct Kind {
+    bounces: usize,
+    curved: usize,
+}
+
+impl Kind {
+    fn of(domain: &Domain, walls: impl Iterator<Item = usize>) -> Self {
+        walls.fold(
+            Self {
+                bounces: 0,
+                curved: 0,
+            },
+            |kind, wall| Self {
+                bounces: kind.bounces + 1,
+                curved: kind.curved + usize::from(!domain.walls[wall].is_straight()),
+            },
+        )
+    }
+}
+
 /// Phase points of known orbits near a source, sorted into cells by number of bounces, place along the wall and direction.
 struct Nearby {
     origin: Vec2,
@@ -461,7 +494,7 @@ struct Nearby {
     /// Size of a cell: length along the wall, and component of the direction along the wall.
     cell: [f64; 2],
     window: f64,
-    cells: HashMap<[i32; 3], Vec<Phase>, Mixing>,
+    cells: HashMap<[i32; 4], Vec<Phase>, Mixing>,
 }
 
 impl Nearby {
@@ -479,13 +512,19 @@ impl Nearby {
         }
     }
 
-    fn cell(&self, bounces: usize, point: Vec2, direction: Vec2) -> [i32; 3] {
+    fn cell(&self, kind: Kind, point: Vec2, direction: Vec2) -> [i32; 4] {
         let place = self.tangent.dot(&(point - self.origin)) / self.cell[0];
         let along = self.tangent.dot(&direction) / self.cell[1];
-        [bounces as i32, place.floor() as i32, along.floor() as i32]
+        [
+            kind.bounces as i32,
+            kind.curved as i32,
+            place.floor() as i32,
+            along.floor() as i32,
+        ]
     }
 
     fn add(&mut self, setting: &Setting, orbit: &Orbit) {
+        let kind = Kind::of(setting.domain, orbit.points.iter().map(|point| point.wall));
         let ahead = setting.comparison.ahead(&orbit.points, orbit.symmetry);
         let back = setting.comparison.reversed(&orbit.points, orbit.symmetry);
         for (point, direction) in ahead.into_iter().chain(back) {
@@ -493,16 +532,16 @@ impl Nearby {
                 let image = setting.symmetry.apply(g, point);
                 if (image - self.origin).norm_squared() < self.window * self.window {
                     let turned = setting.symmetry.turn(g, direction);
-                    let cell = self.cell(orbit.bounces(), image, turned);
+                    let cell = self.cell(kind, image, turned);
                     self.cells.entry(cell).or_default().push((image, turned));
                 }
             }
         }
     }
 
-    /// Is this phase point on a known orbit with that many bounces?
-    fn has(&self, bounces: usize, (point, direction): Phase) -> bool {
-        let [n, place, along] = self.cell(bounces, point, direction);
+    /// Is this phase point on a known orbit of that kind?
+    fn has(&self, kind: Kind, (point, direction): Phase) -> bool {
+        let [n, curved, place, along] = self.cell(kind, point, direction);
         let same = |phase: &Phase| {
             (phase.0 - point).norm_squared() + (phase.1 - direction).norm_squared()
                 < SAME_PHASE * SAME_PHASE
@@ -510,14 +549,14 @@ impl Nearby {
         (-1..=1).any(|i| {
             (-1..=1).any(|j| {
                 self.cells
-                    .get(&[n, place + i, along + j])
+                    .get(&[n, curved, place + i, along + j])
                     .is_some_and(|cell| cell.iter().any(same))
             })
         })
     }
 
-    /// Is there a known orbit with that many bounces where the shift points?
-    fn explains(&self, track: &Track, bounces: usize, shift: Vec2) -> bool {
+    /// Is there a known orbit of that kind where the shift points?
+    fn explains(&self, track: &Track, kind: Kind, shift: Vec2) -> bool {
         let start = track.direction;
         let aside = left(start);
         let near = EXPLAINS * shift.norm() + SAME_LENGTH;
@@ -525,7 +564,7 @@ impl Nearby {
         let slant = aside.dot(&self.tangent);
         let slant = slant.abs().max(LEAST_COSINE).copysign(slant);
         let point = self.origin + self.tangent * (shift.x / slant);
-        let [n, place, along] = self.cell(bounces, point, start + aside * shift.y);
+        let [n, curved, place, along] = self.cell(kind, point, start + aside * shift.y);
         let explained = |phase: &Phase| {
             let x = aside.dot(&(phase.0 - track.start)) - shift.x;
             let y = aside.dot(&phase.1) - shift.y;
@@ -534,7 +573,7 @@ impl Nearby {
         (-1..=1).any(|i| {
             (-1..=1).any(|j| {
                 self.cells
-                    .get(&[n, place + i, along + j])
+                    .get(&[n, curved, place + i, along + j])
                     .is_some_and(|cell| cell.iter().any(explained))
             })
         })
