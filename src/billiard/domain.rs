@@ -191,6 +191,49 @@ impl Domain {
         Ok(domain)
     }
 
+    /// The same domain with straight walls that continue each other, under the same condition, joined to one. How an outline
+    /// is drawn then does not matter to what is found in it; walls are numbered anew.
+    #[must_use]
+    pub fn joined(&self) -> Self {
+        let chains = self
+            .loops
+            .iter()
+            .map(|chain| (chain.role, self.joined_loop(chain)))
+            .collect();
+        // A chain of fewer walls along the same points is a domain as the longer one was.
+        Self::new(chains).unwrap_or_else(|_| self.clone())
+    }
+
+    fn joined_loop(&self, chain: &WallLoop) -> Vec<Wall> {
+        let continues = |wall: usize| {
+            let vertex = &self.vertices[wall];
+            vertex.kind == VertexKind::Smooth
+                && self.walls[vertex.before].is_straight()
+                && self.walls[wall].is_straight()
+        };
+        let range = chain.walls.clone();
+        // Begin where a wall does not continue the one before it.
+        let Some(first) = range.clone().find(|&wall| !continues(wall)) else {
+            return self.walls[range].to_vec();
+        };
+        if chain.role == Role::Slit {
+            return self.walls[range].to_vec();
+        }
+        let mut joined: Vec<Wall> = Vec::new();
+        for wall in (first..range.end).chain(range.start..first) {
+            match (
+                joined.last_mut().map(|last| &mut last.shape),
+                &self.walls[wall].shape,
+            ) {
+                (Some(Shape::Line(last)), Shape::Line(line)) if continues(wall) => {
+                    last.end = line.end
+                }
+                _ => joined.push(self.walls[wall].clone()),
+            }
+        }
+        joined
+    }
+
     /// The wall before `wall` in its loop.
     #[must_use]
     pub fn previous(&self, wall: usize) -> usize {

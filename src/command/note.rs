@@ -55,6 +55,9 @@ pub(super) enum Note {
     },
 }
 
+/// What is left out, or too large, by this many levels makes the orbit sum unusable.
+const UNUSABLE: f64 = 0.5;
+
 impl Note {
     /// Is it more than a remark?
     pub(super) fn is_warning(&self) -> bool {
@@ -67,7 +70,7 @@ impl Note {
                 | Self::TooNarrow { .. }
                 | Self::WiderThanWindow
                 | Self::NotSettled { .. }
-        )
+        ) || matches!(self, Self::LeftOut { size, .. } if *size >= UNUSABLE)
     }
 
     /// With its heading.

@@ -47,7 +47,7 @@ impl Catalogue {
     pub fn find(domain: &Domain, symmetry: &Symmetry, limits: Limits) -> Self {
         match tori::recognise(domain) {
             Some(shape) => Self::of_tori(shape, limits),
-            None => Self::search(domain, symmetry, limits),
+            None => Self::search(&domain.joined(), symmetry, limits),
         }
     }
 
@@ -148,6 +148,7 @@ impl Limits {
         if tori::recognise(domain).is_some() || domain.walls.iter().all(Wall::is_straight) {
             return self;
         }
+        let domain = &domain.joined();
         let tracer = Tracer::new(domain);
         let chord = std::f64::consts::PI * domain.area / domain.perimeter;
         let mut affordable = FIRST_SCOUT * chord;

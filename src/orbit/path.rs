@@ -179,7 +179,7 @@ pub(crate) fn refine(domain: &Domain, path: &mut ClosedPath, space: &mut Workspa
         }
         polished = residual < LARGEST_RESIDUAL;
         form.hessian
-            .solve(&form.gradient, &mut space.elimination, &mut space.step)?;
+            .solve(&form.gradient, &mut space.elimination, &mut space.step);
         let longest = space
             .step
             .iter()

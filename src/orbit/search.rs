@@ -37,9 +37,9 @@ const FIRST_GAP: f64 = 5e-5;
 /// Neighbouring rays may land this far apart, as a fraction of the size, before they are refined.
 const SPREAD: f64 = 0.25;
 /// Number of passes after which the search gives up on settling; what is still being added then is said in the output.
-const MOST_PASSES: usize = 6;
+const MOST_PASSES: usize = 5;
 /// Each pass has this many times the sources of the one before, and gaps smaller by the same factor.
-const REFINEMENT: f64 = 1.4;
+const REFINEMENT: f64 = 1.7;
 
 /// What the search from curved walls finds.
 #[derive(Default)]
@@ -352,7 +352,12 @@ impl Hunt<'_> {
             return None;
         }
         let map = step.map * symmetry.elements[inverse].det();
-        let shift = (Mat2::identity() - map).try_inverse()? * mismatch;
+        let difference = Mat2::identity() - map;
+        if difference.determinant().abs() < FAMILY_DETERMINANT {
+            // In a family there is no nearest point; what nearly closes is refined.
+            return (mismatch.norm() < FAMILY_MISMATCH).then_some(mismatch);
+        }
+        let shift = difference.try_inverse()? * mismatch;
         let cosine = start.dot(&left(self.source.tangent)).max(LEAST_COSINE);
         (shift.x.abs() < FAR_SPACINGS * self.source.spacing * cosine && shift.y.abs() < FAR_ANGLE)
             .then_some(shift)
@@ -416,6 +421,10 @@ impl Hunt<'_> {
     }
 }
 
+/// |det(1 - M)| of a ray below which it runs in a family of orbits.
+const FAMILY_DETERMINANT: f64 = 1e-7;
+/// How nearly (length and angle) a ray in a family must close to be refined.
+const FAMILY_MISMATCH: f64 = 0.1;
 /// Cells, as a fraction of the size, into which bounce points are sorted: paths whose points lie in the same cells lead
 /// Newton's method to the same orbit, since they differ by less than the steps it is allowed to take.
 const OUTLINE_CELL: f64 = 0.12;
