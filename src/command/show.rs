@@ -265,7 +265,7 @@ fn dynamics(subject: &Subject, options: &Options) -> Vec<Fact> {
             .remark(format!("(over {BOUNCES} bounces)")),
     ];
     let Some(horizon) = measured.horizon_bounces else {
-        facts.push(Fact::new("lyapunov_per_bounce", Cell::Empty).error(measured.lyapunov_error).remark(
+        facts.push(Fact::new("lyapunov_per_bounce", 0.0).error(measured.lyapunov_error).remark(
             "compatible with zero: near rays separate as a power of time, and no prediction horizon exists",
         ));
         return facts;

@@ -45,6 +45,8 @@ pub(super) fn run(typed: &Weyl, options: &Options) -> Result<Answer, CommandErro
         row("fluctuation", fluctuation.at(k).into());
     }
     let mut notes: Vec<Note> = weyl.omissions.iter().filter_map(omission).collect();
+    let highest = places.iter().copied().fold(0.0, f64::max);
+    notes.extend(units.warning(highest).map(Note::NotFlat));
     if !fluctuation.is_known() {
         notes.push(Note::SmoothPart(
             "the fluctuation is not estimated for single classes of this integrable shape",

@@ -7,7 +7,7 @@ use super::phase::Comparison;
 use super::search::{Curved, CurvedFamily, Pass, curved_orbits, insert, scout, sort};
 use super::strip::{Strip, flat_orbits};
 use super::tori::{self, Integrable, TorusLimits, TorusSum};
-use crate::billiard::{Domain, Symmetry, Tracer, Wall};
+use crate::billiard::{Domain, Shape, Symmetry, Tracer, Wall};
 
 /// How far orbits are looked for. Both bound the reduced orbit.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -119,8 +119,10 @@ const BOUNCES_PER_CHORD: f64 = 4.0;
 const FIRST_SCOUT: f64 = 2.0;
 const SCOUT_STEP: f64 = 1.2;
 /// Orbits and rays of a coarse search above which the full one takes more than about a second.
-const MANY_ORBITS: usize = 400;
-const MANY_RAYS: usize = 4000;
+const MANY_ORBITS: usize = 250;
+const MANY_RAYS: usize = 10_000;
+/// A ray among formula curves costs this many times one among lines and arcs.
+const CURVE_COST: usize = 4;
 
 impl Limits {
     /// Limits for all orbits up to a length, with a number of bounces that suits the domain.
@@ -151,6 +153,12 @@ impl Limits {
         let domain = &domain.joined();
         let tracer = Tracer::new(domain);
         let chord = std::f64::consts::PI * domain.area / domain.perimeter;
+        let is_curve = |wall: &Wall| matches!(wall.shape, Shape::Curve(_));
+        let cost = if domain.walls.iter().any(is_curve) {
+            CURVE_COST
+        } else {
+            1
+        };
         let mut affordable = FIRST_SCOUT * chord;
         while affordable < self.max_length {
             let next = (affordable * SCOUT_STEP).min(self.max_length);
@@ -163,7 +171,7 @@ impl Limits {
                 max_bounces: self.max_bounces,
             };
             let (orbits, rays) = scout(&setting);
-            if orbits > MANY_ORBITS || rays > MANY_RAYS {
+            if orbits > MANY_ORBITS || rays * cost > MANY_RAYS {
                 break;
             }
             affordable = next;

@@ -113,12 +113,7 @@ impl Cyclic {
 
     /// Solves matrix * x = right in O(n), with `elimination` as memory. If the matrix is singular the last component is set
     /// to zero: of a family of solutions that one is taken.
-    pub(crate) fn solve(
-        &self,
-        right: &[f64],
-        elimination: &mut Elimination,
-        x: &mut Vec<f64>,
-    ) {
+    pub(crate) fn solve(&self, right: &[f64], elimination: &mut Elimination, x: &mut Vec<f64>) {
         let n = right.len();
         self.eliminate(elimination);
         let Elimination {

@@ -161,8 +161,7 @@ pub(crate) fn shoot(
     for i in 1..resolution.rays {
         waiting.push((angle(i), at(angle(i), &mut spare)));
         while let Some((high, track)) = waiting.pop() {
-            if high - near.0 > resolution.smallest_gap && differ(&near.1, &track, resolution.spread)
-            {
+            if high - near.0 > largest_gap(&near.1, &track, resolution) {
                 let middle = 0.5 * (near.0 + high);
                 waiting.push((high, track));
                 waiting.push((middle, at(middle, &mut spare)));
@@ -173,15 +172,28 @@ pub(crate) fn shoot(
     }
 }
 
-/// Do two neighbouring rays leave room for a third story between them? Where they meet different walls they may, however
-/// close the points are: next to a smooth joint the return map is continuous, but each word has its own orbits.
-fn differ(a: &Track, b: &Track, spread: f64) -> bool {
-    let apart = a
-        .steps
-        .iter()
-        .zip(&b.steps)
-        .any(|(x, y)| x.wall != y.wall || (x.point - y.point).norm_squared() > spread * spread);
+/// The angle between two neighbouring rays above which a third is wanted between them; infinite if they tell the same story.
+///
+/// Where they meet different walls but stay close, as on both sides of a smooth joint, the return map is continuous, but
+/// each word has its own orbits: there a coarser resolution is enough.
+fn largest_gap(a: &Track, b: &Track, resolution: &Resolution) -> f64 {
+    let (mut walls, mut points) = (false, false);
+    for (x, y) in a.steps.iter().zip(&b.steps) {
+        walls |= x.wall != y.wall;
+        points |= (x.point - y.point).norm_squared() > resolution.spread * resolution.spread;
+    }
     let cut_short =
         |short: &Track, long: &Track| short.stopped && short.steps.len() < long.steps.len();
-    apart || cut_short(a, b) || cut_short(b, a)
+    // Without a limit of distance the walls alone decide.
+    let words = walls && resolution.spread.is_infinite();
+    if points || words || cut_short(a, b) || cut_short(b, a) {
+        resolution.smallest_gap
+    } else if walls {
+        WORDS_ALONE * resolution.smallest_gap
+    } else {
+        f64::INFINITY
+    }
 }
+
+/// How much coarser the resolution may be where rays differ by the walls alone.
+const WORDS_ALONE: f64 = 2.0;
