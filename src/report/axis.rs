@@ -106,7 +106,11 @@ impl Axis {
         let slack = 1e-6;
         let first = (self.low / step - slack).ceil();
         let last = (self.high / step + slack).floor();
-        let count = (last - first).max(0.0) as usize + 1;
+        if last < first {
+            // The step is longer than the axis and none of its multiples lies on it: a finer one has a tick.
+            return self.ticks(most.max(1) + 1);
+        }
+        let count = (last - first) as usize + 1;
         let multiples: Vec<f64> = (0..count).map(|index| first + index as f64).collect();
         let values = multiples.iter().map(|multiple| multiple * step).collect();
         let size = self.low.abs().max(self.high.abs());
@@ -324,6 +328,20 @@ mod tests {
         ] {
             assert_eq!(rounded(value), text);
         }
+    }
+
+    /// No multiple of the first step lies on this axis.
+    #[test]
+    fn a_short_axis_has_a_tick() {
+        let axis = Axis::new(88.514_22, 88.957_78);
+        let ticks = axis.ticks(2);
+        assert!(!ticks.values.is_empty());
+        assert!(
+            ticks
+                .values
+                .iter()
+                .all(|value| (0.0..=1.0).contains(&axis.fraction(*value)))
+        );
     }
 
     proptest! {
