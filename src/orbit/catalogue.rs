@@ -2,9 +2,10 @@
 
 use super::analyse::Setting;
 use super::omission::{Found, Omission, omissions};
+use super::passes::Pass;
 use super::periodic::Orbit;
 use super::phase::Comparison;
-use super::search::{Curved, CurvedFamily, Pass, curved_orbits, insert, scout, sort};
+use super::search::{Curved, CurvedFamily, curved_orbits, insert, scout, sort};
 use super::strip::{Strip, flat_orbits};
 use super::tori::{self, Integrable, TorusLimits, TorusSum};
 use crate::billiard::{Domain, Shape, Symmetry, Tracer, Wall};

@@ -8,6 +8,7 @@ mod fan;
 mod joint;
 mod monodromy;
 mod omission;
+mod passes;
 mod path;
 mod periodic;
 mod phase;
@@ -17,8 +18,9 @@ mod terms;
 
 pub use catalogue::{Catalogue, Limits};
 pub use omission::{Omission, OmissionKind};
+pub use passes::Pass;
 pub use periodic::{Closure, Fixing, Orbit, OrbitKind, OrbitPoint};
-pub use search::{CurvedFamily, Pass};
+pub use search::CurvedFamily;
 pub use strip::{Strip, StripEdge};
 pub use terms::{ClassWeights, orbit_terms, strip_terms, terms, torus_classes_known};
 pub mod tori;

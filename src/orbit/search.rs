@@ -7,6 +7,7 @@
 
 use super::analyse::{self, Setting};
 use super::fan::{Reach, Resolution, Source, Step, Track, shoot};
+use super::passes::{Gain, Pass, Plan, sources, until_settled};
 use super::path::{Bounce, ClosedPath, LengthForm, Link, Workspace, refine};
 use super::periodic::{Orbit, OrbitKind, OrbitPoint};
 use super::phase::Phase;
@@ -14,19 +15,6 @@ use crate::billiard::{Domain, Isometry, Mat2, Shape, Symmetry, Vec2, Wall, left}
 use rayon::prelude::*;
 use std::collections::{HashMap, HashSet};
 use std::hash::{BuildHasher, Hasher};
-
-/// What one pass of the search did.
-#[derive(Clone, Copy, Debug)]
-pub struct Pass {
-    /// Points on the walls from which fans were shot.
-    pub sources: usize,
-    /// Smallest angle between neighbouring rays, radians.
-    pub smallest_gap: f64,
-    /// Rays followed.
-    pub rays: usize,
-    /// Orbits that no earlier pass had found.
-    pub added: usize,
-}
 
 /// Sources on the curved walls in the first pass, for one symmetry copy.
 const FIRST_SOURCES: usize = 12;
@@ -36,11 +24,6 @@ const FIRST_RAYS: usize = 40;
 const FIRST_GAP: f64 = 5e-5;
 /// Neighbouring rays may land this far apart, as a fraction of the size, before they are refined.
 const SPREAD: f64 = 0.25;
-/// Number of passes after which the search gives up on settling; what is still being added then is said in the output.
-const MOST_PASSES: usize = 5;
-/// Each pass has this many times the sources of the one before, and gaps smaller by the same factor.
-const REFINEMENT: f64 = 1.7;
-
 /// What the search from curved walls finds.
 #[derive(Default)]
 pub(crate) struct Curved {
@@ -58,20 +41,19 @@ pub(crate) fn curved_orbits(setting: &Setting) -> Curved {
     if setting.domain.walls.iter().all(Wall::is_straight) {
         return all;
     }
-    for pass in 0..MOST_PASSES {
-        let factor = REFINEMENT.powi(pass as i32);
-        let resolution = Resolution {
-            rays: (FIRST_RAYS as f64 * factor.sqrt()) as usize,
+    let plan = Plan {
+        sources: FIRST_SOURCES,
+        resolution: Resolution {
+            rays: FIRST_RAYS,
             spread: SPREAD * setting.domain.size,
-            smallest_gap: FIRST_GAP / factor,
-        };
-        let wanted = (FIRST_SOURCES as f64 * factor).round() as usize;
-        let sources = sources(setting.domain, setting.symmetry, wanted, |wall| {
-            !setting.domain.walls[wall].is_straight()
-        });
+            smallest_gap: FIRST_GAP,
+        },
+        straight: false,
+    };
+    all.passes = until_settled(setting, &plan, |sources, resolution| {
         let found: Vec<Harvest> = sources
             .par_iter()
-            .map(|source| from_source(setting, source, &resolution, &all.orbits))
+            .map(|source| from_source(setting, source, resolution, &all.orbits))
             .collect();
         let before = all.orbits.len();
         let rays = found.iter().map(|harvest| harvest.rays).sum();
@@ -83,17 +65,11 @@ pub(crate) fn curved_orbits(setting: &Setting) -> Curved {
                 join_family(&mut all.families, family);
             }
         }
-        let added = all.orbits.len() - before;
-        all.passes.push(Pass {
-            sources: sources.len(),
-            smallest_gap: resolution.smallest_gap,
+        Gain {
             rays,
-            added,
-        });
-        if pass > 0 && added == 0 {
-            break;
+            added: all.orbits.len() - before,
         }
-    }
+    });
     sort(&mut all.orbits);
     all.families.sort_by(|a, b| a.length.total_cmp(&b.length));
     all
@@ -107,9 +83,7 @@ pub(crate) fn scout(setting: &Setting) -> (usize, usize) {
         spread: SPREAD * domain.size,
         smallest_gap: SCOUT_GAP,
     };
-    let sources = sources(domain, setting.symmetry, SCOUT_SOURCES, |wall| {
-        !domain.walls[wall].is_straight()
-    });
+    let sources = sources(setting, SCOUT_SOURCES, false);
     let found: Vec<Harvest> = sources
         .par_iter()
         .map(|source| from_source(setting, source, &resolution, &[]))
@@ -176,50 +150,6 @@ fn position(setting: &Setting, orbits: &[Orbit], orbit: &Orbit) -> Option<usize>
         let there = comparison.ahead(&other.points, other.symmetry);
         comparison.meet(ahead, &there) || comparison.meet(back, &there)
     })
-}
-
-/// Direction (generic on purpose) by which one of the symmetric copies of a point is chosen.
-const GENERIC: Vec2 = Vec2::new(0.803_142_9, 0.595_779_3);
-/// Sources sit at this fraction of their cell: a generic one, so that no ray is aimed at a corner or along an axis.
-const OFFSET: f64 = 0.381_966;
-
-/// About `wanted` points on one symmetry copy of the walls that `choose` selects, evenly spaced in arc length.
-pub(crate) fn sources(
-    domain: &Domain,
-    symmetry: &Symmetry,
-    wanted: usize,
-    choose: impl Fn(usize) -> bool,
-) -> Vec<Source> {
-    let chosen: Vec<usize> = (0..domain.walls.len())
-        .filter(|&wall| choose(wall))
-        .collect();
-    let total: f64 = chosen.iter().map(|&wall| domain.lengths[wall]).sum();
-    let spacing = total / (wanted * symmetry.order()) as f64;
-    let mut sources = Vec::new();
-    for wall in chosen {
-        let count = (domain.lengths[wall] / spacing).ceil().max(2.0) as usize;
-        let extent = domain.walls[wall].extent();
-        for i in 0..count {
-            let t = extent * (i as f64 + OFFSET) / count as f64;
-            let frame = domain.walls[wall].frame(t);
-            if is_chosen_copy(symmetry, frame.point) {
-                sources.push(Source {
-                    wall,
-                    t,
-                    point: frame.point,
-                    tangent: frame.tangent,
-                    spacing: frame.speed * extent / count as f64,
-                });
-            }
-        }
-    }
-    sources
-}
-
-fn is_chosen_copy(symmetry: &Symmetry, point: Vec2) -> bool {
-    let height = |p: Vec2| (p - symmetry.center).dot(&GENERIC);
-    let own = height(point);
-    (1..symmetry.order()).all(|g| height(symmetry.apply(g, point)) <= own)
 }
 
 /// The periodic point may lie this many source spacings away.

@@ -6,8 +6,9 @@
 
 use super::analyse::{self, Draft, Setting, bounce_along, chords_are_free, is_primitive};
 use super::fan::{Reach, Resolution, Source, Track, follow_direction, shoot};
+use super::passes::{Gain, Pass, Plan, until_settled};
 use super::periodic::{Orbit, OrbitPoint};
-use super::search::{Pass, insert, sort, sources};
+use super::search::{insert, sort};
 use crate::billiard::{
     Condition, Domain, Isometry, Mat2, Shape, Vec2, VertexKind, cross, flight, left,
 };
@@ -107,9 +108,6 @@ const FIRST_SOURCES: usize = 16;
 const FIRST_RAYS: usize = 48;
 /// Smallest angle between rays in the first pass, radians.
 const FIRST_GAP: f64 = 2e-3;
-/// Growth from pass to pass, and largest number of passes.
-const REFINEMENT: f64 = 1.6;
-const MOST_PASSES: usize = 5;
 /// Generic place inside a strip, where no orbit is special.
 const GENERIC: f64 = 0.381_966;
 /// Steps of the march from a known orbit of a strip to its edge, per wall.
@@ -139,20 +137,19 @@ pub(crate) fn flat_orbits(setting: &Setting) -> Flat {
     {
         return flat;
     }
-    for pass in 0..MOST_PASSES {
-        let factor = REFINEMENT.powi(pass as i32);
-        let resolution = Resolution {
-            rays: (FIRST_RAYS as f64 * factor.sqrt()) as usize,
+    let plan = Plan {
+        sources: FIRST_SOURCES,
+        resolution: Resolution {
+            rays: FIRST_RAYS,
             spread: f64::INFINITY,
-            smallest_gap: FIRST_GAP / factor,
-        };
-        let wanted = (FIRST_SOURCES as f64 * factor).round() as usize;
-        let sources = sources(domain, setting.symmetry, wanted, |wall| {
-            domain.walls[wall].is_straight()
-        });
+            smallest_gap: FIRST_GAP,
+        },
+        straight: true,
+    };
+    flat.passes = until_settled(setting, &plan, |sources, resolution| {
         let found: Vec<Candidates> = sources
             .par_iter()
-            .map(|source| from_source(setting, source, &resolution))
+            .map(|source| from_source(setting, source, resolution))
             .collect();
         let before = flat.strips.len() + flat.orbits.len();
         let rays = found.iter().map(|candidates| candidates.rays).sum();
@@ -164,17 +161,11 @@ pub(crate) fn flat_orbits(setting: &Setting) -> Flat {
                 insert(setting, &mut flat.orbits, orbit);
             }
         }
-        let added = flat.strips.len() + flat.orbits.len() - before;
-        flat.passes.push(Pass {
-            sources: sources.len(),
-            smallest_gap: resolution.smallest_gap,
+        Gain {
             rays,
-            added,
-        });
-        if pass > 0 && added == 0 {
-            break;
+            added: flat.strips.len() + flat.orbits.len() - before,
         }
-    }
+    });
     sort(&mut flat.orbits);
     flat.strips.sort_by(|a, b| {
         if (a.length - b.length).abs() > SAME * a.length {
