@@ -3,9 +3,12 @@
 //! The mean chord of every billiard is pi A/L (Santalo, Integral Geometry and Geometric Probability, 1976, chapter 3).
 
 use orbitsum::billiard::{Domain, Dynamics, Event, Origin, Ray, Tracer, Vec2, dynamics};
-use orbitsum::system::load;
 use std::f64::consts::PI;
-use std::path::Path;
+
+#[path = "common/shipped.rs"]
+mod shipped;
+
+use shipped::shape;
 
 const BOUNCES: usize = 400_000;
 /// Standard errors within which an average must agree. 22 shapes are checked: with 32 blocks (Student's distribution) five
@@ -36,18 +39,6 @@ const SHAPES: [(&str, &[(&str, &str)]); 22] = [
     ("pentagon", &[]),
     ("slit-square", &[]),
 ];
-
-fn shape(name: &str, settings: &[(&str, &str)]) -> Domain {
-    let path = Path::new(env!("CARGO_MANIFEST_DIR")).join(format!("billiards/{name}.toml"));
-    let settings: Vec<(String, String)> = settings
-        .iter()
-        .map(|&(name, value)| (name.to_owned(), value.to_owned()))
-        .collect();
-    match load(&path, &settings) {
-        Ok(system) => system.domain,
-        Err(error) => panic!("{}", error.render()),
-    }
-}
 
 fn measure(domain: &Domain) -> Dynamics {
     dynamics(domain, &Tracer::new(domain), BOUNCES)

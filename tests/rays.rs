@@ -3,10 +3,15 @@
 //! map beyond the walls' own positions.
 
 use orbitsum::billiard::{Domain, Event, Hit, Interior, Origin, Ray, Tracer, Vec2};
-use orbitsum::system::{load, parse};
+use orbitsum::system::parse;
 use rayon::prelude::*;
 use std::f64::consts::{PI, TAU};
 use std::path::Path;
+
+#[path = "common/shipped.rs"]
+mod shipped;
+
+use shipped::shape;
 
 /// Rays per shape.
 const RAYS: usize = 1_000_000;
@@ -401,18 +406,6 @@ fn check(name: &str, domain: &Domain) {
             }
         }
     });
-}
-
-fn shape(name: &str, settings: &[(&str, &str)]) -> Domain {
-    let path = Path::new(env!("CARGO_MANIFEST_DIR")).join(format!("billiards/{name}.toml"));
-    let settings: Vec<(String, String)> = settings
-        .iter()
-        .map(|&(name, value)| (name.to_owned(), value.to_owned()))
-        .collect();
-    match load(&path, &settings) {
-        Ok(system) => system.domain,
-        Err(error) => panic!("{}", error.render()),
-    }
 }
 
 fn check_shape(name: &str, settings: &[(&str, &str)]) {

@@ -121,15 +121,6 @@ struct Expansion {
 }
 
 fn whole(domain: &Domain) -> Expansion {
-    let length = |condition: Condition| -> f64 {
-        domain
-            .walls
-            .iter()
-            .zip(&domain.lengths)
-            .filter(|(wall, _)| wall.condition == condition)
-            .map(|(_, length)| length)
-            .sum()
-    };
     let corners: Vec<Option<f64>> = domain
         .vertices
         .iter()
@@ -142,8 +133,8 @@ fn whole(domain: &Domain) -> Expansion {
         .sum();
     Expansion {
         area: domain.area / (4.0 * PI),
-        dirichlet: -length(Condition::Dirichlet) / (4.0 * PI),
-        neumann: length(Condition::Neumann) / (4.0 * PI),
+        dirichlet: -domain.length_under(Condition::Dirichlet) / (4.0 * PI),
+        neumann: domain.length_under(Condition::Neumann) / (4.0 * PI),
         curvature: domain.walls.iter().map(turning).sum::<f64>() / (12.0 * PI),
         corners: corners.iter().flatten().sum(),
         inverse: smooth_inverse(domain)

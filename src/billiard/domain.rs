@@ -1,6 +1,6 @@
 //! A flat domain: its walls in order, the vertices where they meet, area and perimeter.
 
-use super::{Shape, Vec2, Wall, cross};
+use super::{Condition, Shape, Vec2, Wall, cross};
 use std::ops::Range;
 use thiserror::Error;
 
@@ -232,6 +232,17 @@ impl Domain {
             }
         }
         joined
+    }
+
+    /// Total length of the walls under one condition, both faces of slits.
+    #[must_use]
+    pub fn length_under(&self, condition: Condition) -> f64 {
+        self.walls
+            .iter()
+            .zip(&self.lengths)
+            .filter(|(wall, _)| wall.condition == condition)
+            .map(|(_, length)| length)
+            .sum()
     }
 
     /// The wall before `wall` in its loop.

@@ -146,23 +146,18 @@ fn measures(subject: &Subject) -> Vec<Fact> {
     } else {
         format!("{length}^2")
     };
-    let of = |condition: Condition| -> f64 {
-        domain
-            .walls
-            .iter()
-            .zip(&domain.lengths)
-            .filter(|(wall, _)| wall.condition == condition)
-            .map(|(_, length)| length)
-            .sum()
-    };
     let holes = domain.loops.iter().filter(|chain| chain.role == Role::Hole);
     let slits = domain.loops.iter().filter(|chain| chain.role == Role::Slit);
     let curved = domain.walls.iter().filter(|wall| !wall.is_straight());
     vec![
         Fact::new("area", domain.area).unit(squared),
         Fact::new("perimeter", domain.perimeter).unit(length),
-        Fact::new("perimeter_dirichlet", of(Condition::Dirichlet)).unit(length),
-        Fact::new("perimeter_neumann", of(Condition::Neumann)).unit(length),
+        Fact::new(
+            "perimeter_dirichlet",
+            domain.length_under(Condition::Dirichlet),
+        )
+        .unit(length),
+        Fact::new("perimeter_neumann", domain.length_under(Condition::Neumann)).unit(length),
         Fact::new("walls", domain.walls.len()).remark(format!(
             "({} curved; {} and {}, each face of a slit counted)",
             curved.count(),
