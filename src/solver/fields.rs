@@ -4,7 +4,7 @@
 //! (u1, u2) that change into each other under the group: (u1, u2)(g x) = D(g) (u1, u2)(x), with the rotation by an angle a
 //! represented by the rotation by m a. On an axis this leaves one direction of (u1, u2) free.
 
-use super::mesh::{Cell, Side};
+use super::mesh::Side;
 use crate::billiard::{Condition, Domain, Irrep, Symmetry};
 use std::f64::consts::PI;
 
@@ -124,19 +124,4 @@ fn winding(rotations: usize, class: &Irrep) -> usize {
     (1..=(rotations - 1) / 2)
         .min_by(|&a, &b| mismatch(a).total_cmp(&mismatch(b)))
         .unwrap_or(1)
-}
-
-/// Cell and fields of what was asked for.
-pub(super) fn cell_and_fields(
-    domain: &Domain,
-    symmetry: &Symmetry,
-    class: Option<&Irrep>,
-) -> (Cell, Fields) {
-    match class {
-        None => (Cell::whole(domain), Fields::plain(domain)),
-        Some(class) => (
-            Cell::fundamental(domain, symmetry),
-            Fields::of_class(domain, symmetry, class),
-        ),
-    }
 }

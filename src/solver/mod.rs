@@ -1,101 +1,292 @@
 //! Directly computed levels of a billiard.
+//!
+//! -Laplace u = k^2 u, with u = 0 on Dirichlet walls and a vanishing normal derivative on Neumann walls, is solved by finite
+//! elements of high polynomial degree on triangles with exactly curved edges, in layers of shrinking size around corners
+//! (Babuska & Guo, SIAM J. Numer. Anal. 25 (1988) 837). In a window of k all levels are found by a shift-inverted block
+//! Lanczos iteration, and they are counted independently of it by the inertia of the factorised matrix at both ends of the
+//! window (Grimes, Lewis & Simon, SIAM J. Matrix Anal. Appl. 15 (1994) 228). Every level has an error that is estimated from
+//! its residual in a richer space.
+//!
+//! ```text
+//! Domain, Symmetry -> Cell -> Mesh -> Space -> Dissection -> Factor -> Lanczos pairs -> Estimator -> Levels
+//! ```
 
 mod dense;
+mod discretisation;
 mod dissection;
 mod elements;
 mod estimate;
 mod factor;
 mod fields;
+mod join;
 mod lanczos;
 mod mesh;
+mod plan;
 mod space;
 
+pub use join::{Level, Levels};
 pub use mesh::MeshError;
+pub use plan::Window;
 
-use crate::billiard::{Domain, Irrep, Symmetry};
+use crate::baseline::{Weyl, weyl};
+use crate::billiard::{Condition, Domain, Irrep, Symmetry, Vec2, check_declared};
+use discretisation::{Discretisation, Found};
+use fields::Fields;
+use join::WindowLevels;
+use mesh::Cell;
+use plan::Band;
+use rayon::prelude::*;
+use thiserror::Error;
 
-/// trial
-pub fn trial(
-    domain: &Domain,
-    symmetry: &Symmetry,
-    class: Option<&Irrep>,
-    degree: usize,
-    kh: f64,
-    [from, to]: [f64; 2],
-) -> Result<Vec<[f64; 2]>, MeshError> {
-    let clock = std::time::Instant::now();
-    let (cell, fields) = fields::cell_and_fields(domain, symmetry, class);
-    let mesh = mesh::Mesh::new(&cell, kh / to)?;
-    eprintln!("mesh {} triangles, {} curved, {:?}", mesh.triangles.len(), mesh.triangles.iter().filter(|t| !mesh.is_straight(t)).count(), clock.elapsed());
-    let space = space::Space::new(&mesh, &cell, &fields, degree, 0);
-    eprintln!("space {} {:?}", space.size, clock.elapsed());
-    let tree = dissection::Dissection::new(&space, &mesh);
-    eprintln!("tree {} {:?}", tree.nodes.iter().map(|n| n.eliminated.len()+n.rim.len()).max().unwrap_or(0), clock.elapsed());
-    let (a, b) = (from * from, to * to);
-    let low = factor::count_below(&space, &tree, a);
-    let high = factor::count_below(&space, &tree, b);
-    eprintln!("counts {low} {high} {:?}", clock.elapsed());
-    let shift = 0.5 * (a + b);
-    let factor = factor::Factor::new(&space, &tree, shift);
-    eprintln!("factor {:?}", clock.elapsed());
-    let pairs = lanczos::pairs_near(&space, &factor, shift, &lanczos::Wanted { from: a, to: b, expected: high - low, accuracy: 1e-12 });
-    eprintln!("lanczos {} {} {:?}", pairs.values.len(), pairs.converged, clock.elapsed());
-    let est = estimate::Estimator::new(&space, &mesh, &cell, &fields, degree);
-    eprintln!("estimator {:?}", clock.elapsed());
-    let (values, errors) = est.assess(&space, &pairs.vectors);
-    eprintln!("errors {:?}", clock.elapsed());
-    let rem = pairs.remainders.iter().fold(0.0_f64, |a, b| a.max(*b));
-    eprintln!("largest remainder {rem:e}");
-    Ok(values.iter().zip(errors).zip(&pairs.remainders).map(|((e, d), r)| [e.sqrt(), (d + r) / (2.0 * e.sqrt())]).collect())
+/// Relative accuracy of k that is aimed at where nothing else is asked for.
+pub const DEFAULT_ACCURACY: f64 = 1e-11;
+/// A corner with a smaller inner angle than this (radians) is taken for a cusp of angle zero.
+const SMALLEST_ANGLE: f64 = 1e-3;
+/// Unknowns that fit into the memory of an ordinary machine.
+const MOST_UNKNOWNS: f64 = 3e6;
+/// Wedges narrower than those of a group with this many rotations make bad elements; a subgroup is used where it can be.
+const MOST_ROTATIONS: usize = 6;
+/// Where errors of levels exceed the wanted accuracy by this factor, a higher polynomial degree is tried.
+const MISSED: f64 = 10.0;
+
+/// Why levels could not be computed.
+#[derive(Clone, Debug, Error, PartialEq)]
+pub enum SolverError {
+    /// Two walls meet without an angle between them.
+    #[error(
+        "the walls meet in a cusp of angle zero at ({}, {}): levels are computed only for shapes whose corners have an inner \
+         angle of more than {SMALLEST_ANGLE} radians", .at.x, .at.y
+    )]
+    ZeroAngle {
+        /// Where.
+        at: Vec2,
+    },
+    /// The shape cannot be meshed.
+    #[error(transparent)]
+    Mesh(#[from] MeshError),
+    /// The window lies too high.
+    #[error(
+        "levels up to k = {k} need about {unknowns:.1e} unknowns, more than the {MOST_UNKNOWNS:.0e} that are allowed: take a lower \
+         window, or one symmetry class"
+    )]
+    TooLarge {
+        /// Upper end of the window.
+        k: f64,
+        /// Unknowns it needs.
+        unknowns: f64,
+    },
 }
 
-/// trial
-pub fn trial_mesh(domain: &Domain, symmetry: &Symmetry, class: Option<&Irrep>, h: f64) {
-    let (cell, _) = fields::cell_and_fields(domain, symmetry, class);
-    let mesh = match mesh::Mesh::new(&cell, h) { Ok(m) => m, Err(e) => { eprintln!("{e}"); return } };
-    let s = 400.0 / cell.size;
-    println!("<svg xmlns='http://www.w3.org/2000/svg' width='900' height='900' viewBox='-450 -450 900 900'>");
-    for t in &mesh.triangles {
-        let mut d = String::new();
-        for (a, b) in [([0.0, 0.0], [1.0, 0.0]), ([1.0, 0.0], [0.0, 1.0]), ([0.0, 1.0], [0.0, 0.0])] {
-            for i in 0..=8 {
-                let f = f64::from(i) / 8.0;
-                let p = mesh.map(t, [a[0] * (1.0 - f) + b[0] * f, a[1] * (1.0 - f) + b[1] * f])[0];
-                d += &format!("{}{:.3},{:.3} ", if d.is_empty() { "M" } else { "L" }, p.x * s, -p.y * s);
+/// One symmetry class on the cell.
+#[derive(Clone, Debug)]
+struct Sector {
+    fields: Fields,
+    /// Smooth count of its levels, degenerate ones counted as often as they are.
+    weyl: Weyl,
+}
+
+/// Coefficients of a wave.
+#[derive(Clone, Debug)]
+struct Wave {
+    coefficients: Vec<f64>,
+}
+
+impl Wave {
+    fn new(vectors: &dense::Matrix, row: usize) -> Self {
+        Self {
+            coefficients: vectors.row(row).iter().copied().collect(),
+        }
+    }
+}
+
+/// Computes levels of one domain, or of one of its symmetry classes.
+#[derive(Clone, Debug)]
+pub struct Solver {
+    cell: Cell,
+    sectors: Vec<Sector>,
+    weyl: Weyl,
+    accuracy: f64,
+    area: f64,
+    /// Are all walls Neumann walls, so that a constant is a wave of k = 0?
+    constant: bool,
+}
+
+impl Solver {
+    /// Prepares the levels of the class, or all levels.
+    ///
+    /// All levels of a symmetric shape are computed class by class, so that degenerate ones are told apart from close ones.
+    ///
+    /// # Errors
+    /// Corners of angle zero.
+    pub fn new(
+        domain: &Domain,
+        symmetry: &Symmetry,
+        class: Option<&Irrep>,
+    ) -> Result<Self, SolverError> {
+        if let Some(vertex) = domain.vertices.iter().find(|v| v.angle < SMALLEST_ANGLE) {
+            return Err(SolverError::ZeroAngle { at: vertex.point });
+        }
+        let group = match class {
+            None => manageable(symmetry),
+            Some(_) => symmetry.clone(),
+        };
+        let irreps: Vec<Option<&Irrep>> = match class {
+            Some(class) => vec![Some(class)],
+            None if group.order() == 1 => vec![None],
+            None => group.irreps.iter().map(Some).collect(),
+        };
+        let sectors = irreps
+            .into_iter()
+            .map(|irrep| Sector {
+                fields: irrep.map_or_else(
+                    || Fields::plain(domain),
+                    |irrep| Fields::of_class(domain, &group, irrep),
+                ),
+                weyl: weyl(domain, &group, irrep),
+            })
+            .collect();
+        Ok(Self {
+            cell: Cell::fundamental(domain, &group),
+            sectors,
+            weyl: weyl(domain, symmetry, class),
+            accuracy: DEFAULT_ACCURACY,
+            area: domain.area,
+            constant: domain.length_under(Condition::Dirichlet) == 0.0,
+        })
+    }
+
+    /// Aims at another relative accuracy of k: coarser is faster. The error of every level is estimated all the same.
+    #[must_use]
+    pub fn with_accuracy(mut self, accuracy: f64) -> Self {
+        self.accuracy = accuracy;
+        self
+    }
+
+    /// The windows that levels from `from` up to `to` are computed in, one after the other.
+    ///
+    /// # Errors
+    /// More unknowns than fit into memory.
+    pub fn windows(&self, from: f64, to: f64) -> Result<Vec<Window>, SolverError> {
+        let area = self.area / self.cell_share();
+        let unknowns = Discretisation::expected_unknowns(area, to, self.accuracy);
+        if unknowns > MOST_UNKNOWNS {
+            return Err(SolverError::TooLarge { k: to, unknowns });
+        }
+        Ok(plan::windows(&self.sectors, from, to))
+    }
+
+    fn cell_share(&self) -> f64 {
+        self.area / self.cell.area
+    }
+
+    /// All levels with from <= k < to.
+    ///
+    /// # Errors
+    /// A shape that cannot be meshed, or more unknowns than fit into memory.
+    pub fn levels(&self, from: f64, to: f64) -> Result<Levels, SolverError> {
+        let mut levels = Levels::new(from, to);
+        self.run(&self.windows(from, to)?, |window| {
+            levels.append(window);
+            true
+        })?;
+        levels.finish(&self.weyl);
+        Ok(levels)
+    }
+
+    /// Computes the given windows (in ascending order) and hands on their levels one window after the other, until `deliver`
+    /// returns false.
+    ///
+    /// # Errors
+    /// A shape that cannot be meshed.
+    pub fn run(
+        &self,
+        windows: &[Window],
+        mut deliver: impl FnMut(WindowLevels) -> bool,
+    ) -> Result<(), SolverError> {
+        for band in plan::bands(windows) {
+            let mut attempt = 0;
+            let mut grid = self.discretise(&band, attempt)?;
+            for chunk in band.windows.chunks(rayon::current_num_threads().max(1)) {
+                let mut results = self.chunk(&grid, chunk);
+                while attempt + 1 < Discretisation::ATTEMPTS && self.missed(&results) {
+                    attempt += 1;
+                    grid = self.discretise(&band, attempt)?;
+                    results = self.chunk(&grid, chunk);
+                }
+                for result in results {
+                    if !deliver(result) {
+                        return Ok(());
+                    }
+                }
             }
         }
-        println!("<path d='{d}' fill='none' stroke='black' stroke-width='0.7'/>");
+        Ok(())
     }
-    let area: f64 = mesh.triangles.iter().map(|t| { let p = t.points; 0.5 * crate::billiard::cross(p[1] - p[0], p[2] - p[0]) }).sum();
-    println!("</svg>");
-    eprintln!("chord area {area} cell {} triangles {}", cell.area, mesh.triangles.len());
+
+    fn discretise(&self, band: &Band<'_>, attempt: usize) -> Result<Discretisation, SolverError> {
+        let grid = Discretisation::new(
+            &self.cell,
+            &self.sectors,
+            band.k,
+            self.accuracy,
+            attempt,
+        )?;
+        Ok(grid)
+    }
+
+    fn chunk(&self, grid: &Discretisation, windows: &[Window]) -> Vec<WindowLevels> {
+        windows
+            .par_iter()
+            .map(|window| {
+                let found: Vec<Found> = (0..self.sectors.len())
+                    .into_par_iter()
+                    .map(|sector| {
+                        grid.levels(
+                            sector,
+                            window.energies(),
+                            self.accuracy,
+                            false,
+                        )
+                    })
+                    .collect();
+                join::window(*window, &self.sectors, &found, self.constant)
+            })
+            .collect()
+    }
+
+    fn missed(&self, results: &[WindowLevels]) -> bool {
+        results
+            .iter()
+            .flat_map(|result| &result.levels)
+            .any(|level| level.error > MISSED * self.accuracy * level.k)
+    }
+
+    /// Smooth count of the levels below k, for the second check of completeness.
+    #[must_use]
+    pub fn smooth_count(&self, k: f64, smoothing: f64) -> f64 {
+        self.weyl.count(k, smoothing)
+    }
 }
 
-/// trial
-pub fn trial_dense(domain: &Domain, symmetry: &Symmetry, class: Option<&Irrep>, degree: usize, h: f64) {
-    let (cell, fields) = fields::cell_and_fields(domain, symmetry, class);
-    let mesh = mesh::Mesh::new(&cell, h).expect("mesh");
-    let space = space::Space::new(&mesh, &cell, &fields, degree, 0);
-    let n = space.size;
-    let mut k = dense::Matrix::zeros(n, n);
-    for leaf in &space.leaves {
-        let e = &space.elements[leaf.element];
-        let m = e.matrices.combine(&space.reference, &e.selection, 1.0, 0.0);
-        let (v, _) = dense::eigen(&m);
-        if v[0] < -1e-9 { println!("leaf {} lowest {:e} quality {}", leaf.element, v[0], mesh.triangles[leaf.element].quality); }
-        for a in &leaf.entries { for b in &leaf.entries {
-            k[(leaf.unknowns[a.slot], leaf.unknowns[b.slot])] += a.coefficient * b.coefficient * m[(a.local, b.local)];
-        } }
+/// The group, or a subgroup whose fundamental cell is not too narrow.
+fn manageable(symmetry: &Symmetry) -> Symmetry {
+    let rotations = symmetry.rotations();
+    if rotations <= MOST_ROTATIONS {
+        return symmetry.clone();
     }
-    let (v, _) = dense::eigen(&k);
-    println!("size {n} lowest {:?} negative {}", &v[..5], dense::Symmetric::new(k.as_ref()).negative());
-    let tree = dissection::Dissection::new(&space, &mesh);
-    let total: usize = tree.nodes.iter().map(|n| n.eliminated.len()).sum();
-    println!("tree eliminates {total}, count {}", factor::count_below(&space, &tree, 0.0));
-    for node in &tree.nodes {
-        let s = dense::Matrix::from_fn(node.eliminated.len(), node.eliminated.len(), |i, j| k[(node.eliminated[i], node.eliminated[j])]);
-        let (v, _) = dense::eigen(&s);
-        let neg = dense::Symmetric::new(s.as_ref()).negative();
-        if neg > 0 { println!("n {} lowest {:?} neg {neg}", s.nrows(), v.first()); println!("{s:?}"); break; }
-    }
+    let reflections = symmetry.order() > rotations;
+    let divisor = (1..=MOST_ROTATIONS)
+        .rev()
+        .find(|d| rotations.is_multiple_of(*d))
+        .unwrap_or(1);
+    let name = match (divisor, reflections) {
+        (1, true) => "reflection".to_owned(),
+        (1, false) => "none".to_owned(),
+        (2, true) => "rectangle".to_owned(),
+        (3, true) => "triangle".to_owned(),
+        (4, true) => "square".to_owned(),
+        (n, true) => format!("{n}-gon"),
+        (n, false) => format!("C{n}"),
+    };
+    check_declared(symmetry, &name).unwrap_or_else(|_| Symmetry::trivial())
 }
