@@ -112,7 +112,9 @@ mod tests {
         // Entries of both signs without structure, from a linear congruential sequence.
         let mut state = 12345_u64;
         let mut next = || {
-            state = state.wrapping_mul(6364136223846793005).wrapping_add(1442695040888963407);
+            state = state
+                .wrapping_mul(6364136223846793005)
+                .wrapping_add(1442695040888963407);
             (state >> 11) as f64 / (1_u64 << 53) as f64 - 0.5
         };
         for n in [1, 2, 5, 40, 150] {
@@ -126,7 +128,10 @@ mod tests {
             let (values, _) = eigen(&matrix);
             let factor = Symmetric::new(matrix.as_ref());
             let inverse = factor.inverse();
-            assert_eq!(factor.negative(), values.iter().filter(|&&value| value < 0.0).count());
+            assert_eq!(
+                factor.negative(),
+                values.iter().filter(|&&value| value < 0.0).count()
+            );
             let unit = product(matrix.as_ref(), inverse.as_ref());
             for i in 0..n {
                 for j in 0..n {

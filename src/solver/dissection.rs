@@ -51,7 +51,12 @@ impl Dissection {
             middles,
             nodes: Vec::new(),
         };
-        let fields = space.leaves.iter().map(|leaf| leaf.field).max().unwrap_or(0);
+        let fields = space
+            .leaves
+            .iter()
+            .map(|leaf| leaf.field)
+            .max()
+            .unwrap_or(0);
         let mut tops = Vec::new();
         for field in 0..=fields {
             let mut own: Vec<usize> = (0..space.leaves.len())

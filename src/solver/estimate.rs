@@ -44,7 +44,13 @@ pub(super) struct Estimator {
 }
 
 impl Estimator {
-    pub(super) fn new(space: &Space, mesh: &Mesh, cell: &Cell, fields: &Fields, degree: usize) -> Self {
+    pub(super) fn new(
+        space: &Space,
+        mesh: &Mesh,
+        cell: &Cell,
+        fields: &Fields,
+        degree: usize,
+    ) -> Self {
         let richer = Space::new(mesh, cell, fields, degree, EXTRA);
         let surplus: Vec<Surplus> = (0..space.leaves.len())
             .into_par_iter()
@@ -200,7 +206,10 @@ impl Energies {
 fn add_forms(rows: &Matrix, matrix: &Matrix, sums: &mut [f64]) {
     let product = dense::product(rows.as_ref(), matrix.as_ref());
     for column in 0..rows.ncols() {
-        let pair = rows.col_as_slice(column).iter().zip(product.col_as_slice(column));
+        let pair = rows
+            .col_as_slice(column)
+            .iter()
+            .zip(product.col_as_slice(column));
         for (sum, (a, b)) in sums.iter_mut().zip(pair) {
             *sum += a * b;
         }
@@ -226,8 +235,16 @@ fn surplus(space: &Space, richer: &Space, index: usize) -> Surplus {
     };
     let new: Vec<usize> = (0..rich.selection.len()).filter(|&i| is_new[i]).collect();
     let columns = |matrix: &Matrix| super::factor::gather(matrix, &new);
-    let stiffness = columns(&rich.matrices.combine(&richer.reference, &rich.selection, 1.0, 0.0));
-    let mass = columns(&rich.matrices.combine(&richer.reference, &rich.selection, 0.0, 1.0));
+    let stiffness = columns(
+        &rich
+            .matrices
+            .combine(&richer.reference, &rich.selection, 1.0, 0.0),
+    );
+    let mass = columns(
+        &rich
+            .matrices
+            .combine(&richer.reference, &rich.selection, 0.0, 1.0),
+    );
     let edges: Vec<(usize, usize, f64)> = wide
         .entries
         .iter()

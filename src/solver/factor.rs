@@ -165,12 +165,10 @@ impl<'a> Elimination<'a> {
     fn add_leaf(&self, leaf: usize, front: &mut Matrix) {
         let leaf = &self.space.leaves[leaf];
         let element = &self.space.elements[leaf.element];
-        let local = element.matrices.combine(
-            &self.space.reference,
-            &element.selection,
-            1.0,
-            -self.shift,
-        );
+        let local =
+            element
+                .matrices
+                .combine(&self.space.reference, &element.selection, 1.0, -self.shift);
         let places: Vec<(usize, usize, f64)> = leaf
             .entries
             .iter()

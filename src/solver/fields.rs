@@ -82,7 +82,9 @@ impl Fields {
                 Side::Wall(_) | Side::Cut(_) => {}
             }
         }
-        if at_center && sides.iter().any(|side| matches!(side, Side::Cut(_))) && !self.is_invariant()
+        if at_center
+            && sides.iter().any(|side| matches!(side, Side::Cut(_)))
+            && !self.is_invariant()
         {
             free.clear();
         }
@@ -111,7 +113,11 @@ fn common(free: &[Direction], axis: Option<Direction>) -> Vec<Direction> {
         [one] => {
             let apart = one[0] * axis[1] - one[1] * axis[0];
             // Axes of different elements are at least a fraction of a degree apart.
-            if apart.abs() < 1e-6 { vec![*one] } else { Vec::new() }
+            if apart.abs() < 1e-6 {
+                vec![*one]
+            } else {
+                Vec::new()
+            }
         }
         _ => vec![axis],
     }

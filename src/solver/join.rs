@@ -1,8 +1,8 @@
 //! Levels of all classes and windows put together: order, multiplicities, counts.
 
+use super::Sector;
 use super::discretisation::Found;
 use super::plan::Window;
-use super::Sector;
 use crate::baseline::Weyl;
 
 /// Levels that agree within their errors are one level with a multiplicity if the errors are below this part of the mean
@@ -175,9 +175,7 @@ fn near_ends(window: Window, found: &Found) -> usize {
     let [from, to] = window.energies();
     let pairs = found.values.iter().zip(&found.errors);
     pairs
-        .filter(|(value, error)| {
-            (*value - from).abs() <= **error || (*value - to).abs() <= **error
-        })
+        .filter(|(value, error)| (*value - from).abs() <= **error || (*value - to).abs() <= **error)
         .count()
 }
 

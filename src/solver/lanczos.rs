@@ -45,12 +45,7 @@ pub(super) struct Wanted {
 }
 
 /// All wanted pairs, from the factorised matrix at `shift` in the middle of the range.
-pub(super) fn pairs_near(
-    space: &Space,
-    factor: &Factor<'_>,
-    shift: f64,
-    wanted: &Wanted,
-) -> Pairs {
+pub(super) fn pairs_near(space: &Space, factor: &Factor<'_>, shift: f64, wanted: &Wanted) -> Pairs {
     let &Wanted {
         from,
         to,
@@ -306,9 +301,10 @@ pub(super) fn mass_times(space: &Space, block: &Matrix) -> Matrix {
         let element = &space.elements[leaf.element];
         let whole = element.selection.len() == space.reference.functions.len();
         let local = leaf.restrict(block, element.selection.len());
-        let product = element
-            .matrices
-            .times_mass(&space.reference, whole, &element.selection, &local);
+        let product =
+            element
+                .matrices
+                .times_mass(&space.reference, whole, &element.selection, &local);
         leaf.accumulate(&product, &mut result);
     }
     result

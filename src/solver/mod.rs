@@ -224,13 +224,7 @@ impl Solver {
     }
 
     fn discretise(&self, band: &Band<'_>, attempt: usize) -> Result<Discretisation, SolverError> {
-        let grid = Discretisation::new(
-            &self.cell,
-            &self.sectors,
-            band.k,
-            self.accuracy,
-            attempt,
-        )?;
+        let grid = Discretisation::new(&self.cell, &self.sectors, band.k, self.accuracy, attempt)?;
         Ok(grid)
     }
 
@@ -240,14 +234,7 @@ impl Solver {
             .map(|window| {
                 let found: Vec<Found> = (0..self.sectors.len())
                     .into_par_iter()
-                    .map(|sector| {
-                        grid.levels(
-                            sector,
-                            window.energies(),
-                            self.accuracy,
-                            false,
-                        )
-                    })
+                    .map(|sector| grid.levels(sector, window.energies(), self.accuracy, false))
                     .collect();
                 join::window(*window, &self.sectors, &found, self.constant)
             })

@@ -18,12 +18,13 @@ pub struct Window {
 }
 
 impl Window {
-    /// The window in k^2. One that begins at 0 begins below, so that a constant wave lies inside.
+    /// The window in k^2. One that begins at 0 begins a little below, so that a constant wave lies well inside.
     pub(super) fn energies(&self) -> [f64; 2] {
+        const BELOW_ZERO: f64 = 0.01;
         let from = if self.from > 0.0 {
             self.from * self.from
         } else {
-            -self.to * self.to
+            -BELOW_ZERO * self.to * self.to
         };
         [from, self.to * self.to]
     }

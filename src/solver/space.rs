@@ -74,7 +74,13 @@ struct Place {
 }
 
 impl Space {
-    pub(super) fn new(mesh: &Mesh, cell: &Cell, fields: &Fields, degree: usize, extra: usize) -> Self {
+    pub(super) fn new(
+        mesh: &Mesh,
+        cell: &Cell,
+        fields: &Fields,
+        degree: usize,
+        extra: usize,
+    ) -> Self {
         let reference = Reference::new(degree + extra);
         let edge_degree: Vec<usize> = edge_degrees(mesh, degree)
             .into_iter()
@@ -188,7 +194,11 @@ impl Leaf {
         for (index, direction) in place.directions.iter().enumerate() {
             let coefficient = direction[self.field];
             if coefficient != 0.0 {
-                self.add(local, place.first + order * count + index, sign * coefficient);
+                self.add(
+                    local,
+                    place.first + order * count + index,
+                    sign * coefficient,
+                );
             }
         }
     }

@@ -137,7 +137,13 @@ impl ElementMatrices {
             Self::Straight { jacobian, .. } if whole => {
                 let mut result = Matrix::zeros(block.nrows(), block.ncols());
                 let mass = reference.mass.as_ref();
-                dense::multiply(result.as_mut(), Into::Fresh, block.as_ref(), mass, *jacobian);
+                dense::multiply(
+                    result.as_mut(),
+                    Into::Fresh,
+                    block.as_ref(),
+                    mass,
+                    *jacobian,
+                );
                 result
             }
             Self::Straight { .. } => {

@@ -114,7 +114,9 @@ mod tests {
         let range = [0.3, 1.1];
         let bow = Bow::new(&wall, range, 3.0).expect("an arc is smooth");
         let at = |s: f64| {
-            wall.point(range[0]) * (1.0 - s) + wall.point(range[1]) * s + bow.at(s).0 * (s * (1.0 - s))
+            wall.point(range[0]) * (1.0 - s)
+                + wall.point(range[1]) * s
+                + bow.at(s).0 * (s * (1.0 - s))
         };
         for i in 0..=20 {
             let s = f64::from(i) / 20.0;

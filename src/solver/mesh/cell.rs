@@ -87,10 +87,7 @@ impl Wedge {
             let direction = axes[1].1;
             direction * cross(first, direction).signum()
         } else {
-            Vec2::new(
-                cos * first.x - sin * first.y,
-                sin * first.x + cos * first.y,
-            )
+            Vec2::new(cos * first.x - sin * first.y, sin * first.x + cos * first.y)
         };
         Self {
             center: symmetry.center,
@@ -226,8 +223,7 @@ impl Cell {
 
 /// Numbers of all walls, one of the two faces of every thin wall.
 fn walls_once(domain: &Domain) -> impl Iterator<Item = usize> {
-    (0..domain.walls.len())
-        .filter(|&wall| domain.walls[wall].twin.is_none_or(|twin| wall < twin))
+    (0..domain.walls.len()).filter(|&wall| domain.walls[wall].twin.is_none_or(|twin| wall < twin))
 }
 
 fn piece(domain: &Domain, wall: usize, from: f64, to: f64) -> Piece {
@@ -245,8 +241,14 @@ fn inside_wedge(domain: &Domain, index: usize, wedge: &Wedge) -> Vec<Piece> {
     let wall = &domain.walls[index];
     let extent = wall.extent();
     let mut breaks = vec![0.0, extent];
+    let ends = [wall.start(), wall.end()];
     for ray in wedge.rays {
-        breaks.extend(crossings(wall, wedge.center, ray));
+        // A wall that ends on the ray may cross it there by rounding.
+        breaks.extend(crossings(wall, wedge.center, ray).into_iter().filter(|&t| {
+            let point = wall.point(t);
+            ends.iter()
+                .all(|end| (end - point).norm() > wedge.tolerance)
+        }));
     }
     breaks.sort_by(f64::total_cmp);
     let mut parts: Vec<Piece> = Vec::new();
@@ -265,12 +267,7 @@ fn inside_wedge(domain: &Domain, index: usize, wedge: &Wedge) -> Vec<Piece> {
 }
 
 /// The parts of an edge of the wedge that run inside the domain.
-fn along_ray(
-    domain: &Domain,
-    interior: &Interior<'_>,
-    wedge: &Wedge,
-    ray: usize,
-) -> Vec<Piece> {
+fn along_ray(domain: &Domain, interior: &Interior<'_>, wedge: &Wedge, ray: usize) -> Vec<Piece> {
     let direction = wedge.rays[ray];
     let radius = |point: Vec2| (point - wedge.center).dot(&direction);
     let mut radii = vec![0.0];

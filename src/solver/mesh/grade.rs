@@ -26,7 +26,10 @@ pub(super) fn grade(draft: &mut Draft, center: usize, exponent: f64) {
         .partition(|(corners, _)| corners.contains(&center));
     draft.triangles = outer;
     for (corners, _) in inner {
-        let first = corners.iter().position(|&corner| corner == center).unwrap_or(0);
+        let first = corners
+            .iter()
+            .position(|&corner| corner == center)
+            .unwrap_or(0);
         let (a, b) = (corners[(first + 1) % 3], corners[(first + 2) % 3]);
         let left = rim(draft, &mut rims, center, a, count);
         let right = rim(draft, &mut rims, center, b, count);
@@ -43,7 +46,9 @@ pub(super) fn grade(draft: &mut Draft, center: usize, exponent: f64) {
             };
             draft.triangles.extend(halves.map(|half| (half, quality)));
         }
-        draft.triangles.push(([center, left[count], right[count]], 0.0));
+        draft
+            .triangles
+            .push(([center, left[count], right[count]], 0.0));
     }
 }
 

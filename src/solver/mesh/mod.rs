@@ -123,14 +123,14 @@ enum Attempt {
 fn attempt(cell: &Cell, outline: &Outline, extra: &[Vec2], length: f64) -> Attempt {
     let conflicts = outline.conflicts();
     if !conflicts.is_empty() {
-        if std::env::var("DBG").is_ok() { for c in &conflicts { eprintln!("conflict {:?}", outline.chord(*c)); } }
         return Attempt::Halve(conflicts);
     }
     let singular = singular_nodes(cell, outline);
     let bridges: Vec<usize> = (0..outline.segments.len())
         .filter(|&s| {
             let ends = outline.segments[s].nodes;
-            ends.iter().all(|end| singular.iter().any(|(node, _)| node == end))
+            ends.iter()
+                .all(|end| singular.iter().any(|(node, _)| node == end))
         })
         .collect();
     if !bridges.is_empty() {
@@ -162,7 +162,7 @@ fn attempt(cell: &Cell, outline: &Outline, extra: &[Vec2], length: f64) -> Attem
     }
     match topology::connect(&draft) {
         Ok(mesh) => Attempt::Done(mesh),
-        Err(piece_ranges) => { if std::env::var("DBG").is_ok() { eprintln!("{:?}", &piece_ranges[..piece_ranges.len().min(6)]); } Attempt::Halve(segments_in(outline, &piece_ranges)) }
+        Err(piece_ranges) => Attempt::Halve(segments_in(outline, &piece_ranges)),
     }
 }
 

@@ -78,7 +78,10 @@ impl Mesh {
 
     /// Are all edges straight?
     pub(in crate::solver) fn is_straight(&self, triangle: &Triangle) -> bool {
-        triangle.edges.iter().all(|&edge| self.edges[edge].bow.is_none())
+        triangle
+            .edges
+            .iter()
+            .all(|&edge| self.edges[edge].bow.is_none())
     }
 
     fn is_even(&self, triangle: &Triangle) -> bool {
@@ -163,7 +166,11 @@ pub(super) fn connect(draft: &Draft<'_>) -> Result<Mesh, Vec<(usize, f64)>> {
         }
         mesh.triangles.push(triangle);
     }
-    if wrong.is_empty() { Ok(mesh) } else { Err(wrong) }
+    if wrong.is_empty() {
+        Ok(mesh)
+    } else {
+        Err(wrong)
+    }
 }
 
 /// Middles of the boundary edges of a triangle.
@@ -181,13 +188,9 @@ fn places(draft: &Draft<'_>, nodes: &[usize; 3]) -> Vec<(usize, f64)> {
 
 /// Nodes of an edge in the direction of its modes: from the lower to the higher number, on the edges of a wedge outwards, so
 /// that an edge and its image agree.
-fn oriented(
-    draft: &Draft<'_>,
-    [a, b]: [usize; 2],
-    boundary: Option<&BoundaryEdge>,
-) -> [usize; 2] {
-    let on_cut = boundary
-        .is_some_and(|edge| matches!(draft.cell.pieces[edge.piece].side, Side::Cut(_)));
+fn oriented(draft: &Draft<'_>, [a, b]: [usize; 2], boundary: Option<&BoundaryEdge>) -> [usize; 2] {
+    let on_cut =
+        boundary.is_some_and(|edge| matches!(draft.cell.pieces[edge.piece].side, Side::Cut(_)));
     let radius = |node: usize| (draft.points[node] - draft.cell.center).norm();
     if on_cut && radius(a) > radius(b) {
         [b, a]
@@ -236,7 +239,10 @@ fn corners(
                     let corners = draft.triangles[triangle].0;
                     3 * triangle + corners.iter().position(|n| n == node).unwrap_or(0)
                 };
-                let (a, b) = (root(&parent, slot(pair[0].0)), root(&parent, slot(pair[1].0)));
+                let (a, b) = (
+                    root(&parent, slot(pair[0].0)),
+                    root(&parent, slot(pair[1].0)),
+                );
                 parent[a.max(b)] = a.min(b);
             }
         }

@@ -1,8 +1,8 @@
 //! Triangles with straight edges that fill the outline: a regular lattice inside, joined to the nodes of the boundary by a
 //! constrained Delaunay triangulation, refined where angles are small.
 
-use super::outline::Outline;
 use super::cell::Cell;
+use super::outline::Outline;
 use crate::billiard::{Vec2, cross};
 use spade::{
     AngleLimit, ConstrainedDelaunayTriangulation, Point2, RefinementParameters, Triangulation,
@@ -76,7 +76,10 @@ pub(super) fn triangulate(
 /// Nodes along a straight wall lie on a line but for rounding: what the triangulation makes of them is no triangle.
 fn is_flat([a, b, c]: [Vec2; 3]) -> bool {
     const FLAT: f64 = 1e-10;
-    let longest = (b - a).norm_squared().max((c - b).norm_squared()).max((a - c).norm_squared());
+    let longest = (b - a)
+        .norm_squared()
+        .max((c - b).norm_squared())
+        .max((a - c).norm_squared());
     cross(b - a, c - a) < FLAT * longest
 }
 
@@ -97,8 +100,7 @@ impl Inside {
     /// Even-odd rule.
     fn contains(&self, point: Vec2) -> bool {
         let crossed = self.chords.iter().filter(|[a, b]| {
-            (a.y > point.y) != (b.y > point.y)
-                && (cross(b - a, point - a) > 0.0) == (b.y > a.y)
+            (a.y > point.y) != (b.y > point.y) && (cross(b - a, point - a) > 0.0) == (b.y > a.y)
         });
         crossed.count() % 2 == 1
     }
@@ -126,12 +128,8 @@ fn lattice(outline: &Outline, inside: &Inside, length: f64, extra: &[Vec2]) -> V
         let shift = if row % 2 == 0 { 0.25 } else { -0.25 };
         for column in 0..=columns {
             let point = Vec2::new(low.x + (column as f64 + shift) * length, y);
-            let clear = near
-                .iter()
-                .all(|chord| distance(point, chord) > clearance);
-            let apart = extra
-                .iter()
-                .all(|other| (other - point).norm() > clearance);
+            let clear = near.iter().all(|chord| distance(point, chord) > clearance);
+            let apart = extra.iter().all(|other| (other - point).norm() > clearance);
             if clear && apart && inside.contains(point) {
                 points.push(point);
             }
