@@ -7,7 +7,7 @@ use super::{BoundaryEdge, Draft};
 use crate::billiard::Vec2;
 
 /// Ratio of the sizes of neighbouring layers (Gui & Babuska, Numer. Math. 49 (1986) 577, find 0.15 for powers of the distance).
-pub(super) const RATIO: f64 = 0.15;
+pub(super) const RATIO: f64 = 0.2;
 /// Error of a level that may be left in the innermost triangles, relative.
 const INNERMOST: f64 = 1e-13;
 

@@ -110,7 +110,7 @@ impl Outline {
     /// Segments whose chords cross or come so close to another node that triangles between them would be degenerate.
     pub(super) fn conflicts(&self) -> Vec<usize> {
         // Relative to the longer of the two: a node this near to a chord leaves no room for an element.
-        const NEAR: f64 = 0.02;
+        const NEAR: f64 = 1e-4;
         let mut found = Vec::new();
         let boxes: Vec<[Vec2; 2]> = (0..self.segments.len())
             .map(|segment| {

@@ -11,7 +11,7 @@ use spade::{
 /// Least distance of lattice points from the boundary, in lattice spacings.
 const CLEARANCE: f64 = 0.6;
 /// Smallest angle in degrees that the refinement asks for; Ruppert's method ends for sure below 20.7 degrees.
-const SMALLEST_ANGLE: f64 = 20.0;
+const SMALLEST_ANGLE: f64 = 30.0;
 /// Largest area of a triangle in units of that of the lattice's triangles.
 const LARGEST_AREA: f64 = 2.0;
 /// Lattice points for every one that fits: a refinement that needs more has gone astray.
