@@ -9,7 +9,11 @@ use orbitsum::levels::staircase;
 use orbitsum::orbit::tori::{Integrable, TorusLimits, terms};
 use orbitsum::trace::{Amplitude, Term, sum_at};
 use std::f64::consts::PI;
-pub(crate) use tables::{Row, levels, levels_of_orders, table};
+#[allow(
+    unused_imports,
+    reason = "each file of checks uses its own part of what they share"
+)]
+pub(crate) use tables::{levels, levels_of_orders, table};
 
 /// Smooth count A k^2/(4 pi) - L k/(4 pi) + C + D/k with L = L_D - L_N.
 #[derive(Clone, Copy, Debug)]
