@@ -94,3 +94,25 @@ fn polygons() {
     check(&equilateral_classes());
     check(&hexagon_classes());
 }
+
+/// Shapes of which single levels are published for a given area.
+#[test]
+fn areas_of_other_shapes() {
+    let area = |name: &str| test_shape(name, &[]).area;
+    for name in ["regular-6", "regular-8", "regular-10", "regular-20"] {
+        assert!((area(name) / PI - 1.0).abs() < 1e-14, "{name}");
+    }
+    for name in ["drum-1", "drum-2"] {
+        let drum = test_shape(name, &[]);
+        assert!((drum.area - 14.0).abs() < 1e-13, "{name}");
+        // Weyl: isospectral shapes have the same perimeter and corner constant.
+        assert!((drum.perimeter - 12.0 - 6.0 * 2f64.sqrt()).abs() < 1e-13);
+        let constant: f64 = drum
+            .vertices
+            .iter()
+            .map(|corner| (PI * PI - corner.angle.powi(2)) / (24.0 * PI * corner.angle))
+            .sum();
+        // Two corners each of 45, 90, 135 and 270 degrees: 2 (15/96 + 1/16 + 7/288 - 5/144) = 5/12.
+        assert!((constant - 5.0 / 12.0).abs() < 1e-13, "{name}: {constant}");
+    }
+}

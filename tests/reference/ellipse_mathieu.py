@@ -1,17 +1,17 @@
 """Levels of the ellipse with half axes 1 and 0.6, Dirichlet wall, by Mathieu functions, to 15 digits.
 
-x = c cosh(mu) cos(nu), y = c sinh(mu) sin(nu), c = 4/5, wall at mu = artanh(3/5) = log 2. With q = (k c/2)^2 a level is a value of k
-at which the angular equation f'' + (a - 2 q cos 2 nu) f = 0 (periodic) and the radial one g'' - (a - 2 q cosh 2 mu) g = 0 (g even
-in mu for f = ce, odd for f = se, g(log 2) = 0) have the same a (Abramowitz & Stegun, chapter 20; DLMF 28).
+x = c cosh(mu) cos(nu), y = c sinh(mu) sin(nu), c = 4/5, wall at mu = artanh(3/5) = log 2. With q = (k c/2)^2 a level is a value
+of k at which the angular equation f'' + (a - 2 q cos 2 nu) f = 0 (periodic) and the radial one g'' - (a - 2 q cosh 2 mu) g = 0
+(g even in mu for f = ce, odd for f = se, g(log 2) = 0) have the same a (Abramowitz & Stegun, chapter 20; DLMF 28).
 
-1. Every pair (nodes of f, nodes of g) has exactly one level (Klein's oscillation theorem). The pairs are run through in order, and
-   the crossing of the two eigenvalues a is bracketed in double precision: Fourier series of f, Legendre polynomials for g.
-2. g is the Fourier series of f at imaginary argument, g(mu) = sum A_j cosh(j mu) or sum B_j sinh(j mu). Its zero in k at mu = log 2
-   is found by the secant method with 60 digits (mpmath), which also makes up for the cancellation in the sum.
+1. Every pair (nodes of f, nodes of g) has exactly one level (Klein's oscillation theorem). The pairs are run through in order,
+   and the crossing of the two eigenvalues a is bracketed in double precision: Fourier series of f, Legendre polynomials for g.
+2. g is the Fourier series of f at imaginary argument, g(mu) = sum A_j cosh(j mu) or sum B_j sinh(j mu). Its zero in k at
+   mu = log 2 is found by the secant method with 60 digits (mpmath), which also makes up for the cancellation in the sum.
 
 Checks: a against scipy.special.mathieu_a and mathieu_b for the lowest 40 levels; all k against the Galerkin method of
-ellipse_levels.py; a longer series for some levels. Writes data/reference/ellipse_6_mathieu.csv. Needs numpy 2.4.6, scipy 1.17.1,
-mpmath 1.4.1.
+ellipse_levels.py; a longer series for some levels. Writes data/reference/ellipse_6_mathieu.csv. Needs numpy 2.4.6, scipy
+1.17.1, mpmath 1.4.1.
 """
 
 import csv
@@ -27,8 +27,8 @@ TOP = 66.0
 FOCUS = 0.8
 WALL = np.log(2.0)
 TERMS = 90  # Fourier coefficients: 20 more change no k below TOP by 1e-20
-# scipy 1.17.1 returns 128.3, the value of order 11, for a of ce_9 at q = 40.996, where the matrix has 93.97 (and a = 91.5 to second
-# order in q); above the lowest 40 levels this happens for 55 of 586.
+# scipy 1.17.1 returns 128.3, the value of order 11, for a of ce_9 at q = 40.996, where the matrix has 93.97 (and a = 91.5 to
+# second order in q); above the lowest 40 levels this happens for 55 of 586.
 SCIPY_WRONG = {("ce", 9)}
 RADIAL_SIZE = 44  # Legendre polynomials
 CLASSES = {  # parity under x -> -x and y -> -y: (function, its smallest frequency)
@@ -127,9 +127,8 @@ def radial_function(kind, first, index, k, terms=TERMS):
 
 
 def polished(kind, first, index, guess, terms=TERMS):
-    root = mpmath.findroot(
-        lambda k: radial_function(kind, first, index, k, terms), (mpmath.mpf(guess), mpmath.mpf(guess) + 1e-9), tol=1e-40, verify=False
-    )
+    start = (mpmath.mpf(guess), mpmath.mpf(guess) + 1e-9)
+    root = mpmath.findroot(lambda k: radial_function(kind, first, index, k, terms), start, tol=1e-40, verify=False)
     assert abs(root - guess) < 1e-9, (kind, first, index, guess, root)
     return root
 
