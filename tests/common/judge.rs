@@ -137,6 +137,7 @@ fn check_multiplicities(found: &[Found], exact: &[f64]) -> Result<(), String> {
 /// Number of broken statements and median of stated over true error. True errors count from the accuracy of the exact levels on.
 fn judge_errors(found: &[Found], exact: &[f64]) -> Result<(usize, f64), String> {
     let mut rest = exact;
+    let mut broken = Vec::new();
     let mut ratios = Vec::with_capacity(found.len());
     for row in found {
         let (group, others) = rest.split_at(row.multiplicity);
@@ -149,22 +150,32 @@ fn judge_errors(found: &[Found], exact: &[f64]) -> Result<(usize, f64), String> 
             .map(|level| (row.k - level).abs())
             .fold(0.0, f64::max);
         let unknown = REFERENCE_ACCURACY * row.k.max(1.0);
-        let broken = true_error > row.error + unknown;
-        ratios.push((row.error / true_error.max(unknown), broken));
+        if true_error > row.error + unknown {
+            broken.push((row, true_error));
+        }
+        ratios.push(row.error / true_error.max(unknown));
     }
-    let broken = ratios.iter().filter(|(_, broken)| *broken).count();
-    if broken as f64 > BROKEN * found.len() as f64 {
+    if broken.len() as f64 > BROKEN * found.len() as f64 {
+        let ratio = |(row, off): &(&Found, f64)| off / row.error;
+        let worst = broken.iter().max_by(|a, b| ratio(a).total_cmp(&ratio(b)));
+        let worst = worst.map_or(String::new(), |(row, off)| {
+            format!(
+                ", the worst at k = {}: {:.1e}, off by {off:.1e}",
+                row.k, row.error
+            )
+        });
         return Err(format!(
-            "{broken} of {} stated errors are smaller than the true ones",
+            "{} of {} stated errors are smaller than the true ones{worst}",
+            broken.len(),
             found.len()
         ));
     }
-    ratios.sort_by(|a, b| a.0.total_cmp(&b.0));
-    let median = ratios.get(ratios.len() / 2).map_or(0.0, |ratio| ratio.0);
+    ratios.sort_by(f64::total_cmp);
+    let median = ratios.get(ratios.len() / 2).copied().unwrap_or(0.0);
     if median > LARGEST_MEDIAN {
         return Err(format!(
             "stated errors are {median:.0} times the true ones in the median"
         ));
     }
-    Ok((broken, median))
+    Ok((broken.len(), median))
 }
