@@ -21,5 +21,6 @@ pub mod billiard;
 pub mod levels;
 pub mod orbit;
 pub mod report;
+pub mod solver;
 pub mod system;
 pub mod trace;

@@ -1,0 +1,187 @@
+//! One mesh with the unknowns of every symmetry class on it, good up to some k.
+
+use super::dissection::Dissection;
+use super::estimate::Estimator;
+use super::factor::{Factor, count_below};
+use super::fields::Fields;
+use super::lanczos::{Wanted, pairs_near};
+use super::mesh::{Cell, Mesh, MeshError};
+use super::space::Space;
+use super::{Sector, Wave};
+
+/// Polynomial degree that is tried first: with straight triangles of many shapes, degrees of 12 to 20 cost about the same per
+/// level, lower and higher ones more.
+const DEGREE: usize = 16;
+/// Degrees that are tried where the first is not accurate enough.
+const HIGHER_DEGREES: [usize; 2] = [20, 24];
+/// In two dimensions the error is that of one dimension for a wave with this times the wave number (measured on disks).
+const DISPERSION: f64 = 1.2;
+/// The largest error of a window's levels is about this many times the one that the mesh is made for.
+const SPREAD: f64 = 5.0;
+/// Part of the wanted accuracy that the iteration may use up.
+const ITERATION: f64 = 0.1;
+/// Times a window is halved when levels are missing from it.
+const HALVINGS: usize = 3;
+
+/// Length of edges times k at which a wave of wave number k has the relative accuracy.
+///
+/// For one dimension: (p!/(2p)!)^2 (k h)^(2p)/(2 (2p + 1)) (Ainsworth, SIAM J. Numer. Anal. 42 (2004) 553).
+fn length_times_k(degree: usize, accuracy: f64) -> f64 {
+    let p = degree as f64;
+    let ratio: f64 = (degree + 1..=2 * degree).map(|i| (i as f64).ln()).sum();
+    let logarithm = (accuracy / SPREAD * 2.0 * (2.0 * p + 1.0)).ln() + 2.0 * ratio;
+    (logarithm / (2.0 * p)).exp() / DISPERSION
+}
+
+/// Waves up to some wave number, discretised.
+#[derive(Debug)]
+pub(super) struct Discretisation {
+    mesh: Mesh,
+    parts: Vec<Part>,
+}
+
+/// The unknowns of one class.
+#[derive(Debug)]
+struct Part {
+    fields: Fields,
+    space: Space,
+    tree: Dissection,
+    estimator: Estimator,
+}
+
+/// Levels of one class in a window.
+#[derive(Clone, Debug, Default)]
+pub(super) struct Found {
+    /// Eigenvalues k^2 of the fields, ascending, and their errors.
+    pub(super) values: Vec<f64>,
+    pub(super) errors: Vec<f64>,
+    /// The waves, where they were asked for.
+    pub(super) waves: Vec<Wave>,
+    /// Number of eigenvalues by inertia: below the window, and in it.
+    pub(super) below: usize,
+    pub(super) counted: usize,
+}
+
+impl Discretisation {
+    /// How many degrees there are to be tried one after the other.
+    pub(super) const ATTEMPTS: usize = 1 + HIGHER_DEGREES.len();
+
+    /// Discretises all sectors for waves up to `k` with the relative accuracy; `attempt` counts from 0.
+    pub(super) fn new(
+        cell: &Cell,
+        sectors: &[Sector],
+        k: f64,
+        accuracy: f64,
+        attempt: usize,
+    ) -> Result<Self, MeshError> {
+        let degree = match attempt {
+            0 => DEGREE,
+            _ => HIGHER_DEGREES[(attempt - 1).min(HIGHER_DEGREES.len() - 1)],
+        };
+        let mesh = Mesh::new(cell, length_times_k(DEGREE, accuracy) / k)?;
+        let parts = sectors
+            .iter()
+            .map(|sector| Part::new(&mesh, cell, &sector.fields, degree))
+            .collect();
+        Ok(Self { mesh, parts })
+    }
+
+    /// Number of unknowns of a domain of this area for waves up to k: what a window costs in memory.
+    pub(super) fn expected_unknowns(area: f64, k: f64, accuracy: f64) -> f64 {
+        let length = length_times_k(DEGREE, accuracy) / k;
+        let triangles = area / (0.25 * 3.0_f64.sqrt() * length * length);
+        0.5 * triangles * (DEGREE * DEGREE) as f64
+    }
+
+    /// All levels of a sector with from <= k^2 < to.
+    pub(super) fn levels(
+        &self,
+        sector: usize,
+        [from, to]: [f64; 2],
+        accuracy: f64,
+        keep_waves: bool,
+    ) -> Found {
+        let part = &self.parts[sector];
+        let below = count_below(&part.space, &part.tree, from);
+        let upper = count_below(&part.space, &part.tree, to);
+        let mut found = Found {
+            below,
+            counted: upper.saturating_sub(below),
+            ..Found::default()
+        };
+        if found.counted > 0 {
+            let task = Task {
+                accuracy,
+                keep_waves,
+                depth: 0,
+            };
+            self.collect(part, [from, to], [below, upper], task, &mut found);
+        }
+        found
+    }
+
+    /// Finds the levels of a range in which there are `counts[1] - counts[0]`; where the iteration misses some, both halves.
+    fn collect(
+        &self,
+        part: &Part,
+        [from, to]: [f64; 2],
+        counts: [usize; 2],
+        task: Task,
+        found: &mut Found,
+    ) {
+        let counted = counts[1].saturating_sub(counts[0]);
+        if counted == 0 {
+            return;
+        }
+        let shift = 0.5 * (from + to);
+        let factor = Factor::new(&part.space, &part.tree, shift);
+        let wanted = Wanted {
+            from,
+            to,
+            expected: counted,
+            accuracy: ITERATION * task.accuracy,
+        };
+        let pairs = pairs_near(&part.space, &factor, shift, &wanted);
+        let incomplete = !pairs.converged || pairs.values.len() != counted;
+        if incomplete && task.depth < HALVINGS && counted > 1 {
+            let middle = factor.negative;
+            let deeper = Task {
+                depth: task.depth + 1,
+                ..task
+            };
+            self.collect(part, [from, shift], [counts[0], middle], deeper, found);
+            self.collect(part, [shift, to], [middle, counts[1]], deeper, found);
+            return;
+        }
+        let (values, errors) = part.estimator.assess(&part.space, &pairs.vectors);
+        found.values.extend(values);
+        found
+            .errors
+            .extend(errors.iter().zip(&pairs.remainders).map(|(a, b)| a + b));
+        if task.keep_waves {
+            found
+                .waves
+                .extend((0..pairs.values.len()).map(|row| Wave::new(&pairs.vectors, row)));
+        }
+    }
+}
+
+/// How levels are looked for.
+#[derive(Clone, Copy, Debug)]
+struct Task {
+    accuracy: f64,
+    keep_waves: bool,
+    depth: usize,
+}
+
+impl Part {
+    fn new(mesh: &Mesh, cell: &Cell, fields: &Fields, degree: usize) -> Self {
+        let space = Space::new(mesh, cell, fields, degree, 0);
+        Self {
+            tree: Dissection::new(&space, mesh),
+            estimator: Estimator::new(&space, mesh, cell, fields, degree),
+            space,
+            fields: fields.clone(),
+        }
+    }
+}

@@ -1,0 +1,279 @@
+//! Directly computed levels of a billiard.
+//!
+//! -Laplace u = k^2 u, with u = 0 on Dirichlet walls and a vanishing normal derivative on Neumann walls, is solved by finite
+//! elements of high polynomial degree on triangles with exactly curved edges, in layers of shrinking size around corners
+//! (Babuska & Guo, SIAM J. Numer. Anal. 25 (1988) 837). In a window of k all levels are found by a shift-inverted block
+//! Lanczos iteration, and they are counted independently of it by the inertia of the factorised matrix at both ends of the
+//! window (Grimes, Lewis & Simon, SIAM J. Matrix Anal. Appl. 15 (1994) 228). Every level has an error that is estimated from
+//! its residual in a richer space.
+//!
+//! ```text
+//! Domain, Symmetry -> Cell -> Mesh -> Space -> Dissection -> Factor -> Lanczos pairs -> Estimator -> Levels
+//! ```
+
+mod dense;
+mod discretisation;
+mod dissection;
+mod elements;
+mod estimate;
+mod factor;
+mod fields;
+mod join;
+mod lanczos;
+mod mesh;
+mod plan;
+mod space;
+
+pub use join::{Level, Levels};
+pub use mesh::MeshError;
+pub use plan::Window;
+
+use crate::baseline::{Weyl, weyl};
+use crate::billiard::{Condition, Domain, Irrep, Symmetry, Vec2, check_declared};
+use discretisation::{Discretisation, Found};
+use fields::Fields;
+use join::WindowLevels;
+use mesh::Cell;
+use plan::Band;
+use rayon::prelude::*;
+use thiserror::Error;
+
+/// Relative accuracy of k that is aimed at where nothing else is asked for.
+pub const DEFAULT_ACCURACY: f64 = 1e-11;
+/// A corner with a smaller inner angle than this (radians) is taken for a cusp of angle zero.
+const SMALLEST_ANGLE: f64 = 1e-3;
+/// Unknowns that fit into the memory of an ordinary machine.
+const MOST_UNKNOWNS: f64 = 3e6;
+/// Wedges narrower than those of a group with this many rotations make bad elements; a subgroup is used where it can be.
+const MOST_ROTATIONS: usize = 6;
+/// Where errors of levels exceed the wanted accuracy by this factor, a higher polynomial degree is tried.
+const MISSED: f64 = 10.0;
+
+/// Why levels could not be computed.
+#[derive(Clone, Debug, Error, PartialEq)]
+pub enum SolverError {
+    /// Two walls meet without an angle between them.
+    #[error(
+        "the walls meet in a cusp of angle zero at ({}, {}): levels are computed only for shapes whose corners have an inner \
+         angle of more than {SMALLEST_ANGLE} radians", .at.x, .at.y
+    )]
+    ZeroAngle {
+        /// Where.
+        at: Vec2,
+    },
+    /// The shape cannot be meshed.
+    #[error(transparent)]
+    Mesh(#[from] MeshError),
+    /// The window lies too high.
+    #[error(
+        "levels up to k = {k} need about {unknowns:.1e} unknowns, more than the {MOST_UNKNOWNS:.0e} that are allowed: take a lower \
+         window, or one symmetry class"
+    )]
+    TooLarge {
+        /// Upper end of the window.
+        k: f64,
+        /// Unknowns it needs.
+        unknowns: f64,
+    },
+}
+
+/// One symmetry class on the cell.
+#[derive(Clone, Debug)]
+struct Sector {
+    fields: Fields,
+    /// Smooth count of its levels, degenerate ones counted as often as they are.
+    weyl: Weyl,
+}
+
+/// Coefficients of a wave.
+#[derive(Clone, Debug)]
+struct Wave {
+    coefficients: Vec<f64>,
+}
+
+impl Wave {
+    fn new(vectors: &dense::Matrix, row: usize) -> Self {
+        Self {
+            coefficients: vectors.row(row).iter().copied().collect(),
+        }
+    }
+}
+
+/// Computes levels of one domain, or of one of its symmetry classes.
+#[derive(Clone, Debug)]
+pub struct Solver {
+    cell: Cell,
+    sectors: Vec<Sector>,
+    weyl: Weyl,
+    accuracy: f64,
+    area: f64,
+    /// Are all walls Neumann walls, so that a constant is a wave of k = 0?
+    constant: bool,
+}
+
+impl Solver {
+    /// Prepares the levels of the class, or all levels.
+    ///
+    /// All levels of a symmetric shape are computed class by class, so that degenerate ones are told apart from close ones.
+    ///
+    /// # Errors
+    /// Corners of angle zero.
+    pub fn new(
+        domain: &Domain,
+        symmetry: &Symmetry,
+        class: Option<&Irrep>,
+    ) -> Result<Self, SolverError> {
+        if let Some(vertex) = domain.vertices.iter().find(|v| v.angle < SMALLEST_ANGLE) {
+            return Err(SolverError::ZeroAngle { at: vertex.point });
+        }
+        let group = match class {
+            None => manageable(symmetry),
+            Some(_) => symmetry.clone(),
+        };
+        let irreps: Vec<Option<&Irrep>> = match class {
+            Some(class) => vec![Some(class)],
+            None if group.order() == 1 => vec![None],
+            None => group.irreps.iter().map(Some).collect(),
+        };
+        let sectors = irreps
+            .into_iter()
+            .map(|irrep| Sector {
+                fields: irrep.map_or_else(
+                    || Fields::plain(domain),
+                    |irrep| Fields::of_class(domain, &group, irrep),
+                ),
+                weyl: weyl(domain, &group, irrep),
+            })
+            .collect();
+        Ok(Self {
+            cell: Cell::fundamental(domain, &group),
+            sectors,
+            weyl: weyl(domain, symmetry, class),
+            accuracy: DEFAULT_ACCURACY,
+            area: domain.area,
+            constant: domain.length_under(Condition::Dirichlet) == 0.0,
+        })
+    }
+
+    /// Aims at another relative accuracy of k: coarser is faster. The error of every level is estimated all the same.
+    #[must_use]
+    pub fn with_accuracy(mut self, accuracy: f64) -> Self {
+        self.accuracy = accuracy;
+        self
+    }
+
+    /// The windows that levels from `from` up to `to` are computed in, one after the other.
+    ///
+    /// # Errors
+    /// More unknowns than fit into memory.
+    pub fn windows(&self, from: f64, to: f64) -> Result<Vec<Window>, SolverError> {
+        let area = self.area / self.cell_share();
+        let unknowns = Discretisation::expected_unknowns(area, to, self.accuracy);
+        if unknowns > MOST_UNKNOWNS {
+            return Err(SolverError::TooLarge { k: to, unknowns });
+        }
+        Ok(plan::windows(&self.sectors, from, to))
+    }
+
+    fn cell_share(&self) -> f64 {
+        self.area / self.cell.area
+    }
+
+    /// All levels with from <= k < to.
+    ///
+    /// # Errors
+    /// A shape that cannot be meshed, or more unknowns than fit into memory.
+    pub fn levels(&self, from: f64, to: f64) -> Result<Levels, SolverError> {
+        let mut levels = Levels::new(from, to);
+        self.run(&self.windows(from, to)?, |window| {
+            levels.append(window);
+            true
+        })?;
+        levels.finish(&self.weyl);
+        Ok(levels)
+    }
+
+    /// Computes the given windows (in ascending order) and hands on their levels one window after the other, until `deliver`
+    /// returns false.
+    ///
+    /// # Errors
+    /// A shape that cannot be meshed.
+    pub fn run(
+        &self,
+        windows: &[Window],
+        mut deliver: impl FnMut(WindowLevels) -> bool,
+    ) -> Result<(), SolverError> {
+        for band in plan::bands(windows) {
+            let mut attempt = 0;
+            let mut grid = self.discretise(&band, attempt)?;
+            for chunk in band.windows.chunks(rayon::current_num_threads().max(1)) {
+                let mut results = self.chunk(&grid, chunk);
+                while attempt + 1 < Discretisation::ATTEMPTS && self.missed(&results) {
+                    attempt += 1;
+                    grid = self.discretise(&band, attempt)?;
+                    results = self.chunk(&grid, chunk);
+                }
+                for result in results {
+                    if !deliver(result) {
+                        return Ok(());
+                    }
+                }
+            }
+        }
+        Ok(())
+    }
+
+    fn discretise(&self, band: &Band<'_>, attempt: usize) -> Result<Discretisation, SolverError> {
+        let grid = Discretisation::new(&self.cell, &self.sectors, band.k, self.accuracy, attempt)?;
+        Ok(grid)
+    }
+
+    fn chunk(&self, grid: &Discretisation, windows: &[Window]) -> Vec<WindowLevels> {
+        windows
+            .par_iter()
+            .map(|window| {
+                let found: Vec<Found> = (0..self.sectors.len())
+                    .into_par_iter()
+                    .map(|sector| grid.levels(sector, window.energies(), self.accuracy, false))
+                    .collect();
+                join::window(*window, &self.sectors, &found, self.constant)
+            })
+            .collect()
+    }
+
+    fn missed(&self, results: &[WindowLevels]) -> bool {
+        results
+            .iter()
+            .flat_map(|result| &result.levels)
+            .any(|level| level.error > MISSED * self.accuracy * level.k)
+    }
+
+    /// Smooth count of the levels below k, for the second check of completeness.
+    #[must_use]
+    pub fn smooth_count(&self, k: f64, smoothing: f64) -> f64 {
+        self.weyl.count(k, smoothing)
+    }
+}
+
+/// The group, or a subgroup whose fundamental cell is not too narrow.
+fn manageable(symmetry: &Symmetry) -> Symmetry {
+    let rotations = symmetry.rotations();
+    if rotations <= MOST_ROTATIONS {
+        return symmetry.clone();
+    }
+    let reflections = symmetry.order() > rotations;
+    let divisor = (1..=MOST_ROTATIONS)
+        .rev()
+        .find(|d| rotations.is_multiple_of(*d))
+        .unwrap_or(1);
+    let name = match (divisor, reflections) {
+        (1, true) => "reflection".to_owned(),
+        (1, false) => "none".to_owned(),
+        (2, true) => "rectangle".to_owned(),
+        (3, true) => "triangle".to_owned(),
+        (4, true) => "square".to_owned(),
+        (n, true) => format!("{n}-gon"),
+        (n, false) => format!("C{n}"),
+    };
+    check_declared(symmetry, &name).unwrap_or_else(|_| Symmetry::trivial())
+}
