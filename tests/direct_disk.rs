@@ -4,7 +4,7 @@
 #[path = "common/direct.rs"]
 mod direct;
 
-use direct::{check, check_window, disks, half_disk_classes, half_disks};
+use direct::{check, check_below, check_window, disks, half_disk_classes, half_disks};
 
 /// End of the window of classes, whose whole shapes are tested further up.
 const CLASSES_TOP: f64 = 30.0;
@@ -21,9 +21,7 @@ fn half_disk_with_all_conditions() {
 
 #[test]
 fn classes_of_the_half_disk() {
-    for case in half_disk_classes() {
-        check_window(&case, [0.0, CLASSES_TOP]);
-    }
+    check_below(&half_disk_classes(), CLASSES_TOP);
 }
 
 /// Windows that follow each other, the third without a level, the fourth with one or two.

@@ -5,7 +5,7 @@
 #[path = "common/direct.rs"]
 mod direct;
 
-use direct::{Case, OPENINGS, STRAIGHT, TOP, check_window, sector};
+use direct::{OPENINGS, STRAIGHT, TOP, check_below, sector};
 
 /// End of the window for Neumann walls in the place of Dirichlet ones that are tested up to [`TOP`].
 const NEUMANN_TOP: f64 = 40.0;
@@ -13,9 +13,8 @@ const NEUMANN_TOP: f64 = 40.0;
 const NEUMANN_ARC_TOP: f64 = 30.0;
 
 fn check_all(walls: &str, arc: &str, top: f64) {
-    for opening in OPENINGS {
-        check_window(&sector(opening, walls, arc), [0.0, top]);
-    }
+    let cases = OPENINGS.map(|opening| sector(opening, walls, arc));
+    check_below(&cases, top);
 }
 
 #[test]
@@ -44,7 +43,6 @@ fn neumann_arc() {
 /// The condition changes on a straight wall: r^(1/2).
 #[test]
 fn change_of_condition_on_a_straight_wall() {
-    let case: Case = sector(STRAIGHT, "dn", "d");
-    check_window(&case, [0.0, TOP]);
-    check_window(&sector(STRAIGHT, "dn", "n"), [0.0, NEUMANN_ARC_TOP]);
+    check_below(&[sector(STRAIGHT, "dn", "d")], TOP);
+    check_below(&[sector(STRAIGHT, "dn", "n")], NEUMANN_ARC_TOP);
 }

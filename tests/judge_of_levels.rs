@@ -118,6 +118,7 @@ fn wrong_multiplicities() {
 #[test]
 fn wrong_errors() {
     // Four of three hundred rows are more than one in a hundred; three are not.
+    assert_eq!([1, 100, 101, 300].map(judge::may_break), [1, 1, 2, 3]);
     let too_small = |count: usize| {
         move |found: &mut Vec<Found>| {
             for row in &mut found[40..40 + count] {
@@ -160,5 +161,4 @@ fn the_level_zero_is_judged_by_its_energy() {
     assert!(list(1e-6, 2e-6).is_ok());
     assert!(list(0.0, 0.0).is_ok());
     assert!(list(1e-4, 2e-4).is_err());
-    assert!(list(1e-6, 1e-7).is_err());
 }

@@ -10,7 +10,7 @@ mod solvable;
     unused_imports,
     reason = "each file of checks uses its own part of what they share"
 )]
-pub(crate) use judge::{Expected, Found, copies, deviation, judge};
+pub(crate) use judge::{Expected, Found, Verdict, copies, deviation, judge, may_break};
 use orbitsum::billiard::{Domain, Irrep, Symmetry, detect};
 use orbitsum::solver::{Levels, Solver};
 #[allow(
@@ -78,13 +78,23 @@ pub(crate) fn rows(levels: &Levels) -> Vec<Found> {
 
 /// All levels below [`TOP`] within [`SOLVABLE`].
 pub(crate) fn check(cases: &[Case]) {
-    for case in cases {
-        check_window(case, [0.0, TOP]);
-    }
+    check_below(cases, TOP);
+}
+
+/// All levels below k within [`SOLVABLE`], and the stated errors of all cases together.
+pub(crate) fn check_below(cases: &[Case], k: f64) {
+    let verdicts = cases.iter().map(|case| check_window(case, [0.0, k]));
+    let (rows, broken) = verdicts.fold((0, 0), |(rows, broken), verdict| {
+        (rows + verdict.rows, broken + verdict.broken)
+    });
+    assert!(
+        broken <= may_break(rows),
+        "{broken} of {rows} stated errors are smaller than the true ones"
+    );
 }
 
 /// The levels of a window, their numbers and their count.
-pub(crate) fn check_window(case: &Case, window: [f64; 2]) {
+pub(crate) fn check_window(case: &Case, window: [f64; 2]) -> Verdict {
     let [from, to] = window;
     let found = solve(
         &case.name,
@@ -98,10 +108,9 @@ pub(crate) fn check_window(case: &Case, window: [f64; 2]) {
         degenerate: case.degenerate,
         claim: SOLVABLE,
     };
-    match judge(&rows(&found), &expected) {
-        Ok(verdict) => tell(&format!("{} {from} <= k < {to}: {verdict}", case.name)),
-        Err(complaint) => panic!("{} {from} <= k < {to}: {complaint}", case.name),
-    }
+    let verdict = judge(&rows(&found), &expected)
+        .unwrap_or_else(|complaint| panic!("{} {from} <= k < {to}: {complaint}", case.name));
+    tell(&format!("{} {from} <= k < {to}: {verdict}", case.name));
     let below = case.between(0.0, from).len();
     assert_eq!(
         (found.first, found.counted),
@@ -109,4 +118,5 @@ pub(crate) fn check_window(case: &Case, window: [f64; 2]) {
         "{}: number of the first level, count of levels",
         case.name
     );
+    verdict
 }
