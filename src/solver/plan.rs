@@ -4,7 +4,7 @@ use super::Sector;
 
 /// Levels of the largest sector per window: fewer do not pay for the factorisation, more need too many vectors kept
 /// orthogonal.
-const LEVELS_PER_WINDOW: f64 = 60.0;
+const LEVELS_PER_WINDOW: f64 = 110.0;
 /// Ratio of the upper ends of neighbouring bands: a mesh is at most this much finer than a window needs.
 const BAND_RATIO: f64 = 1.3;
 

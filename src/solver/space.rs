@@ -241,12 +241,12 @@ fn corner_places(mesh: &Mesh, cell: &Cell, fields: &Fields, size: &mut usize) ->
     let is_image = |corner: usize| {
         sides[corner].contains(&Side::Cut(1)) && !sides[corner].contains(&Side::Cut(0))
     };
-    for corner in 0..mesh.corners.len() {
+    for (corner, sides) in sides.iter().enumerate() {
         let at_center = same_length(radius(corner), 0.0, cell.size);
         let directions = if is_image(corner) {
             Vec::new()
         } else {
-            fields.free(&sides[corner], at_center)
+            fields.free(sides, at_center)
         };
         let first = *size;
         *size += directions.len();
