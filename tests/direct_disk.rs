@@ -10,8 +10,13 @@ use direct::{check, check_below, check_window, disks, half_disk_classes, half_di
 const CLASSES_TOP: f64 = 30.0;
 
 #[test]
-fn whole_disk() {
-    check(&disks());
+fn dirichlet_disk() {
+    check(&disks()[..1]);
+}
+
+#[test]
+fn neumann_disk() {
+    check(&disks()[1..]);
 }
 
 #[test]

@@ -10,6 +10,8 @@ pub(crate) struct Row {
     pub(crate) order: f64,
     pub(crate) multiplicity: usize,
     pub(crate) k: f64,
+    /// Error of k (zero where the table has none).
+    pub(crate) error: f64,
 }
 
 /// Column names and rows of a committed table.
@@ -33,16 +35,16 @@ fn column(headers: &csv::StringRecord, wanted: &str) -> Option<usize> {
 /// Rows of a committed table, columns named in its second line.
 pub(crate) fn table(name: &str) -> Vec<Row> {
     let (headers, rows) = read(name);
-    let (k, order, multiplicity) = (
-        column(&headers, "k").expect("column k"),
-        column(&headers, "order"),
-        column(&headers, "multiplicity"),
-    );
+    let k = column(&headers, "k").expect("column k");
+    let multiplicity = column(&headers, "multiplicity");
+    let [order, error] = ["order", "error"].map(|name| column(&headers, name));
+    let number = |row: &csv::StringRecord, i: usize| row[i].parse().expect("a number");
     rows.iter()
         .map(|row| Row {
-            order: order.map_or(0.0, |i| row[i].parse().expect("a number")),
+            order: order.map_or(0.0, |i| number(row, i)),
             multiplicity: multiplicity.map_or(1, |i| row[i].parse().expect("a number")),
-            k: row[k].parse().expect("a number"),
+            k: number(row, k),
+            error: error.map_or(0.0, |i| number(row, i)),
         })
         .collect()
 }

@@ -8,9 +8,11 @@ list does not reach, from those of the finest run of the same window.
 
     python3 ngsolve_quarter_stadium.py REFERENCE.csv [--window low] [--window high] [--write]
 
-`low` is k < 40, `high` 75 < k < 80, both if none is named. `--write` writes the list of a second-order mesh of about 2800
-unknowns, as coarse codes make it, to data/levels/second-order-quarter-stadium.csv. One thread. Versions: ngsolve 6.2.2608,
-netgen-mesher 6.2.2608, scipy 1.17.1, numpy 2.4.6.
+`low` is k < 40, `high` 75 <= k < 80, both if none is named. `--write` writes the list of a second-order mesh of about 2800
+unknowns, as coarse codes make it, to data/levels/second-order-quarter-stadium.csv, and the finest runs of both windows to
+data/reference/quarter_stadium.csv; the error of a level is the largest difference from the run before among it and its ten
+neighbours, since one difference alone can be small by chance. One thread. Versions: ngsolve 6.2.2608, netgen-mesher 6.2.2608,
+scipy 1.17.1, numpy 2.4.6.
 """
 
 import os
@@ -54,6 +56,8 @@ RUNS = {
 WINDOWS = {"low": (0.0, 40.0), "high": (75.0, 80.0)}
 SECOND_ORDER = Run(0.053, 2, 2, 2)
 SECOND_ORDER_FILE = "data/levels/second-order-quarter-stadium.csv"
+REFERENCE_FILE = "data/reference/quarter_stadium.csv"
+NEIGHBOURS = 5  # on either side of a level
 REPETITIONS = 3  # the fastest of them is printed
 
 
@@ -161,7 +165,24 @@ def report(name, path):
             f"{run.order:5}  {run.size:5}  {run.shifts:6}  {unknowns:8}  {len(found):6}  {seconds:7.2f}  "
             f"{1e3 * seconds / len(found):12.2f}  {np.median(off):12.1e}  {off.max():13.1e}"
         )
-    return results[-1], reference
+    return results, reference
+
+
+def write_reference(finest):
+    """`finest`: by window the lists of the two finest runs, the finest one first."""
+    with open(FOLDER / REFERENCE_FILE, "w", encoding="utf-8") as out:
+        out.write(
+            "# quarter stadium, radius 1, half straight part 1, all walls Dirichlet; k below 40 and from 75 to 80; error = "
+            "largest difference from a coarser run among a level and ten neighbours\n"
+            f"# tests/reference/ngsolve_quarter_stadium.py, {versions()}\n"
+        )
+        out.write("k,error\n")
+        for fine, coarse in finest:
+            differences = np.abs(fine - coarse)
+            for n, k in enumerate(fine):
+                error = differences[max(n - NEIGHBOURS, 0) : n + NEIGHBOURS + 1].max()
+                out.write(f"{k:.15g},{error:.1e}\n")
+    print("written:", REFERENCE_FILE)
 
 
 def write(found, unknowns, reference):
@@ -193,10 +214,15 @@ def main():
     parser.add_argument("--write", action="store_true")
     arguments = parser.parse_args()
     print(versions(), "one thread")
+    finest = []
     for name in arguments.window or WINDOWS:
-        (_, found, unknowns, _), reference = report(name, arguments.reference)
+        results, reference = report(name, arguments.reference)
+        last = len(RUNS[name]) - 1
+        finest.append((results[last][1], results[last - 1][1]))
         if name == "low" and arguments.write:
-            write(found, unknowns, reference)
+            write(results[-1][1], results[-1][2], reference)
+    if arguments.write and len(finest) == len(WINDOWS):
+        write_reference(finest)
 
 
 if __name__ == "__main__":
