@@ -243,7 +243,7 @@ fn surplus(space: &Space, richer: &Space, index: usize) -> Surplus {
         })
         .map(|entry| {
             let column = new.iter().position(|&i| i == entry.local).unwrap_or(0);
-            (column, wide.unknowns[entry.slot], entry.coefficient)
+            (column, wide.rim[entry.slot], entry.coefficient)
         })
         .collect();
     let interior: Vec<usize> = (0..new.len())
