@@ -3,10 +3,8 @@
 
 #[path = "common/direct.rs"]
 mod direct;
-#[path = "common/tables.rs"]
-mod tables;
 
-use direct::{SOLVABLE, deviation, may_break, rows, shape, solve, tell};
+use direct::{SOLVABLE, deviation, may_break, rows, shape, solve, table, tell};
 use orbitsum::billiard::detect;
 
 /// The levels of a window, whose number NGSolve and ARPACK give as `count`.
@@ -19,7 +17,7 @@ fn check([from, to]: [f64; 2], count: usize) {
         None,
         [from, to],
     );
-    let mut list = tables::table("quarter_stadium.csv");
+    let mut list = table("quarter_stadium.csv");
     list.retain(|row| (from..to).contains(&row.k));
     // The shape has no symmetry, and its levels are simple.
     assert_eq!([list.len(), found.counted, found.levels.len()], [count; 3]);

@@ -12,6 +12,11 @@ use exact::{box_value, equilateral_value, levels as closed_form};
 use orbitsum::billiard::{Domain, Irrep, Symmetry, detect};
 pub(crate) use shipped::{shape, test_shape};
 use std::f64::consts::PI;
+#[allow(
+    unused_imports,
+    reason = "each file of checks uses its own part of what they share"
+)]
+pub(crate) use tables::table;
 use tables::{levels, levels_of_class, levels_of_orders};
 
 /// All levels below this k are known (of shapes of about unit size).
