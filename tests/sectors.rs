@@ -8,7 +8,7 @@
 mod integrable;
 
 use integrable::Smoothing::{Spacings, Width};
-use integrable::{Case, Weyl, bounds, levels, table};
+use integrable::{Case, Weyl, bounds, levels, levels_of_orders};
 use orbitsum::billiard::Condition::{self, Dirichlet, Neumann};
 use orbitsum::billiard::{Arc, Domain, Line, Role, Shape, Vec2, Wall};
 use orbitsum::orbit::tori::{Integrable, recognise};
@@ -62,15 +62,6 @@ fn sector<'a>(
     }
 }
 
-/// Levels of a part of the disk: those with the given angular orders, once each.
-fn part_of_disk(file: &str, keep: impl Fn(u32) -> bool) -> Vec<f64> {
-    table(file)
-        .iter()
-        .filter(|row| keep(row.order as u32))
-        .map(|row| row.k)
-        .collect()
-}
-
 #[test]
 fn half_disk() {
     // Measured with next order: 0.0013, 0.0043, 0.0055 for all three.
@@ -83,7 +74,7 @@ fn half_disk() {
         PI,
         Dirichlet,
         DD,
-        part_of_disk("disk_d.csv", |m| m > 0),
+        levels_of_orders("disk_d.csv", |m| m > 0),
     )
     .check(&expected);
     sector(
@@ -91,7 +82,7 @@ fn half_disk() {
         PI,
         Dirichlet,
         NN,
-        part_of_disk("disk_d.csv", |_| true),
+        levels_of_orders("disk_d.csv", |_| true),
     )
     .check(&expected);
     sector(
@@ -118,7 +109,7 @@ fn quarter_disk() {
         quarter,
         Dirichlet,
         DD,
-        part_of_disk("disk_d.csv", |m| m > 0 && even(m)),
+        levels_of_orders("disk_d.csv", |m| m > 0 && even(m)),
     )
     .check(&expected);
     sector(
@@ -126,7 +117,7 @@ fn quarter_disk() {
         quarter,
         Dirichlet,
         NN,
-        part_of_disk("disk_d.csv", even),
+        levels_of_orders("disk_d.csv", even),
     )
     .check(&expected);
     sector(
@@ -134,7 +125,7 @@ fn quarter_disk() {
         quarter,
         Dirichlet,
         DN,
-        part_of_disk("disk_d.csv", |m| !even(m)),
+        levels_of_orders("disk_d.csv", |m| !even(m)),
     )
     .check(&expected);
 }
@@ -177,7 +168,7 @@ fn neumann_arc() {
         PI,
         Neumann,
         DD,
-        part_of_disk("disk_n.csv", |m| m > 0),
+        levels_of_orders("disk_n.csv", |m| m > 0),
     )
     .check(&expected);
     sector(
@@ -185,7 +176,7 @@ fn neumann_arc() {
         PI,
         Neumann,
         NN,
-        part_of_disk("disk_n.csv", |_| true),
+        levels_of_orders("disk_n.csv", |_| true),
     )
     .check(&expected);
 }
@@ -210,7 +201,7 @@ fn drawn_half_disk_is_the_sector() {
         PI,
         Dirichlet,
         NN,
-        part_of_disk("disk_d.csv", |_| true),
+        levels_of_orders("disk_d.csv", |_| true),
     );
     case.shape = recognise(&domain).expect("integrable");
     case.check(&bounds(

@@ -2,55 +2,18 @@
 //!
 //! A residual is the rms over a window of exact staircase - smooth part - terms, all smoothed with the same Gaussian.
 
+#[path = "../common/tables.rs"]
+mod tables;
+
 use orbitsum::levels::staircase;
 use orbitsum::orbit::tori::{Integrable, TorusLimits, terms};
 use orbitsum::trace::{Amplitude, Term, sum_at};
 use std::f64::consts::PI;
-use std::path::Path;
-
-/// One row of a committed table.
-#[derive(Clone, Copy, Debug)]
-pub(crate) struct Row {
-    /// Angular order (zero where the table has none).
-    pub(crate) order: f64,
-    pub(crate) multiplicity: usize,
-    pub(crate) k: f64,
-}
-
-/// Rows of a committed table, columns named in its second line.
-pub(crate) fn table(name: &str) -> Vec<Row> {
-    let path = Path::new(env!("CARGO_MANIFEST_DIR"))
-        .join("data/reference")
-        .join(name);
-    let mut reader = csv::ReaderBuilder::new()
-        .comment(Some(b'#'))
-        .from_path(path)
-        .expect("table exists");
-    let headers = reader.headers().expect("table has a header").clone();
-    let column = |wanted: &str| headers.iter().position(|name| name == wanted);
-    let (k, order, multiplicity) = (
-        column("k").expect("column k"),
-        column("order"),
-        column("multiplicity"),
-    );
-    reader
-        .records()
-        .map(|row| row.expect("row is csv"))
-        .map(|row| Row {
-            order: order.map_or(0.0, |i| row[i].parse().expect("a number")),
-            multiplicity: multiplicity.map_or(1, |i| row[i].parse().expect("a number")),
-            k: row[k].parse().expect("a number"),
-        })
-        .collect()
-}
-
-/// Levels of a committed table, each as often as its multiplicity says.
-pub(crate) fn levels(name: &str) -> Vec<f64> {
-    table(name)
-        .iter()
-        .flat_map(|row| std::iter::repeat_n(row.k, row.multiplicity))
-        .collect()
-}
+#[allow(
+    unused_imports,
+    reason = "each file of checks uses its own part of what they share"
+)]
+pub(crate) use tables::{levels, levels_of_orders, table};
 
 /// Smooth count A k^2/(4 pi) - L k/(4 pi) + C + D/k with L = L_D - L_N.
 #[derive(Clone, Copy, Debug)]

@@ -5,9 +5,13 @@ Writes data/reference/{disk,annulus,sector}_*.csv. Needs numpy 2.4.6, scipy 1.17
 Roots are bracketed by sign changes of scipy.special functions on a grid much finer than their smallest distance, then
 polished by two Newton steps in 30-digit arithmetic (mpmath), so the printed digits are all good. The grid starts at half the
 order: J_m, J_m' and their cross products have no positive zero below the order.
+
+With names of tables as arguments (`bessel_zeros.py sector_60_dn`) only these are written.
 """
 
+import fractions
 import pathlib
+import sys
 
 import mpmath
 import numpy as np
@@ -38,13 +42,12 @@ def roots(function, exact, start):
 
 
 def disk_roots(order, condition):
-    """Radial levels of angular order `order` (any real number >= 0)."""
+    """Radial levels of angular order `order` (any real number >= 0, of 30 digits if it is no small fraction)."""
+    near = float(order)
     if condition == "D":
-        return roots(lambda k: special.jv(order, k), lambda k: mpmath.besselj(order, k), 0.5 * order)
+        return roots(lambda k: special.jv(near, k), lambda k: mpmath.besselj(order, k), 0.5 * near)
     # The level k = 0 of order 0 is not a sign change; the caller adds it.
-    return roots(
-        lambda k: special.jvp(order, k), lambda k: mpmath.besselj(order, k, derivative=1), 0.5 * order
-    )
+    return roots(lambda k: special.jvp(near, k), lambda k: mpmath.besselj(order, k, derivative=1), 0.5 * near)
 
 
 def annulus_roots(order, inner, outer, condition_outer, condition_inner):
@@ -70,7 +73,7 @@ def annulus_roots(order, inner, outer, condition_outer, condition_inner):
 def write(name, about, rows):
     """rows: (order, multiplicity, k)."""
     rows = sorted(rows, key=lambda row: row[2])
-    with open(FOLDER / name, "w", encoding="utf-8") as out:
+    with open(FOLDER / f"{name}.csv", "w", encoding="utf-8") as out:
         out.write(f"# {about}; tests/reference/bessel_zeros.py, scipy 1.17.1, mpmath 1.4.1\n")
         out.write("order,multiplicity,k\n")
         for order, multiplicity, k in rows:
@@ -86,23 +89,68 @@ def integer_orders(levels):
     return rows
 
 
+ZERO = (0, 1, mpmath.mpf(0))  # the constant function of Neumann walls
+
+
+def disk(condition):
+    if condition == "D":
+        about = "Disk, radius 1, Dirichlet: zeros of J_m below 66"
+        return about, integer_orders(lambda m: disk_roots(m, "D"))
+    about = "Disk, radius 1, Neumann: zeros of J_m' below 66 and the level k = 0"
+    return about, integer_orders(lambda m: disk_roots(m, "N")) + [ZERO]
+
+
+def annulus(outer, inner):
+    rows = integer_orders(lambda m: annulus_roots(m, 0.5, 1.0, outer, inner))
+    if outer + inner == "NN":
+        rows.append(ZERO)
+    return f"Annulus, radii 1 (condition {outer}) and 0.5 (condition {inner}), k below 66", rows
+
+
+def sector(opening, walls, arc):
+    """`opening` is a fraction of pi, or a number of radians; `walls` dd or dn (nn: dd and the zeros of order 0)."""
+    shift = mpmath.mpf(1) / 2 if walls == "dn" else 0
+    if isinstance(opening, fractions.Fraction):
+        half_turns = mpmath.mpf(opening.numerator) / opening.denominator
+    else:
+        half_turns = opening / mpmath.pi
+    orders = [(m - shift) / half_turns for m in range(1, int(TOP * half_turns) + 2)]
+    rows = [(float(order), 1, k) for order in orders for k in disk_roots(order, arc)]
+    condition = {"D": "Dirichlet", "N": "Neumann"}[arc]
+    about = f"Sector of opening {float(half_turns * mpmath.pi):.15g}, radius 1, arc {condition}, radial walls {walls}"
+    return about, rows
+
+
+SECTORS = {
+    "60": fractions.Fraction(1, 3),
+    "120": fractions.Fraction(2, 3),
+    "pi": fractions.Fraction(1),
+    "270": fractions.Fraction(3, 2),
+    "342": fractions.Fraction(19, 10),
+    "two": 2.0,
+}
+# Sectors of pi/n with like walls, and the half and quarter disk, take their levels from the disk.
+SECTOR_WALLS = [
+    ("60", ["dn"]),
+    ("120", ["dd", "dn"]),
+    ("pi", ["dn"]),
+    ("270", ["dd", "dn"]),
+    ("342", ["dd", "dn"]),
+    ("two", ["dd", "dn"]),
+]
+
+TABLES = {"disk_d": lambda: disk("D"), "disk_n": lambda: disk("N")}
+for conditions in ["DD", "DN", "ND", "NN"]:
+    TABLES[f"annulus_{conditions.lower()}"] = lambda conditions=conditions: annulus(*conditions)
+for opening, all_walls in SECTOR_WALLS:
+    for walls in all_walls:
+        for arc, ending in [("D", ""), ("N", "_arc_n")]:
+            TABLES[f"sector_{opening}_{walls}{ending}"] = lambda o=opening, w=walls, a=arc: sector(SECTORS[o], w, a)
+
+
 def main():
-    write("disk_d.csv", "Disk, radius 1, Dirichlet: zeros of J_m below 66", integer_orders(lambda m: disk_roots(m, "D")))
-    rows = integer_orders(lambda m: disk_roots(m, "N")) + [(0, 1, mpmath.mpf(0))]
-    write("disk_n.csv", "Disk, radius 1, Neumann: zeros of J_m' below 66 and the level k = 0", rows)
-    for outer, inner in ["DD", "DN", "NN"]:
-        rows = integer_orders(lambda m: annulus_roots(m, 0.5, 1.0, outer, inner))
-        if outer + inner == "NN":
-            rows.append((0, 1, mpmath.mpf(0)))
-        write(
-            f"annulus_{outer.lower()}{inner.lower()}.csv",
-            f"Annulus, radii 1 (condition {outer}) and 0.5 (condition {inner}), k below 66",
-            rows,
-        )
-    for name, beta, shift in [("two_dd", 2.0, 0.0), ("two_dn", 2.0, 0.5), ("pi_dn", np.pi, 0.5)]:
-        orders = [(m - shift) * np.pi / beta for m in range(1, int(TOP * beta / np.pi) + 2)]
-        rows = [(order, 1, k) for order in orders for k in disk_roots(order, "D")]
-        write(f"sector_{name}.csv", f"Sector of opening {beta:.15g}, radius 1, arc Dirichlet, radial walls {name[-2:]}", rows)
+    for name in sys.argv[1:] or TABLES:
+        write(name, *TABLES[name]())
 
 
 if __name__ == "__main__":
