@@ -24,7 +24,7 @@ mod mesh;
 mod plan;
 mod space;
 
-pub use join::{Level, Levels};
+pub use join::{Level, Levels, WindowLevels};
 pub use mesh::MeshError;
 pub use plan::Window;
 
@@ -32,7 +32,6 @@ use crate::baseline::{Weyl, weyl};
 use crate::billiard::{Condition, Domain, Irrep, Symmetry, Vec2, check_declared};
 use discretisation::{Discretisation, Found};
 use fields::Fields;
-use join::WindowLevels;
 use mesh::Cell;
 use plan::Band;
 use rayon::prelude::*;
