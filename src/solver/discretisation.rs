@@ -1,13 +1,16 @@
 //! One mesh with the unknowns of every symmetry class on it, good up to some k.
 
+use super::Sector;
+use super::dense::Matrix;
 use super::dissection::Dissection;
 use super::estimate::Estimator;
 use super::factor::{Factor, count_below};
 use super::fields::Fields;
 use super::lanczos::{Wanted, pairs_near};
-use super::mesh::{Cell, Mesh, MeshError};
+use super::mesh::{Cell, Mesh, MeshError, Triangle};
 use super::space::Space;
-use super::{Sector, Wave};
+use super::waves::Spot;
+use crate::billiard::cross;
 
 /// Polynomial degree that is tried first: with straight triangles of many shapes, degrees of 12 to 20 cost about the same per
 /// level, lower and higher ones more.
@@ -55,8 +58,8 @@ pub(super) struct Found {
     /// Eigenvalues k^2 of the fields, ascending, and their errors.
     pub(super) values: Vec<f64>,
     pub(super) errors: Vec<f64>,
-    /// The waves, where they were asked for.
-    pub(super) waves: Vec<Wave>,
+    /// Coefficients of the waves: blocks of rows in the order of the values.
+    pub(super) vectors: Vec<Matrix>,
     /// Number of eigenvalues by inertia: below the window, and in it.
     pub(super) below: usize,
     pub(super) counted: usize,
@@ -94,13 +97,7 @@ impl Discretisation {
     }
 
     /// All levels of a sector with from <= k^2 < to.
-    pub(super) fn levels(
-        &self,
-        sector: usize,
-        [from, to]: [f64; 2],
-        accuracy: f64,
-        keep_waves: bool,
-    ) -> Found {
+    pub(super) fn levels(&self, sector: usize, [from, to]: [f64; 2], accuracy: f64) -> Found {
         let part = &self.parts[sector];
         let below = count_below(&part.space, &part.tree, from);
         let upper = count_below(&part.space, &part.tree, to);
@@ -110,59 +107,59 @@ impl Discretisation {
             ..Found::default()
         };
         if found.counted > 0 {
-            let task = Task {
-                accuracy,
-                keep_waves,
-                depth: 0,
-            };
-            self.collect(part, [from, to], [below, upper], task, &mut found);
+            let task = Task { accuracy, depth: 0 };
+            collect(part, [from, to], [below, upper], task, &mut found);
         }
         found
     }
 
-    /// Finds the levels of a range in which there are `counts[1] - counts[0]`; where the iteration misses some, both halves.
-    fn collect(
+    pub(super) fn mesh(&self) -> &Mesh {
+        &self.mesh
+    }
+
+    /// Value and gradient of every wave at the spots: one list per field, wave after wave.
+    pub(super) fn values(
         &self,
-        part: &Part,
-        [from, to]: [f64; 2],
-        counts: [usize; 2],
-        task: Task,
-        found: &mut Found,
-    ) {
-        let counted = counts[1].saturating_sub(counts[0]);
-        if counted == 0 {
-            return;
+        sector: usize,
+        vectors: &[Matrix],
+        spots: &[Spot],
+    ) -> Vec<Vec<[f64; 3]>> {
+        let part = &self.parts[sector];
+        let waves: usize = vectors.iter().map(Matrix::nrows).sum();
+        let mut values = vec![vec![[0.0; 3]; waves * spots.len()]; part.fields.count];
+        let mut by_triangle: Vec<Vec<usize>> = vec![Vec::new(); self.mesh.triangles.len()];
+        for (index, spot) in spots.iter().enumerate() {
+            by_triangle[spot.triangle].push(index);
         }
-        let shift = 0.5 * (from + to);
-        let factor = Factor::new(&part.space, &part.tree, shift);
-        let wanted = Wanted {
-            from,
-            to,
-            expected: counted,
-            accuracy: ITERATION * task.accuracy,
-        };
-        let pairs = pairs_near(&part.space, &factor, shift, &wanted);
-        let incomplete = !pairs.converged || pairs.values.len() != counted;
-        if incomplete && task.depth < HALVINGS && counted > 1 {
-            let middle = factor.negative;
-            let deeper = Task {
-                depth: task.depth + 1,
-                ..task
-            };
-            self.collect(part, [from, shift], [counts[0], middle], deeper, found);
-            self.collect(part, [shift, to], [middle, counts[1]], deeper, found);
-            return;
+        for leaf in &part.space.leaves {
+            let element = &part.space.elements[leaf.element];
+            let triangle = &self.mesh.triangles[element.triangle];
+            let own = &by_triangle[element.triangle];
+            if own.is_empty() {
+                continue;
+            }
+            let functions: Vec<Vec<[f64; 3]>> = own
+                .iter()
+                .map(|&spot| part.functions(&self.mesh, triangle, leaf.element, spots[spot].at))
+                .collect();
+            let mut first = 0;
+            for block in vectors {
+                let local = leaf.restrict(block, element.selection.len());
+                for row in 0..block.nrows() {
+                    for (&spot, functions) in own.iter().zip(&functions) {
+                        let mut sum = [0.0; 3];
+                        for (column, parts) in functions.iter().enumerate() {
+                            for (sum, part) in sum.iter_mut().zip(parts) {
+                                *sum += local[(row, column)] * part;
+                            }
+                        }
+                        values[leaf.field][(first + row) * spots.len() + spot] = sum;
+                    }
+                }
+                first += block.nrows();
+            }
         }
-        let (values, errors) = part.estimator.assess(&part.space, &pairs.vectors);
-        found.values.extend(values);
-        found
-            .errors
-            .extend(errors.iter().zip(&pairs.remainders).map(|(a, b)| a + b));
-        if task.keep_waves {
-            found
-                .waves
-                .extend((0..pairs.values.len()).map(|row| Wave::new(&pairs.vectors, row)));
-        }
+        values
     }
 }
 
@@ -170,7 +167,6 @@ impl Discretisation {
 #[derive(Clone, Copy, Debug)]
 struct Task {
     accuracy: f64,
-    keep_waves: bool,
     depth: usize,
 }
 
@@ -184,4 +180,64 @@ impl Part {
             fields: fields.clone(),
         }
     }
+
+    /// Values and derivatives by x and y in the plane of the selected functions of an element.
+    fn functions(
+        &self,
+        mesh: &Mesh,
+        triangle: &Triangle,
+        element: usize,
+        at: [f64; 2],
+    ) -> Vec<[f64; 3]> {
+        let [_, dx, dy] = mesh.map(triangle, at);
+        let jacobian = cross(dx, dy);
+        let all = self.space.reference.at(at);
+        self.space.elements[element]
+            .selection
+            .columns
+            .iter()
+            .map(|&column| {
+                let [value, by_x, by_y] = all[column];
+                [
+                    value,
+                    (dy.y * by_x - dx.y * by_y) / jacobian,
+                    (-dy.x * by_x + dx.x * by_y) / jacobian,
+                ]
+            })
+            .collect()
+    }
+}
+
+/// Finds the levels of a range in which there are `counts[1] - counts[0]`; where the iteration misses some, both halves.
+fn collect(part: &Part, [from, to]: [f64; 2], counts: [usize; 2], task: Task, found: &mut Found) {
+    let counted = counts[1].saturating_sub(counts[0]);
+    if counted == 0 {
+        return;
+    }
+    let shift = 0.5 * (from + to);
+    let factor = Factor::new(&part.space, &part.tree, shift);
+    let wanted = Wanted {
+        from,
+        to,
+        expected: counted,
+        accuracy: ITERATION * task.accuracy,
+    };
+    let pairs = pairs_near(&part.space, &factor, shift, &wanted);
+    let incomplete = !pairs.converged || pairs.values.len() != counted;
+    if incomplete && task.depth < HALVINGS && counted > 1 {
+        let middle = factor.negative;
+        let deeper = Task {
+            depth: task.depth + 1,
+            ..task
+        };
+        collect(part, [from, shift], [counts[0], middle], deeper, found);
+        collect(part, [shift, to], [middle, counts[1]], deeper, found);
+        return;
+    }
+    let (values, errors) = part.estimator.assess(&part.space, &pairs.vectors);
+    found.values.extend(values);
+    found
+        .errors
+        .extend(errors.iter().zip(&pairs.remainders).map(|(a, b)| a + b));
+    found.vectors.push(pairs.vectors);
 }

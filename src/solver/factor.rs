@@ -63,7 +63,7 @@ impl<'a> Factor<'a> {
     }
 }
 
-fn subtract(mut target: faer::ColMut<'_, f64>, amount: faer::ColRef<'_, f64>) {
+fn subtract(target: faer::ColMut<'_, f64>, amount: faer::ColRef<'_, f64>) {
     for (t, a) in target.iter_mut().zip(amount.iter()) {
         *t -= a;
     }

@@ -25,6 +25,10 @@ pub(super) struct Fields {
     /// What the fields are multiplied by under the rotation of a group without reflections, row by row.
     pub(super) rotation: [Direction; 2],
     conditions: Vec<Condition>,
+    /// What a single field is multiplied by under the elements of the group.
+    pub(super) characters: Vec<f64>,
+    /// The m of a pair of fields.
+    pub(super) winding: usize,
 }
 
 impl Fields {
@@ -37,6 +41,8 @@ impl Fields {
             mirrors: [None; 2],
             rotation: [[1.0, 0.0], [0.0, 1.0]],
             conditions: domain.walls.iter().map(|wall| wall.condition).collect(),
+            characters: vec![1.0],
+            winding: 0,
         }
     }
 
@@ -56,10 +62,12 @@ impl Fields {
             return Self {
                 mirrors,
                 rotation: [[sign, 0.0], [0.0, sign]],
+                characters: class.weights.clone(),
                 ..plain
             };
         }
-        let angle = 2.0 * PI * winding(rotations, class) as f64 / rotations as f64;
+        let winding = winding(rotations, class);
+        let angle = 2.0 * PI * winding as f64 / rotations as f64;
         let (sin, cos) = angle.sin_cos();
         let (half_sin, half_cos) = (0.5 * angle).sin_cos();
         Self {
@@ -68,6 +76,7 @@ impl Fields {
             forced: if axes.is_empty() { 2 } else { 1 },
             mirrors: [Some([1.0, 0.0]), Some([half_cos, half_sin])],
             rotation: [[cos, -sin], [sin, cos]],
+            winding,
             ..plain
         }
     }

@@ -151,14 +151,7 @@ pub(super) fn window(
         counted += copies * found.counted;
         let near_ends = near_ends(window, found);
         complete &= found.values.len().abs_diff(found.counted) <= near_ends;
-        for (&value, &error) in found.values.iter().zip(&found.errors) {
-            let level = level(value, error, constant);
-            levels.push(Level {
-                multiplicity: copies,
-                forced: copies.max(sector.fields.forced),
-                ..level
-            });
-        }
+        levels.extend(levels_of(sector, found, constant));
     }
     levels.sort_by(|a, b| a.k.total_cmp(&b.k));
     WindowLevels {
@@ -168,6 +161,19 @@ pub(super) fn window(
         counted,
         complete,
     }
+}
+
+/// Levels of one class in the order in which they were found.
+pub(super) fn levels_of(sector: &Sector, found: &Found, constant: bool) -> Vec<Level> {
+    let copies = sector.fields.copies;
+    let pairs = found.values.iter().zip(&found.errors);
+    pairs
+        .map(|(&value, &error)| Level {
+            multiplicity: copies,
+            forced: copies.max(sector.fields.forced),
+            ..level(value, error, constant)
+        })
+        .collect()
 }
 
 /// How many levels are nearer to an end of the window than their errors, so that the count may place them on either side.

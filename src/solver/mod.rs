@@ -23,17 +23,18 @@ mod lanczos;
 mod mesh;
 mod plan;
 mod space;
+mod waves;
 
 pub use join::{Level, Levels, WindowLevels};
 pub use mesh::MeshError;
 pub use plan::Window;
+pub use waves::{Grid, WallPlace, WaveValues, wall_places};
 
 use crate::baseline::{Weyl, weyl};
 use crate::billiard::{Condition, Domain, Irrep, Symmetry, Vec2, check_declared};
 use discretisation::{Discretisation, Found};
 use fields::Fields;
 use mesh::Cell;
-use plan::Band;
 use rayon::prelude::*;
 use thiserror::Error;
 
@@ -84,20 +85,6 @@ struct Sector {
     weyl: Weyl,
 }
 
-/// Coefficients of a wave.
-#[derive(Clone, Debug)]
-struct Wave {
-    coefficients: Vec<f64>,
-}
-
-impl Wave {
-    fn new(vectors: &dense::Matrix, row: usize) -> Self {
-        Self {
-            coefficients: vectors.row(row).iter().copied().collect(),
-        }
-    }
-}
-
 /// Computes levels of one domain, or of one of its symmetry classes.
 #[derive(Clone, Debug)]
 pub struct Solver {
@@ -105,7 +92,8 @@ pub struct Solver {
     sectors: Vec<Sector>,
     weyl: Weyl,
     accuracy: f64,
-    area: f64,
+    domain: Domain,
+    group: Symmetry,
     /// Are all walls Neumann walls, so that a constant is a wave of k = 0?
     constant: bool,
 }
@@ -149,7 +137,8 @@ impl Solver {
             sectors,
             weyl: weyl(domain, symmetry, class),
             accuracy: DEFAULT_ACCURACY,
-            area: domain.area,
+            domain: domain.clone(),
+            group,
             constant: domain.length_under(Condition::Dirichlet) == 0.0,
         })
     }
@@ -166,16 +155,11 @@ impl Solver {
     /// # Errors
     /// More unknowns than fit into memory.
     pub fn windows(&self, from: f64, to: f64) -> Result<Vec<Window>, SolverError> {
-        let area = self.area / self.cell_share();
-        let unknowns = Discretisation::expected_unknowns(area, to, self.accuracy);
+        let unknowns = Discretisation::expected_unknowns(self.cell.area, to, self.accuracy);
         if unknowns > MOST_UNKNOWNS {
             return Err(SolverError::TooLarge { k: to, unknowns });
         }
         Ok(plan::windows(&self.sectors, from, to))
-    }
-
-    fn cell_share(&self) -> f64 {
-        self.area / self.cell.area
     }
 
     /// All levels with from <= k < to.
@@ -204,12 +188,12 @@ impl Solver {
     ) -> Result<(), SolverError> {
         for band in plan::bands(windows) {
             let mut attempt = 0;
-            let mut grid = self.discretise(&band, attempt)?;
+            let mut grid = self.discretise(band.k, attempt)?;
             for chunk in band.windows.chunks(rayon::current_num_threads().max(1)) {
                 let mut results = self.chunk(&grid, chunk);
                 while attempt + 1 < Discretisation::ATTEMPTS && self.missed(&results) {
                     attempt += 1;
-                    grid = self.discretise(&band, attempt)?;
+                    grid = self.discretise(band.k, attempt)?;
                     results = self.chunk(&grid, chunk);
                 }
                 for result in results {
@@ -222,9 +206,15 @@ impl Solver {
         Ok(())
     }
 
-    fn discretise(&self, band: &Band<'_>, attempt: usize) -> Result<Discretisation, SolverError> {
-        let grid = Discretisation::new(&self.cell, &self.sectors, band.k, self.accuracy, attempt)?;
-        Ok(grid)
+    /// The mesh for waves up to k.
+    fn discretise(&self, k: f64, attempt: usize) -> Result<Discretisation, SolverError> {
+        Ok(Discretisation::new(
+            &self.cell,
+            &self.sectors,
+            k,
+            self.accuracy,
+            attempt,
+        )?)
     }
 
     fn chunk(&self, grid: &Discretisation, windows: &[Window]) -> Vec<WindowLevels> {
@@ -233,7 +223,7 @@ impl Solver {
             .map(|window| {
                 let found: Vec<Found> = (0..self.sectors.len())
                     .into_par_iter()
-                    .map(|sector| grid.levels(sector, window.energies(), self.accuracy, false))
+                    .map(|sector| grid.levels(sector, window.energies(), self.accuracy))
                     .collect();
                 join::window(*window, &self.sectors, &found, self.constant)
             })

@@ -170,7 +170,7 @@ impl Leaf {
         let mut local = Matrix::zeros(block.nrows(), functions);
         for entry in &self.entries {
             let source = block.col(self.unknowns[entry.slot]);
-            let mut target = local.col_mut(entry.local);
+            let target = local.col_mut(entry.local);
             for (t, s) in target.iter_mut().zip(source.iter()) {
                 *t += entry.coefficient * s;
             }
@@ -182,7 +182,7 @@ impl Leaf {
     pub(super) fn accumulate(&self, local: &Matrix, block: &mut Matrix) {
         for entry in &self.entries {
             let source = local.col(entry.local);
-            let mut target = block.col_mut(self.unknowns[entry.slot]);
+            let target = block.col_mut(self.unknowns[entry.slot]);
             for (t, s) in target.iter_mut().zip(source.iter()) {
                 *t += entry.coefficient * s;
             }

@@ -9,7 +9,7 @@ mod triangulate;
 
 pub(super) use bow::Bow;
 pub(super) use cell::{Cell, Side};
-pub(super) use topology::{Edge, Mesh, Triangle, same_length};
+pub(super) use topology::{Mesh, Triangle, same_length};
 
 use crate::billiard::{Vec2, cross};
 use outline::Outline;

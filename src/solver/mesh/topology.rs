@@ -128,7 +128,7 @@ pub(super) fn connect(draft: &Draft<'_>) -> Result<Mesh, Vec<(usize, f64)>> {
             vec![owners.as_slice()]
         };
         for group in groups {
-            let (index, local) = group[0];
+            let (index, _) = group[0];
             let [a, b] = oriented(draft, *nodes, boundary);
             let corner = |node: usize| {
                 let at = draft.triangles[index].0.iter().position(|&n| n == node);
@@ -143,7 +143,6 @@ pub(super) fn connect(draft: &Draft<'_>) -> Result<Mesh, Vec<(usize, f64)>> {
                 }),
                 bow: boundary.and_then(|edge| bow(draft, edge, [a, b], &mut wrong)),
             };
-            let _ = local;
             for &(triangle, local) in group {
                 let first = draft.triangles[triangle].0[EDGES[local][0]];
                 edges_of[triangle][local] = (mesh.edges.len(), first == a);
