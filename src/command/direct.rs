@@ -8,17 +8,17 @@ use super::progress::Steps;
 use super::subject::Subject;
 use super::text::{counted, significant};
 use orbitsum::solver::{Levels, Solver, Window};
-use std::path::Path;
+use std::path::PathBuf;
 
 /// What is to be computed.
-#[derive(Clone, Copy, Debug)]
-pub(super) struct Task<'a> {
+#[derive(Clone, Debug)]
+pub(super) struct Task {
     /// Window in k.
     pub(super) window: Window,
     /// Relative accuracy of k that is aimed at.
     pub(super) accuracy: f64,
     /// Where finished windows are kept until all is done.
-    pub(super) journal: Option<&'a Path>,
+    pub(super) journal: Option<PathBuf>,
 }
 
 /// What was computed.
@@ -43,7 +43,7 @@ pub(super) fn solver(subject: &Subject, accuracy: f64) -> Result<Solver, Command
 pub(super) fn compute(
     subject: &Subject,
     solver: &Solver,
-    task: &Task<'_>,
+    task: &Task,
     options: &Options,
 ) -> Result<Direct, CommandError> {
     let Window { from, to } = task.window;
@@ -51,6 +51,7 @@ pub(super) fn compute(
     let mut levels = Levels::new(from, to);
     let mut journal = task
         .journal
+        .as_deref()
         .map(|path| Journal::open(path, &fingerprint(subject, task), &windows))
         .transpose()?;
     let mut done = 0;
@@ -120,6 +121,14 @@ impl Direct {
             counted: levels.counted,
             windows: windows.join(", "),
         })
+    }
+
+    /// k of the levels, each as often as it occurs.
+    pub(super) fn repeated(&self) -> Vec<f64> {
+        let levels = self.levels.levels.iter();
+        levels
+            .flat_map(|level| std::iter::repeat_n(level.k, level.multiplicity))
+            .collect()
     }
 
     /// Levels found and counted, in a sentence.

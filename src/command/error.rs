@@ -57,7 +57,9 @@ pub(crate) enum CommandError {
         most: f64,
     },
     /// An option's value is no list of whole numbers.
-    #[error("--{option}: `{text}` is no number of a level nor a range of them: give numbers from 1 on such as 12,15-18")]
+    #[error(
+        "--{option}: `{text}` is no number of a level nor a range of them: give numbers from 1 on such as 12,15-18"
+    )]
     NotNumbers { option: &'static str, text: String },
     /// A list of numbers that asks for too much.
     #[error("--{option}: more than {most} levels are asked for: name at most {most}")]
@@ -69,7 +71,9 @@ pub(crate) enum CommandError {
     )]
     TooManyWaves { expected: f64, most: usize },
     /// A level that is not in the window.
-    #[error("--only: level {number} is not in the window, which holds the levels {first} to {last}")]
+    #[error(
+        "--only: level {number} is not in the window, which holds the levels {first} to {last}"
+    )]
     NoSuchLevel {
         number: usize,
         first: usize,

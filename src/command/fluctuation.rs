@@ -6,9 +6,7 @@ use super::subject::Subject;
 use orbitsum::baseline::weyl;
 use orbitsum::billiard::{VertexKind, Wall};
 use orbitsum::orbit::{ClassWeights, Limits, terms};
-use orbitsum::trace::{
-    ClassDensity, Statistics, Term, expected_fluctuation, mean_fluctuation,
-};
+use orbitsum::trace::{ClassDensity, Statistics, Term, expected_fluctuation, mean_fluctuation};
 use std::f64::consts::PI;
 
 /// Longest orbits that are looked for, in mean chords of the shape: enough to see its families, and found at once.

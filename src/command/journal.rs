@@ -43,7 +43,7 @@ pub(super) struct Journal {
 }
 
 /// What levels depend on, as one line of text.
-pub(super) fn fingerprint(subject: &Subject, task: &Task<'_>) -> String {
+pub(super) fn fingerprint(subject: &Subject, task: &Task) -> String {
     let system = &subject.system;
     let parameters: Map<String, Value> = system
         .parameters
@@ -152,7 +152,8 @@ impl Journal {
 
 /// Names of what is different in two fingerprints.
 fn differing(found: &str, wanted: &str) -> Vec<String> {
-    let read = |text: &str| -> Map<String, Value> { serde_json::from_str(text).unwrap_or_default() };
+    let read =
+        |text: &str| -> Map<String, Value> { serde_json::from_str(text).unwrap_or_default() };
     let (found, wanted) = (read(found), read(wanted));
     let names: Vec<String> = wanted
         .iter()
@@ -331,7 +332,11 @@ mod tests {
     fn another_computation_is_told_by_what_differs() {
         let folder = tempfile::tempdir().expect("a temporary folder");
         let path = folder.path().join("levels.partial");
-        let open = |text: &str| Journal::open(&path, text, &windows()).expect("opens").opened;
+        let open = |text: &str| {
+            Journal::open(&path, text, &windows())
+                .expect("opens")
+                .opened
+        };
         assert_eq!(open("{\"a\":1,\"b\":2}"), Opened::New);
         assert_eq!(
             open("{\"a\":1,\"b\":3}"),

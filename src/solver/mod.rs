@@ -187,14 +187,24 @@ impl Solver {
         mut deliver: impl FnMut(WindowLevels) -> bool,
     ) -> Result<(), SolverError> {
         for band in plan::bands(windows) {
-            let mut attempt = 0;
-            let mut grid = self.discretise(band.k, attempt)?;
+            let mut meshes = vec![self.discretise(band.k, 0)?];
             for chunk in band.windows.chunks(rayon::current_num_threads().max(1)) {
-                let mut results = self.chunk(&grid, chunk);
-                while attempt + 1 < Discretisation::ATTEMPTS && self.missed(&results) {
-                    attempt += 1;
-                    grid = self.discretise(band.k, attempt)?;
-                    results = self.chunk(&grid, chunk);
+                let mut results = self.chunk(&meshes[0], chunk);
+                // Each window by itself: its levels must not depend on which others are computed beside or before it.
+                for attempt in 1..Discretisation::ATTEMPTS {
+                    let missed: Vec<usize> = (0..results.len())
+                        .filter(|&index| self.missed(&results[index..=index]))
+                        .collect();
+                    if missed.is_empty() {
+                        break;
+                    }
+                    if meshes.len() == attempt {
+                        meshes.push(self.discretise(band.k, attempt)?);
+                    }
+                    let again: Vec<Window> = missed.iter().map(|&index| chunk[index]).collect();
+                    for (index, result) in missed.iter().zip(self.chunk(&meshes[attempt], &again)) {
+                        results[*index] = result;
+                    }
                 }
                 for result in results {
                     if !deliver(result) {
