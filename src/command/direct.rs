@@ -144,3 +144,52 @@ impl Direct {
         format!("{found} found in {windows}, {agreement}")
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::command::arguments::Format;
+    use orbitsum::solver::{Level, WindowLevels};
+    use std::path::Path;
+
+    #[test]
+    fn a_window_with_too_few_levels_is_named() {
+        let options = Options {
+            settings: Vec::new(),
+            class: None,
+            folder: None,
+            format: Format::Csv,
+            quiet: true,
+        };
+        let path = Path::new(env!("CARGO_MANIFEST_DIR")).join("billiards/quarter-stadium.toml");
+        let subject = Subject::load(&path, &options).expect("a shipped shape");
+        let windows = vec![Window { from: 0.0, to: 4.0 }, Window { from: 4.0, to: 6.5 }];
+        let mut levels = Levels::new(0.0, 6.5);
+        for (window, counted) in windows.iter().zip([1, 3]) {
+            let level = Level {
+                k: window.to - 0.3,
+                error: 1e-12,
+                multiplicity: 1,
+                forced: 1,
+            };
+            levels.append(WindowLevels {
+                window: *window,
+                levels: vec![level],
+                below: 0,
+                counted,
+                complete: counted == 1,
+            });
+        }
+        let direct = Direct { levels, windows };
+        let failure = direct.failure(&subject).expect("a failure");
+        let message = failure.message();
+        assert!(
+            message.contains("2 levels were found and 4 counted; they disagree in k from 4 to 6.5"),
+            "{message}"
+        );
+        assert_eq!(
+            format!("{:?}", failure.exit_code()),
+            format!("{:?}", std::process::ExitCode::from(1))
+        );
+    }
+}

@@ -75,7 +75,7 @@ pub fn levels_picture(curves: &LevelCurves<'_>) -> String {
     if !curves.smoothed.0.is_empty() {
         entries.push((
             Sample::Line(SMOOTHED),
-            format!("smoothed over {} mean spacings", rounded(curves.smoothing)),
+            format!("smoothed over {} mean spacings", curves.smoothing),
         ));
     }
     if marked {

@@ -5,6 +5,7 @@ use crate::command::answer::Answer;
 use crate::command::note::Note;
 use crate::command::table::{Cell, Table};
 use crate::command::text::{listed, significant, with_unit};
+use orbitsum::billiard::is_rotationally_invariant;
 use orbitsum::levels::staircase;
 use orbitsum::report::{LevelCurves, levels_picture};
 use orbitsum::solver::Level;
@@ -136,10 +137,16 @@ fn notes(findings: &Findings<'_>, shown: usize) -> Vec<Note> {
             pairs: levels.unresolved,
         });
     }
+    // Rotations by any angle force pairs, which no finite group that the solver works with knows of.
+    let turned = if is_rotationally_invariant(&subject.system.domain) {
+        2
+    } else {
+        1
+    };
     let degenerate: Vec<&Level> = levels
         .levels
         .iter()
-        .filter(|level| level.multiplicity > level.forced)
+        .filter(|level| level.multiplicity > level.forced.max(turned))
         .collect();
     if let Some(first) = degenerate.first() {
         let units = &subject.system.units;

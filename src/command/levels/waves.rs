@@ -19,7 +19,7 @@ const MOST_WAVES: usize = 200;
 /// Points per wavelength on the grid and along the walls: enough for integrals over a wave to a few thousandths.
 const POINTS_PER_WAVELENGTH: f64 = 12.0;
 /// Points along the longer side of the grid: fewer would not show the shape, more make files that are no good to anybody.
-const GRID_POINTS: [f64; 2] = [96.0, 320.0];
+const GRID_POINTS: [f64; 2] = [160.0, 320.0];
 
 /// Where waves are written, and which.
 #[derive(Debug)]
