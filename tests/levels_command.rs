@@ -9,7 +9,7 @@ const QUARTER: &str = "billiards/quarter-stadium.toml";
 const STADIUM: &str = "billiards/stadium.toml";
 const DISK: &str = "billiards/disk.toml";
 /// Two windows of the quarter stadium, at an accuracy that is quick.
-const TWO_WINDOWS: [&str; 6] = ["levels", QUARTER, "--k", "0:24", "--accuracy", "1e-7"];
+const TWO_WINDOWS: [&str; 6] = ["levels", QUARTER, "--k", "0:32", "--accuracy", "1e-7"];
 const FILES: [&str; 3] = ["levels.csv", "levels.json", "levels.svg"];
 const JOURNAL: &str = "levels.partial";
 
@@ -118,10 +118,8 @@ fn a_later_window_goes_on_with_the_numbers() {
     let skipped = whole.len() - upper.len();
     for (row, same) in upper.iter().zip(&whole[skipped..]) {
         assert_eq!((row[0], row[4]), (same[0], same[4]));
-        assert!(
-            (row[1] - same[1]).abs() <= row[3] + same[3] + 1e-12,
-            "{row:?} {same:?}"
-        );
+        // Both were asked for to 1e-7.
+        assert!((row[1] / same[1] - 1.0).abs() < 1e-7, "{row:?} {same:?}");
     }
     let classes: usize = ["A1", "A2", "B1", "B2"]
         .iter()
@@ -162,7 +160,7 @@ fn json_says_how_complete_the_list_is() {
     assert_eq!(completeness["complete"], true);
     assert_eq!(completeness["first"], 1);
     assert_eq!(completeness["found"], completeness["counted"]);
-    assert_eq!(completeness["windows"], 2);
+    assert!(completeness["windows"].as_u64() > Some(1));
     let (mean, expected) = (
         value["less_smooth_count"]["mean"]
             .as_f64()
@@ -198,7 +196,12 @@ fn an_interrupted_computation_ends_with_the_same_files() {
     let lines: Vec<usize> = (0..journal.len())
         .filter(|&index| journal[index] == b'\n')
         .collect();
-    assert_eq!(lines.len(), 3, "a first line and two windows");
+    let windows = lines.len() - 1;
+    assert!(
+        windows > 1,
+        "one window cannot be interrupted after the first"
+    );
+    let done = format!("1 of {windows} windows are done");
     // Within the first line, at its end, within the first window, at its end, within the second window.
     for length in [10, lines[0] + 1, lines[0] + 300, lines[1] + 1, lines[2] - 5] {
         for name in FILES {
@@ -207,7 +210,7 @@ fn an_interrupted_computation_ends_with_the_same_files() {
         fs::write(folder.join(JOURNAL), &journal[..length]).expect("written");
         let output = call(&TWO_WINDOWS, &["--out", path(folder)]);
         assert!(output.status.success());
-        let taken_up = text(&output.stderr).contains("1 of 2 windows are done");
+        let taken_up = text(&output.stderr).contains(&done);
         assert_eq!(taken_up, length > lines[1], "{}", text(&output.stderr));
         assert!(results(folder) == expected, "cut at {length}");
     }
@@ -319,7 +322,7 @@ fn waves_are_written_with_their_numbers() {
     for (arguments, message) in [
         (
             ["--only", "99"],
-            "level 99 is not in the window, which holds the levels 1 to 7",
+            "level 99 is not in the window, which holds the levels 1 to 6",
         ),
         (["--only", "3-1"], "`3-1` is no number of a level"),
         (["--only", "1-500"], "more than 200 levels are asked for"),

@@ -96,20 +96,27 @@ impl Discretisation {
         0.5 * triangles * (DEGREE * DEGREE) as f64
     }
 
-    /// All levels of a sector with from <= k^2 < to.
-    pub(super) fn levels(&self, sector: usize, [from, to]: [f64; 2], accuracy: f64) -> Found {
+    /// Number of levels of a sector below k^2 = `energy`, by inertia.
+    pub(super) fn count(&self, sector: usize, energy: f64) -> usize {
         let part = &self.parts[sector];
-        let below = count_below(&part.space, &part.tree, from);
-        let upper = count_below(&part.space, &part.tree, to);
+        count_below(&part.space, &part.tree, energy)
+    }
+
+    /// All levels of a sector with from <= k^2 < to, of which there are as many as the counts at both ends say.
+    pub(super) fn levels(
+        &self,
+        sector: usize,
+        range: [f64; 2],
+        counts: [usize; 2],
+        accuracy: f64,
+    ) -> Found {
         let mut found = Found {
-            below,
-            counted: upper.saturating_sub(below),
+            below: counts[0],
+            counted: counts[1].saturating_sub(counts[0]),
             ..Found::default()
         };
-        if found.counted > 0 {
-            let task = Task { accuracy, depth: 0 };
-            collect(part, [from, to], [below, upper], task, &mut found);
-        }
+        let task = Task { accuracy, depth: 0 };
+        collect(&self.parts[sector], range, counts, task, &mut found);
         found
     }
 

@@ -1,7 +1,8 @@
 //! The order in which unknowns are eliminated: nested dissection of the elements (George, SIAM J. Numer. Anal. 10 (1973) 345).
 //!
-//! A binary tree over the leaves (single fields on single elements). At every node those unknowns are eliminated that no leaf
-//! outside the node holds; what remains is the rim that the node shares with the rest.
+//! The unknowns inside elements go first. Then a binary tree over the leaves (single fields on single elements) is walked up: at
+//! every node above the leaves those unknowns are eliminated that no leaf outside the node holds; what remains is the rim that
+//! the node shares with the rest.
 
 use super::space::{Leaf, Space};
 use crate::billiard::Vec2;
@@ -14,6 +15,8 @@ pub(super) enum Below {
     Leaf(usize),
     /// Two nodes.
     Pair(usize, usize),
+    /// A single node, the only leaf of its tree.
+    Only(usize),
 }
 
 /// A node of the tree.
@@ -36,7 +39,7 @@ impl Dissection {
     pub(super) fn new(space: &Space, mesh: &Mesh) -> Self {
         let mut holders = vec![0_u32; space.size];
         for leaf in &space.leaves {
-            for &unknown in &leaf.unknowns {
+            for &unknown in &leaf.rim {
                 holders[unknown] += 1;
             }
         }
@@ -69,6 +72,9 @@ impl Dissection {
         for other in tops {
             top = builder.join(top, other);
         }
+        if !top.1.is_empty() {
+            builder.node(Below::Only(top.0), top.1);
+        }
         Self {
             nodes: builder.nodes,
         }
@@ -90,12 +96,17 @@ impl Builder<'_> {
     fn split(&mut self, leaves: &mut [usize]) -> (usize, Front) {
         if let [leaf] = leaves {
             let mut held: Front = self.space.leaves[*leaf]
-                .unknowns
+                .rim
                 .iter()
                 .map(|&unknown| (unknown, 1))
                 .collect();
             held.sort_unstable();
-            return self.node(Below::Leaf(*leaf), held);
+            self.nodes.push(Node {
+                below: Below::Leaf(*leaf),
+                eliminated: Vec::new(),
+                rim: held.iter().map(|&(unknown, _)| unknown).collect(),
+            });
+            return (self.nodes.len() - 1, held);
         }
         let mut low = Vec2::repeat(f64::INFINITY);
         let mut high = Vec2::repeat(f64::NEG_INFINITY);

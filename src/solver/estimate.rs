@@ -23,6 +23,8 @@ const ROUNDING: f64 = 16.0;
 struct Surplus {
     /// For each function that the wave has: its place among those of the richer element.
     known: Vec<usize>,
+    /// Rows of the new functions, in the order of the columns.
+    new: Vec<usize>,
     /// Stiffness and mass between all functions of the richer element (rows) and the new ones (columns).
     stiffness: Matrix,
     mass: Matrix,
@@ -59,10 +61,10 @@ impl Estimator {
         let mut pivots = vec![0.0; richer.size];
         for part in &surplus {
             for (index, &(column, unknown, coefficient)) in part.edges.iter().enumerate() {
-                let mut pivot = part.stiffness[(part_row(part, column), column)];
+                let mut pivot = part.stiffness[(part.new[column], column)];
                 for (row, &inner) in part.interior.iter().enumerate() {
-                    pivot -= part.stiffness[(part_row(part, inner), column)]
-                        * part.coupling[(row, index)];
+                    pivot -=
+                        part.stiffness[(part.new[inner], column)] * part.coupling[(row, index)];
                 }
                 pivots[unknown] += coefficient * coefficient * pivot;
             }
@@ -102,19 +104,7 @@ impl Estimator {
     }
 }
 
-/// Row of the richer element that belongs to a new column.
-fn part_row(part: &Surplus, column: usize) -> usize {
-    part.new_rows()[column]
-}
-
 impl Surplus {
-    /// Rows of the new functions, in the order of the columns.
-    fn new_rows(&self) -> Vec<usize> {
-        (0..self.stiffness.nrows())
-            .filter(|row| !self.known.contains(row))
-            .collect()
-    }
-
     /// (stiffness - value x mass) wave, tested with the new functions: one row per wave.
     fn residual(&self, local: &Matrix, values: &[f64]) -> Matrix {
         let mut residual = dense::product(local.as_ref(), self.stiffness.as_ref());
@@ -221,19 +211,15 @@ fn sizes(matrix: &Matrix) -> Matrix {
 }
 
 fn surplus(space: &Space, richer: &Space, index: usize) -> Surplus {
-    let (leaf, wide) = (&space.leaves[index], &richer.leaves[index]);
-    let element = &space.elements[leaf.element];
+    let wide = &richer.leaves[index];
     let rich = &richer.elements[wide.element];
     let function = |column: usize| richer.reference.functions[column];
     let known: Vec<usize> = known_places(space, richer, index);
-    let is_new: Vec<bool> = {
-        let mut flags = vec![true; rich.selection.len()];
-        for &place in &known {
-            flags[place] = false;
-        }
-        flags
-    };
-    let new: Vec<usize> = (0..rich.selection.len()).filter(|&i| is_new[i]).collect();
+    let mut is_new = vec![true; rich.selection.len()];
+    for &place in &known {
+        is_new[place] = false;
+    }
+    let new: Vec<usize> = (0..is_new.len()).filter(|&place| is_new[place]).collect();
     let columns = |matrix: &Matrix| super::factor::gather(matrix, &new);
     let stiffness = columns(
         &rich
@@ -257,7 +243,7 @@ fn surplus(space: &Space, richer: &Space, index: usize) -> Surplus {
         })
         .map(|entry| {
             let column = new.iter().position(|&i| i == entry.local).unwrap_or(0);
-            (column, wide.unknowns[entry.slot], entry.coefficient)
+            (column, wide.rim[entry.slot], entry.coefficient)
         })
         .collect();
     let interior: Vec<usize> = (0..new.len())
@@ -275,10 +261,10 @@ fn surplus(space: &Space, richer: &Space, index: usize) -> Surplus {
         stiffness[(new[interior[i]], edges[j].0)]
     });
     let inverse = Symmetric::new(own.as_ref()).inverse();
-    let _ = element;
     Surplus {
         coupling: dense::product(inverse.as_ref(), across.as_ref()),
         known,
+        new,
         stiffness,
         mass,
         edges,

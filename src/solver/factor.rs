@@ -3,9 +3,9 @@
 use super::dense::{self, Into, Matrix, Symmetric};
 use super::dissection::{Below, Dissection, Node};
 use super::space::Space;
+use faer::MatRef;
 
-/// What a node keeps for solutions: with A the node's matrix on eliminated unknowns e and rim r, the inverse of A_ee and
-/// A_ee^-1 A_er.
+/// What is kept for solutions: with A the matrix on eliminated unknowns e and rim r, the inverse of A_ee and A_ee^-1 A_er.
 #[derive(Debug)]
 struct Kept {
     inverse: Matrix,
@@ -15,57 +15,83 @@ struct Kept {
 /// A factorised matrix.
 #[derive(Debug)]
 pub(super) struct Factor<'a> {
+    space: &'a Space,
     tree: &'a Dissection,
-    kept: Vec<Kept>,
+    /// The interiors of the kinds of elements.
+    interiors: Vec<Kept>,
+    /// The nodes of the tree above its leaves.
+    nodes: Vec<Option<Kept>>,
     /// Number of negative eigenvalues: the number of levels below the shift.
     pub(super) negative: usize,
 }
 
 /// Number of eigenvalues of the pencil (stiffness, mass) below a shift, by Sylvester's law of inertia.
 pub(super) fn count_below(space: &Space, tree: &Dissection, shift: f64) -> usize {
-    Elimination::new(space, tree, shift, false).run().1
+    Elimination::new(space, tree, shift, Purpose::Inertia)
+        .run()
+        .negative
 }
 
 impl<'a> Factor<'a> {
-    pub(super) fn new(space: &Space, tree: &'a Dissection, shift: f64) -> Self {
-        let (kept, negative) = Elimination::new(space, tree, shift, true).run();
-        Self {
-            tree,
-            kept,
-            negative,
-        }
+    pub(super) fn new(space: &'a Space, tree: &'a Dissection, shift: f64) -> Self {
+        Elimination::new(space, tree, shift, Purpose::Solutions).run()
     }
 
     /// Replaces the right sides by the solutions: one column per unknown, one row per right side.
     pub(super) fn solve(&self, block: &mut Matrix) {
-        for (node, kept) in self.tree.nodes.iter().zip(&self.kept) {
+        for leaf in &self.space.leaves {
+            let kept = &self.interiors[self.space.elements[leaf.element].kind];
+            let inside = block.subcols(leaf.interior.start, leaf.interior.len());
+            let onward = dense::product(inside, kept.coupling.as_ref());
+            let solved = dense::product(inside, kept.inverse.as_ref());
+            block
+                .subcols_mut(leaf.interior.start, leaf.interior.len())
+                .copy_from(&solved);
+            leaf.accumulate_rim(&onward, -1.0, block);
+        }
+        for (node, kept) in self.tree.nodes.iter().zip(&self.nodes) {
+            let Some(kept) = kept else { continue };
             let own = gather(block, &node.eliminated);
             if !node.rim.is_empty() {
                 let onward = dense::product(own.as_ref(), kept.coupling.as_ref());
-                for (column, &unknown) in node.rim.iter().enumerate() {
-                    let target = block.col_mut(unknown);
-                    subtract(target, onward.col(column));
-                }
+                subtract(block, &node.rim, &onward);
             }
             let solved = dense::product(own.as_ref(), kept.inverse.as_ref());
-            scatter(block, &node.eliminated, &solved);
-        }
-        for (node, kept) in self.tree.nodes.iter().zip(&self.kept).rev() {
-            if node.rim.is_empty() || node.eliminated.is_empty() {
-                continue;
-            }
-            let rim = gather(block, &node.rim);
-            let back = dense::product(rim.as_ref(), kept.coupling.transpose());
             for (column, &unknown) in node.eliminated.iter().enumerate() {
-                subtract(block.col_mut(unknown), back.col(column));
+                block.col_mut(unknown).copy_from(solved.col(column));
             }
+        }
+        for (node, kept) in self.tree.nodes.iter().zip(&self.nodes).rev() {
+            let Some(kept) = kept else { continue };
+            if !node.rim.is_empty() {
+                let rim = gather(block, &node.rim);
+                let back = dense::product(rim.as_ref(), kept.coupling.transpose());
+                subtract(block, &node.eliminated, &back);
+            }
+        }
+        for leaf in &self.space.leaves {
+            let kept = &self.interiors[self.space.elements[leaf.element].kind];
+            let mut rim = Matrix::zeros(block.nrows(), kept.coupling.ncols());
+            leaf.restrict_rim(block, &mut rim);
+            let inside = block.subcols_mut(leaf.interior.start, leaf.interior.len());
+            dense::multiply(
+                inside,
+                Into::Sum,
+                rim.as_ref(),
+                kept.coupling.transpose(),
+                -1.0,
+            );
         }
     }
 }
 
-fn subtract(target: faer::ColMut<'_, f64>, amount: faer::ColRef<'_, f64>) {
-    for (t, a) in target.iter_mut().zip(amount.iter()) {
-        *t -= a;
+/// Takes the columns of `amount` away from those of the given unknowns.
+fn subtract(block: &mut Matrix, unknowns: &[usize], amount: &Matrix) {
+    for (column, &unknown) in unknowns.iter().enumerate() {
+        let source = amount.col_as_slice(column);
+        for (t, a) in block.col_as_slice_mut(unknown).iter_mut().zip(source) {
+            *t -= a;
+        }
     }
 }
 
@@ -73,14 +99,64 @@ fn subtract(target: faer::ColMut<'_, f64>, amount: faer::ColRef<'_, f64>) {
 pub(super) fn gather(block: &Matrix, unknowns: &[usize]) -> Matrix {
     let mut picked = Matrix::zeros(block.nrows(), unknowns.len());
     for (column, &unknown) in unknowns.iter().enumerate() {
-        picked.col_mut(column).copy_from(block.col(unknown));
+        picked
+            .col_as_slice_mut(column)
+            .copy_from_slice(block.col_as_slice(unknown));
     }
     picked
 }
 
-fn scatter(block: &mut Matrix, unknowns: &[usize], values: &Matrix) {
-    for (column, &unknown) in unknowns.iter().enumerate() {
-        block.col_mut(unknown).copy_from(values.col(column));
+/// What a factorisation is for.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+enum Purpose {
+    Solutions,
+    Inertia,
+}
+
+/// A matrix of which some unknowns have been eliminated.
+struct Eliminated {
+    /// What solutions need, if they are wanted.
+    kept: Option<Kept>,
+    /// Number of negative eigenvalues of the eliminated part.
+    negative: usize,
+    /// The matrix on the rim.
+    schur: Matrix,
+}
+
+/// Eliminates the part `own`, coupled by `across` to a rim with the matrix `rim`.
+fn eliminate(
+    own: MatRef<'_, f64>,
+    across: MatRef<'_, f64>,
+    rim: MatRef<'_, f64>,
+    purpose: Purpose,
+) -> Eliminated {
+    let factor = Symmetric::new(own);
+    let mut schur = rim.to_owned();
+    let mut update = |coupling: &Matrix| {
+        dense::multiply(
+            schur.as_mut(),
+            Into::Sum,
+            across.transpose(),
+            coupling.as_ref(),
+            -1.0,
+        );
+    };
+    let kept = match purpose {
+        Purpose::Inertia => {
+            update(&factor.solve(across));
+            None
+        }
+        Purpose::Solutions => {
+            let inverse = factor.inverse();
+            let coupling = dense::product(inverse.as_ref(), across);
+            update(&coupling);
+            Some(Kept { inverse, coupling })
+        }
+    };
+    Eliminated {
+        kept,
+        negative: factor.negative(),
+        schur,
     }
 }
 
@@ -89,106 +165,132 @@ struct Elimination<'a> {
     space: &'a Space,
     tree: &'a Dissection,
     shift: f64,
-    /// Are solutions wanted, or the inertia alone?
-    keep: bool,
+    purpose: Purpose,
     /// Position of every unknown in the front that is being set up.
     position: Vec<usize>,
 }
 
 impl<'a> Elimination<'a> {
-    fn new(space: &'a Space, tree: &'a Dissection, shift: f64, keep: bool) -> Self {
+    fn new(space: &'a Space, tree: &'a Dissection, shift: f64, purpose: Purpose) -> Self {
         Self {
             space,
             tree,
             shift,
-            keep,
+            purpose,
             position: vec![usize::MAX; space.size],
         }
     }
 
-    fn run(mut self) -> (Vec<Kept>, usize) {
-        let mut rest: Vec<Option<Matrix>> = Vec::with_capacity(self.tree.nodes.len());
-        let mut all = Vec::with_capacity(self.tree.nodes.len());
+    fn run(mut self) -> Factor<'a> {
+        let kinds: Vec<Eliminated> = self
+            .space
+            .kinds
+            .iter()
+            .map(|&element| self.interior(element))
+            .collect();
         let mut negative = 0;
+        let mut rest: Vec<Option<Matrix>> = Vec::with_capacity(self.tree.nodes.len());
+        let mut nodes = Vec::with_capacity(self.tree.nodes.len());
         for node in &self.tree.nodes {
+            if let Below::Leaf(leaf) = node.below {
+                let kind = &kinds[self.space.elements[self.space.leaves[leaf].element].kind];
+                negative += kind.negative;
+                rest.push(Some(self.leaf(leaf, node, &kind.schur)));
+                nodes.push(None);
+                continue;
+            }
             let front = self.front(node, &mut rest);
-            let count = node.eliminated.len();
-            let own = Symmetric::new(front.submatrix(0, 0, count, count));
-            negative += own.negative();
-            let rim = front.nrows() - count;
-            let across = front.submatrix(0, count, count, rim);
-            let coupling = if self.keep {
-                let inverse = own.inverse();
-                let coupling = dense::product(inverse.as_ref(), across);
-                all.push(Kept {
-                    inverse,
-                    coupling: coupling.clone(),
-                });
-                coupling
-            } else {
-                own.solve(across)
-            };
-            let mut schur = front.submatrix(count, count, rim, rim).to_owned();
-            dense::multiply(
-                schur.as_mut(),
-                Into::Sum,
-                across.transpose(),
-                coupling.as_ref(),
-                -1.0,
+            let own = node.eliminated.len();
+            let rim = node.rim.len();
+            let done = eliminate(
+                front.submatrix(0, 0, own, own),
+                front.submatrix(0, own, own, rim),
+                front.submatrix(own, own, rim, rim),
+                self.purpose,
             );
-            rest.push(Some(schur));
+            negative += done.negative;
+            rest.push(Some(done.schur));
+            nodes.push(done.kept);
         }
-        (all, negative)
+        Factor {
+            space: self.space,
+            tree: self.tree,
+            interiors: kinds.into_iter().filter_map(|kind| kind.kept).collect(),
+            nodes,
+            negative,
+        }
     }
 
-    /// The matrix of a node, eliminated unknowns first.
-    fn front(&mut self, node: &Node, rest: &mut [Option<Matrix>]) -> Matrix {
-        let order = node.eliminated.iter().chain(&node.rim);
-        for (position, &unknown) in order.enumerate() {
-            self.position[unknown] = position;
+    /// Eliminates the interior functions of an element.
+    fn interior(&self, element: usize) -> Eliminated {
+        let element = &self.space.elements[element];
+        let matrix =
+            element
+                .matrices
+                .combine(&self.space.reference, &element.selection, 1.0, -self.shift);
+        let (rim, inside) = (element.rim, element.selection.len() - element.rim);
+        eliminate(
+            matrix.submatrix(rim, rim, inside, inside),
+            matrix.submatrix(rim, 0, inside, rim),
+            matrix.submatrix(0, 0, rim, rim),
+            self.purpose,
+        )
+    }
+
+    /// The matrix of a leaf on the unknowns of its rim.
+    fn leaf(&mut self, leaf: usize, node: &Node, schur: &Matrix) -> Matrix {
+        let leaf = &self.space.leaves[leaf];
+        self.place(node.rim.iter());
+        let places: Vec<(usize, usize, f64)> = leaf
+            .entries
+            .iter()
+            .map(|entry| {
+                let position = self.position[leaf.rim[entry.slot]];
+                (entry.local, position, entry.coefficient)
+            })
+            .collect();
+        let mut matrix = Matrix::zeros(node.rim.len(), node.rim.len());
+        for &(j, column, b) in &places {
+            let source = schur.col_as_slice(j);
+            let target = matrix.col_as_slice_mut(column);
+            for &(i, row, a) in &places {
+                target[row] += a * b * source[i];
+            }
         }
+        matrix
+    }
+
+    /// The matrix of a node above the leaves, eliminated unknowns first.
+    fn front(&mut self, node: &Node, rest: &mut [Option<Matrix>]) -> Matrix {
+        self.place(node.eliminated.iter().chain(&node.rim));
         let size = node.eliminated.len() + node.rim.len();
         let mut front = Matrix::zeros(size, size);
-        match node.below {
-            Below::Leaf(leaf) => self.add_leaf(leaf, &mut front),
-            Below::Pair(first, second) => {
-                for child in [first, second] {
-                    if let Some(schur) = rest[child].take() {
-                        self.add_child(&self.tree.nodes[child].rim, &schur, &mut front);
-                    }
-                }
+        let children = match node.below {
+            Below::Leaf(_) => Vec::new(),
+            Below::Pair(first, second) => vec![first, second],
+            Below::Only(child) => vec![child],
+        };
+        for child in children {
+            if let Some(schur) = rest[child].take() {
+                self.add_child(&self.tree.nodes[child].rim, &schur, &mut front);
             }
         }
         front
     }
 
-    fn add_leaf(&self, leaf: usize, front: &mut Matrix) {
-        let leaf = &self.space.leaves[leaf];
-        let element = &self.space.elements[leaf.element];
-        let local =
-            element
-                .matrices
-                .combine(&self.space.reference, &element.selection, 1.0, -self.shift);
-        let places: Vec<(usize, usize, f64)> = leaf
-            .entries
-            .iter()
-            .map(|entry| {
-                let position = self.position[leaf.unknowns[entry.slot]];
-                (entry.local, position, entry.coefficient)
-            })
-            .collect();
-        for &(j, column, b) in &places {
-            for &(i, row, a) in &places {
-                front[(row, column)] += a * b * local[(i, j)];
-            }
+    fn place<'b>(&mut self, order: impl Iterator<Item = &'b usize>) {
+        for (position, &unknown) in order.enumerate() {
+            self.position[unknown] = position;
         }
     }
 
     fn add_child(&self, rim: &[usize], schur: &Matrix, front: &mut Matrix) {
         let places: Vec<usize> = rim.iter().map(|&unknown| self.position[unknown]).collect();
         for (j, &column) in places.iter().enumerate() {
-            for (i, &row) in places.iter().enumerate() {
-                front[(row, column)] += schur[(i, j)];
+            let source = schur.col_as_slice(j);
+            let target = front.col_as_slice_mut(column);
+            for (&row, value) in places.iter().zip(source) {
+                target[row] += value;
             }
         }
     }

@@ -188,8 +188,9 @@ impl Solver {
     ) -> Result<(), SolverError> {
         for band in plan::bands(windows) {
             let mut meshes = vec![self.discretise(band.k, 0)?];
+            let mut lower = None;
             for chunk in band.windows.chunks(rayon::current_num_threads().max(1)) {
-                let mut results = self.chunk(&meshes[0], chunk);
+                let mut results = self.chunk(&meshes[0], chunk, &mut lower);
                 // Each window by itself: its levels must not depend on which others are computed beside or before it.
                 for attempt in 1..Discretisation::ATTEMPTS {
                     let missed: Vec<usize> = (0..results.len())
@@ -201,9 +202,14 @@ impl Solver {
                     if meshes.len() == attempt {
                         meshes.push(self.discretise(band.k, attempt)?);
                     }
-                    let again: Vec<Window> = missed.iter().map(|&index| chunk[index]).collect();
-                    for (index, result) in missed.iter().zip(self.chunk(&meshes[attempt], &again)) {
-                        results[*index] = result;
+                    let again: Vec<WindowLevels> = missed
+                        .par_iter()
+                        .flat_map(|&index| {
+                            self.chunk(&meshes[attempt], &chunk[index..=index], &mut None)
+                        })
+                        .collect();
+                    for (index, result) in missed.into_iter().zip(again) {
+                        results[index] = result;
                     }
                 }
                 for result in results {
@@ -227,17 +233,56 @@ impl Solver {
         )?)
     }
 
-    fn chunk(&self, grid: &Discretisation, windows: &[Window]) -> Vec<WindowLevels> {
+    /// Levels of neighbouring windows; `lower` are the counts at the lower end of the first if they are known, and become
+    /// those at the upper end of the last.
+    fn chunk(
+        &self,
+        grid: &Discretisation,
+        windows: &[Window],
+        lower: &mut Option<Vec<usize>>,
+    ) -> Vec<WindowLevels> {
+        let found = self.found(grid, windows, lower);
         windows
-            .par_iter()
-            .map(|window| {
-                let found: Vec<Found> = (0..self.sectors.len())
-                    .into_par_iter()
-                    .map(|sector| grid.levels(sector, window.energies(), self.accuracy))
-                    .collect();
-                join::window(*window, &self.sectors, &found, self.constant)
-            })
+            .iter()
+            .zip(&found)
+            .map(|(window, found)| join::window(*window, &self.sectors, found, self.constant))
             .collect()
+    }
+
+    /// What is found in neighbouring windows, one entry per sector in each.
+    fn found(
+        &self,
+        grid: &Discretisation,
+        windows: &[Window],
+        lower: &mut Option<Vec<usize>>,
+    ) -> Vec<Vec<Found>> {
+        let sectors = self.sectors.len();
+        let mut ends: Vec<f64> = windows.iter().map(|window| window.energies()[0]).collect();
+        ends.extend(windows.last().map(|window| window.energies()[1]));
+        let known = lower.take().unwrap_or_default();
+        let counts: Vec<usize> = (0..ends.len() * sectors)
+            .into_par_iter()
+            .map(|index| match known.get(index) {
+                Some(&count) => count,
+                None => grid.count(index % sectors, ends[index / sectors]),
+            })
+            .collect();
+        *lower = Some(counts[windows.len() * sectors..].to_vec());
+        let mut found: Vec<Found> = (0..windows.len() * sectors)
+            .into_par_iter()
+            .map(|index| {
+                let (window, sector) = (index / sectors, index % sectors);
+                let counts = [counts[index], counts[index + sectors]];
+                grid.levels(sector, windows[window].energies(), counts, self.accuracy)
+            })
+            .collect();
+        let mut by_window = Vec::new();
+        while !found.is_empty() {
+            let rest = found.split_off(sectors);
+            by_window.push(found);
+            found = rest;
+        }
+        by_window
     }
 
     fn missed(&self, results: &[WindowLevels]) -> bool {

@@ -4,7 +4,7 @@ use super::Sector;
 
 /// Levels of the largest sector per window: fewer do not pay for the factorisation, more need too many vectors kept
 /// orthogonal.
-const LEVELS_PER_WINDOW: f64 = 60.0;
+const LEVELS_PER_WINDOW: f64 = 110.0;
 /// Ratio of the upper ends of neighbouring bands: a mesh is at most this much finer than a window needs.
 const BAND_RATIO: f64 = 1.3;
 
@@ -40,11 +40,15 @@ pub(super) struct Band<'a> {
 
 /// Cuts from..to into windows.
 pub(super) fn windows(sectors: &[Sector], from: f64, to: f64) -> Vec<Window> {
-    // In levels of the fields: copies are computed once.
+    // In levels of the fields: copies are computed once. Without the term in 1/k, which is infinite at k = 0.
     let count = |k: f64| {
         sectors
             .iter()
-            .map(|sector| sector.weyl.count(k, 0.0) / sector.fields.copies as f64)
+            .map(|sector| {
+                let weyl = &sector.weyl;
+                let count = (weyl.coefficient(2) * k + weyl.coefficient(1)) * k + weyl.constant();
+                count / sector.fields.copies as f64
+            })
             .fold(0.0, f64::max)
     };
     let total = (count(to) - count(from)).max(0.0);

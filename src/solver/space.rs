@@ -5,16 +5,18 @@ use super::elements::{ElementMatrices, Function, Reference, Selection};
 use super::fields::{Direction, Fields};
 use super::mesh::{Cell, Mesh, Side, Triangle, same_length};
 use rayon::prelude::*;
+use std::collections::BTreeMap;
+use std::ops::Range;
 
 /// Lowest polynomial degree, in the triangles next to a singular point.
 const LOWEST_DEGREE: usize = 3;
 
-/// One function of one element is `coefficient` times one unknown.
+/// A corner or edge function of an element holds `coefficient` times one unknown.
 #[derive(Clone, Copy, Debug)]
 pub(super) struct Entry {
     /// Row of the element's matrices.
     pub(super) local: usize,
-    /// Position in [`Leaf::unknowns`].
+    /// Position in [`Leaf::rim`].
     pub(super) slot: usize,
     pub(super) coefficient: f64,
 }
@@ -24,10 +26,12 @@ pub(super) struct Entry {
 pub(super) struct Leaf {
     pub(super) element: usize,
     pub(super) field: usize,
-    /// Numbers of the unknowns that it holds; those of its interior last.
-    pub(super) unknowns: Vec<usize>,
-    /// Is every entry alone in its row and column?
+    /// Numbers of the unknowns on its corners and edges.
+    pub(super) rim: Vec<usize>,
+    /// What its corner and edge functions are made of.
     pub(super) entries: Vec<Entry>,
+    /// Numbers of the unknowns inside, one for each interior function, in their order.
+    pub(super) interior: Range<usize>,
 }
 
 /// An element: its functions and matrices.
@@ -37,6 +41,10 @@ pub(super) struct Element {
     pub(super) triangle: usize,
     pub(super) selection: Selection,
     pub(super) matrices: ElementMatrices,
+    /// Number of corner and edge functions: they come first.
+    pub(super) rim: usize,
+    /// Elements of one kind have the same matrices but for rounding.
+    pub(super) kind: usize,
 }
 
 /// All unknowns of a mesh at one polynomial degree.
@@ -45,6 +53,8 @@ pub(super) struct Space {
     pub(super) reference: Reference,
     pub(super) elements: Vec<Element>,
     pub(super) leaves: Vec<Leaf>,
+    /// The first element of each kind.
+    pub(super) kinds: Vec<usize>,
     /// Number of unknowns.
     pub(super) size: usize,
 }
@@ -89,7 +99,7 @@ impl Space {
         let mut size = 0;
         let corners = corner_places(mesh, cell, fields, &mut size);
         let edges = edge_places(mesh, cell, fields, &edge_degree, &mut size);
-        let elements: Vec<Element> = mesh
+        let mut elements: Vec<Element> = mesh
             .triangles
             .par_iter()
             .enumerate()
@@ -99,13 +109,17 @@ impl Space {
                     triangle.edges.map(|edge| edge_degree[edge]),
                     degree_of(triangle, degree) + extra,
                 );
+                let matrices = ElementMatrices::new(mesh, triangle, &reference, &selection);
                 Element {
                     triangle: index,
-                    matrices: ElementMatrices::new(mesh, triangle, &reference, &selection),
+                    matrices,
+                    rim: reference.rim_functions(&selection),
                     selection,
+                    kind: 0,
                 }
             })
             .collect();
+        let kinds = sort_into_kinds(&mut elements);
         let mut leaves = Vec::new();
         for (index, element) in elements.iter().enumerate() {
             for field in 0..fields.count {
@@ -123,9 +137,36 @@ impl Space {
             reference,
             elements,
             leaves,
+            kinds,
             size,
         }
     }
+}
+
+/// Finds the straight elements that have the same shape and size: a lattice has many. Returns the first element of each kind.
+fn sort_into_kinds(elements: &mut [Element]) -> Vec<usize> {
+    let mut known: BTreeMap<Vec<i64>, usize> = BTreeMap::new();
+    let mut kinds = Vec::new();
+    for (index, element) in elements.iter_mut().enumerate() {
+        let new = kinds.len();
+        element.kind = match element.matrices.fingerprint() {
+            None => new,
+            Some(mut key) => {
+                key.extend(
+                    element
+                        .selection
+                        .columns
+                        .iter()
+                        .map(|&column| column as i64),
+                );
+                *known.entry(key).or_insert(new)
+            }
+        };
+        if element.kind == new {
+            kinds.push(index);
+        }
+    }
+    kinds
 }
 
 fn leaf(
@@ -139,10 +180,12 @@ fn leaf(
     let mut leaf = Leaf {
         element: index,
         field,
-        unknowns: Vec::new(),
+        rim: Vec::new(),
         entries: Vec::new(),
+        interior: *size..*size + element.selection.len() - element.rim,
     };
-    for (local, &column) in element.selection.columns.iter().enumerate() {
+    *size = leaf.interior.end;
+    for (local, &column) in element.selection.columns[..element.rim].iter().enumerate() {
         match reference.functions[column] {
             Function::Corner(corner) => {
                 leaf.shared(local, &corners[triangle.corners[corner]], 0, 1.0);
@@ -155,36 +198,56 @@ fn leaf(
                 };
                 leaf.shared(local, &edges[triangle.edges[edge]], order, sign);
             }
-            Function::Interior { .. } => {
-                leaf.add(local, *size, 1.0);
-                *size += 1;
-            }
+            Function::Interior { .. } => {}
         }
     }
     leaf
 }
 
 impl Leaf {
-    /// Coefficients of the element's functions: one row per vector, one column per function.
+    /// Coefficients of the element's functions, `functions` of them: one row per vector, one column per function.
     pub(super) fn restrict(&self, block: &Matrix, functions: usize) -> Matrix {
         let mut local = Matrix::zeros(block.nrows(), functions);
+        self.restrict_rim(block, &mut local);
+        let rim = functions - self.interior.len();
+        local
+            .subcols_mut(rim, self.interior.len())
+            .copy_from(block.subcols(self.interior.start, self.interior.len()));
+        local
+    }
+
+    /// Writes the coefficients of the corner and edge functions into the first columns.
+    pub(super) fn restrict_rim(&self, block: &Matrix, local: &mut Matrix) {
         for entry in &self.entries {
-            let source = block.col(self.unknowns[entry.slot]);
-            let target = local.col_mut(entry.local);
-            for (t, s) in target.iter_mut().zip(source.iter()) {
+            let source = block.col_as_slice(self.rim[entry.slot]);
+            let target = local.col_as_slice_mut(entry.local);
+            for (t, s) in target.iter_mut().zip(source) {
                 *t += entry.coefficient * s;
             }
         }
-        local
     }
 
     /// Adds what belongs to the element's functions to the unknowns.
     pub(super) fn accumulate(&self, local: &Matrix, block: &mut Matrix) {
+        self.accumulate_rim(local, 1.0, block);
+        let rim = local.ncols() - self.interior.len();
+        for (column, unknown) in self.interior.clone().enumerate() {
+            let source = local.col_as_slice(rim + column);
+            let target = block.col_as_slice_mut(unknown);
+            for (t, s) in target.iter_mut().zip(source) {
+                *t += s;
+            }
+        }
+    }
+
+    /// Adds `factor` times what belongs to the corner and edge functions to their unknowns.
+    pub(super) fn accumulate_rim(&self, local: &Matrix, factor: f64, block: &mut Matrix) {
         for entry in &self.entries {
-            let source = local.col(entry.local);
-            let target = block.col_mut(self.unknowns[entry.slot]);
-            for (t, s) in target.iter_mut().zip(source.iter()) {
-                *t += entry.coefficient * s;
+            let weight = factor * entry.coefficient;
+            let source = local.col_as_slice(entry.local);
+            let target = block.col_as_slice_mut(self.rim[entry.slot]);
+            for (t, s) in target.iter_mut().zip(source) {
+                *t += weight * s;
             }
         }
     }
@@ -204,11 +267,11 @@ impl Leaf {
     }
 
     fn add(&mut self, local: usize, unknown: usize, coefficient: f64) {
-        let slot = match self.unknowns.iter().position(|&other| other == unknown) {
+        let slot = match self.rim.iter().position(|&other| other == unknown) {
             Some(slot) => slot,
             None => {
-                self.unknowns.push(unknown);
-                self.unknowns.len() - 1
+                self.rim.push(unknown);
+                self.rim.len() - 1
             }
         };
         self.entries.push(Entry {
@@ -241,12 +304,12 @@ fn corner_places(mesh: &Mesh, cell: &Cell, fields: &Fields, size: &mut usize) ->
     let is_image = |corner: usize| {
         sides[corner].contains(&Side::Cut(1)) && !sides[corner].contains(&Side::Cut(0))
     };
-    for corner in 0..mesh.corners.len() {
+    for (corner, sides) in sides.iter().enumerate() {
         let at_center = same_length(radius(corner), 0.0, cell.size);
         let directions = if is_image(corner) {
             Vec::new()
         } else {
-            fields.free(&sides[corner], at_center)
+            fields.free(sides, at_center)
         };
         let first = *size;
         *size += directions.len();

@@ -233,10 +233,7 @@ impl Solver {
         let mut attempt = 0;
         loop {
             let mesh = self.discretise(window.to, attempt)?;
-            let found: Vec<_> = (0..self.sectors.len())
-                .into_par_iter()
-                .map(|sector| mesh.levels(sector, window.energies(), self.accuracy))
-                .collect();
+            let found = self.found(&mesh, &[window], &mut None).remove(0);
             let levels = super::join::window(window, &self.sectors, &found, self.constant);
             if attempt + 1 == Discretisation::ATTEMPTS || !self.missed(&[levels]) {
                 return Ok((mesh, found));

@@ -89,6 +89,21 @@ impl ElementMatrices {
         }
     }
 
+    /// Numbers that are the same for straight elements of the same shape and size, but for rounding; none for curved ones.
+    pub(in crate::solver) fn fingerprint(&self) -> Option<Vec<i64>> {
+        /// Relative size of a difference that is taken for rounding: far below the error of a level.
+        const STEP: f64 = 1e-13;
+        let Self::Straight { metric, jacobian } = self else {
+            return None;
+        };
+        let scale = jacobian.log2().floor().exp2();
+        let rounded = |x: f64| (x / STEP).round() as i64;
+        let mut key: Vec<i64> = metric.iter().map(|&entry| rounded(entry)).collect();
+        key.push(rounded(jacobian / scale));
+        key.push(scale.log2() as i64);
+        Some(key)
+    }
+
     /// a stiffness + b mass for the selected functions.
     pub(in crate::solver) fn combine(
         &self,

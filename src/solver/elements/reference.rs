@@ -3,6 +3,7 @@
 use super::super::dense::{self, Into, Matrix};
 use super::basis::{Function, evaluate, functions};
 use super::jacobi::gauss;
+use super::matrices::Selection;
 
 /// Points per direction beyond the degree: exact for straight triangles, and curved ones add a smooth factor.
 const EXTRA_POINTS: usize = 6;
@@ -64,6 +65,13 @@ impl Reference {
             dx,
             dy,
         }
+    }
+
+    /// Number of corner and edge functions in a selection, in which they come first.
+    pub(in crate::solver) fn rim_functions(&self, selection: &Selection) -> usize {
+        let on_rim =
+            |column: &&usize| !matches!(self.functions[**column], Function::Interior { .. });
+        selection.columns.iter().take_while(on_rim).count()
     }
 
     /// Values and derivatives of all functions (scaled) at any point of the triangle: value, x derivative, y derivative.
