@@ -5,7 +5,7 @@
 //! ```text
 //! system file -> System -> orbits and families -> terms -> sum at the wanted k -> density, staircase
 //!                     \-> baseline (Weyl) ---------------------------------------/
-//!                     \-> levels (a list that was given) ------------------------/
+//!                     \-> levels (computed directly, or a list) -----------------/
 //! ```
 //!
 //! * [`system`] reads and validates a system file.
@@ -14,6 +14,7 @@
 //! * [`baseline`] counts levels smoothly (Weyl).
 //! * [`trace`] smooths and sums the terms, and estimates how far the staircase strays from its smooth part.
 //! * [`levels`] reads level lists and smooths their staircase.
+//! * [`solver`] computes levels and waves directly, and counts them.
 //! * [`report`] draws pictures.
 
 pub mod baseline;

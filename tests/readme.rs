@@ -9,6 +9,8 @@ use std::process::Command;
 const README: &str = include_str!("../README.md");
 /// Commands that are known and not run here: the second is what runs this test.
 const NOT_RUN: [&str; 1] = ["cargo test"];
+/// Options that name a folder that files are written into; a call has one of them at most.
+const FOLDERS: [&str; 2] = ["--out", "--vectors"];
 /// How a built binary is called in the README.
 const CALLS: [&str; 2] = ["cargo run --release -- ", "orbitsum "];
 
@@ -84,13 +86,13 @@ fn same_line(quoted: &str, printed: &str) -> bool {
     quoted.len() == printed.len() && quoted.iter().zip(&printed).all(|(a, b)| same_word(a, b))
 }
 
-/// Runs a call in the root of the repository, with the folder of `--out` replaced by a temporary one.
+/// Runs a call in the root of the repository, with the folder that it writes into replaced by a temporary one.
 fn run(arguments: &[&str], folder: &Path) -> String {
     let folder = folder.to_str().expect("a folder with a name in UTF-8");
     let mut arguments: Vec<String> = arguments.iter().map(ToString::to_string).collect();
     let named = arguments
         .iter()
-        .position(|argument| argument == "--out")
+        .position(|argument| FOLDERS.contains(&argument.as_str()))
         .map(|index| std::mem::replace(&mut arguments[index + 1], folder.to_owned()));
     let output = Command::new(env!("CARGO_BIN_EXE_orbitsum"))
         .args(&arguments)

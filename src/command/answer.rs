@@ -7,6 +7,7 @@ use super::options::Options;
 use super::output;
 use super::table::Table;
 use serde_json::{Map, Value};
+use std::path::PathBuf;
 
 /// The result of a command.
 #[derive(Debug)]
@@ -25,11 +26,20 @@ pub(super) struct Answer {
     pub(super) notes: Vec<Note>,
     /// Pictures: name of the file and content.
     pub(super) pictures: Vec<(String, String)>,
+    /// A file that is of no use any more once the files of this answer are written.
+    pub(super) obsolete: Option<PathBuf>,
+    /// What is wrong with the result, where something is: it is delivered all the same.
+    pub(super) failure: Option<CommandError>,
 }
 
 impl Answer {
-    /// Writes files, then standard output.
-    pub(super) fn deliver(&self, options: &Options) -> Result<(), CommandError> {
+    /// Writes files, then standard output, then reports what is wrong.
+    pub(super) fn deliver(self, options: &Options) -> Result<(), CommandError> {
+        self.write(options)?;
+        self.failure.map_or(Ok(()), Err)
+    }
+
+    fn write(&self, options: &Options) -> Result<(), CommandError> {
         let mut written = Vec::new();
         if let Some(folder) = &options.folder {
             written.push(folder.write(&format!("{}.csv", self.name), &self.table.csv())?);
@@ -37,6 +47,10 @@ impl Answer {
             for (name, content) in &self.pictures {
                 written.push(folder.write(name, content)?);
             }
+        }
+        if let Some(path) = &self.obsolete {
+            // One that stays is of no harm: it is found to be complete the next time.
+            let _ = std::fs::remove_file(path);
         }
         match options.format {
             Format::Table => {

@@ -30,6 +30,8 @@ pub(crate) enum Command {
     Orbits(Orbits),
     /// Predict density and staircase of levels, and compare them with a list
     Density(Density),
+    /// Compute levels directly, with an error for each and a count of all
+    Levels(Levels),
 }
 
 /// Options of every command.
@@ -141,6 +143,39 @@ pub(crate) struct Density {
     /// Levels to compare with: one a line, or csv with a column k, energy or frequency
     #[arg(long, value_name = "FILE")]
     pub(crate) levels: Option<PathBuf>,
+    /// Compute the levels to compare with, as `levels` does
+    #[arg(long, conflicts_with = "levels")]
+    pub(crate) direct: bool,
     #[command(flatten)]
     pub(crate) limits: OrbitLimits,
+}
+
+#[derive(Debug, Args)]
+pub(crate) struct Levels {
+    /// System file
+    #[arg(value_name = "SYSTEM.toml")]
+    pub(crate) system: PathBuf,
+    /// Window in k, for files whose levels are wave numbers
+    #[arg(long, value_name = "FROM:TO", allow_hyphen_values = true)]
+    pub(crate) k: Option<String>,
+    /// Window in energy, for files whose levels are energies
+    #[arg(long, value_name = "FROM:TO", allow_hyphen_values = true)]
+    pub(crate) energy: Option<String>,
+    /// Window in frequency, for files whose levels are frequencies
+    #[arg(long, value_name = "FROM:TO", allow_hyphen_values = true)]
+    pub(crate) frequency: Option<String>,
+    /// Relative accuracy of k that is aimed at, from 1e-13 to 1e-3; coarser is faster [default: 1e-11]
+    #[arg(long, value_name = "A", allow_hyphen_values = true)]
+    pub(crate) accuracy: Option<String>,
+    /// Write the waves into this folder: values on a grid, on the walls, and a picture of each
+    #[arg(long, value_name = "DIR")]
+    pub(crate) vectors: Option<PathBuf>,
+    /// Numbers of the levels whose waves are written, such as 12,15-18 [default: all in the window]
+    #[arg(
+        long,
+        value_name = "LIST",
+        allow_hyphen_values = true,
+        requires = "vectors"
+    )]
+    pub(crate) only: Option<String>,
 }

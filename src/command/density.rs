@@ -1,4 +1,4 @@
-//! `density`: density and staircase from the orbits, beside those of a list of levels.
+//! `density`: density and staircase from the orbits, beside those of levels from a list or computed directly.
 
 mod list;
 mod present;
@@ -37,6 +37,10 @@ pub(super) fn run(typed: &Density, options: &Options) -> Result<Answer, CommandE
     let last = given.as_ref().map(GivenLevels::last);
     let plan = limits::plan(&subject, &wishes, last)?;
     let grid = grid(&subject, &plan)?;
+    let given = match given {
+        None if typed.direct => Some(GivenLevels::compute(&subject, &plan, options)?),
+        given => given,
+    };
     let catalogue = orbits::find(&subject, plan.limits, options);
     let terms = terms(
         &catalogue,
@@ -156,7 +160,7 @@ impl Comparison {
         let window = ResidualWindow {
             from: curves.k[0],
             to: curves.k[curves.k.len() - 1],
-            list_end: given.k.last().copied().unwrap_or(0.0),
+            list_end: given.end,
             smoothing: plan.width,
         };
         Self {

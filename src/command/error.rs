@@ -1,6 +1,7 @@
 //! Everything that ends a command early, with its message and exit code.
 
 use orbitsum::levels::ListError;
+use orbitsum::solver::SolverError;
 use orbitsum::system::SystemError;
 use std::path::PathBuf;
 use std::process::ExitCode;
@@ -47,6 +48,37 @@ pub(crate) enum CommandError {
         least: usize,
         most: usize,
     },
+    /// An option's value lies outside its range.
+    #[error("--{option}: {value:e} is out of range: give a number from {least:e} to {most:e}")]
+    OutOfRange {
+        option: &'static str,
+        value: f64,
+        least: f64,
+        most: f64,
+    },
+    /// An option's value is no list of whole numbers.
+    #[error(
+        "--{option}: `{text}` is no number of a level nor a range of them: give numbers from 1 on such as 12,15-18"
+    )]
+    NotNumbers { option: &'static str, text: String },
+    /// A list of numbers that asks for too much.
+    #[error("--{option}: more than {most} levels are asked for: name at most {most}")]
+    TooManyNumbers { option: &'static str, most: usize },
+    /// More waves than anybody wants files of.
+    #[error(
+        "--vectors: the window holds about {expected:.0} levels, more than the {most} that files are written for: choose a \
+         narrower window, or name levels with --only"
+    )]
+    TooManyWaves { expected: f64, most: usize },
+    /// A level that is not in the window.
+    #[error(
+        "--only: level {number} is not in the window, which holds the levels {first} to {last}"
+    )]
+    NoSuchLevel {
+        number: usize,
+        first: usize,
+        last: usize,
+    },
     /// A setting is not of the form NAME=VALUE.
     #[error("--set: `{text}` is not of the form NAME=VALUE")]
     Setting { text: String },
@@ -54,8 +86,16 @@ pub(crate) enum CommandError {
     #[error("--{option}: `{text}` is not of the form FROM:TO")]
     WindowForm { option: &'static str, text: String },
     /// A window begins where there are no levels.
-    #[error("--{option}: the window begins at {from}: it must begin above 0")]
-    WindowBegin { option: &'static str, from: f64 },
+    #[error("--{option}: the window begins at {from}: it must begin {least}")]
+    WindowBegin {
+        option: &'static str,
+        from: f64,
+        /// Such as `above 0`.
+        least: &'static str,
+    },
+    /// A command that needs a window got none.
+    #[error("no window is given: ask for one with --{expected} FROM:TO")]
+    NoWindow { expected: &'static str },
     /// A window ends before it begins.
     #[error("--{option}: the window {from}:{to} is reversed: the smaller value comes first")]
     WindowReversed {
@@ -109,8 +149,9 @@ pub(crate) enum CommandError {
     #[error("--class: {reason}")]
     ClassUnavailable { reason: &'static str },
     /// The output folder cannot be made or written.
-    #[error("--out: cannot write into `{}`: {source}", path.display())]
+    #[error("--{option}: cannot write into `{}`: {source}", path.display())]
     Output {
+        option: &'static str,
         path: PathBuf,
         source: std::io::Error,
     },
@@ -119,6 +160,20 @@ pub(crate) enum CommandError {
     Write {
         path: PathBuf,
         source: std::io::Error,
+    },
+    /// The levels cannot be computed.
+    #[error(transparent)]
+    Solver(#[from] SolverError),
+    /// Fewer or more levels were found than counted.
+    #[error(
+        "the list is not complete: {found} levels were found and {counted} counted; they disagree in {windows}; try another \
+         --accuracy, or one --class at a time"
+    )]
+    Incomplete {
+        found: usize,
+        counted: usize,
+        /// The windows in words.
+        windows: String,
     },
     /// Standard output does not take the result.
     #[error("cannot write to standard output: {0}")]
@@ -141,7 +196,11 @@ impl CommandError {
     /// 2 where the input or the call is wrong, 1 where the computation failed.
     pub(crate) fn exit_code(&self) -> ExitCode {
         ExitCode::from(match self {
-            Self::Write { .. } | Self::StandardOutput(_) | Self::Threads { .. } => FAILED,
+            Self::Write { .. }
+            | Self::StandardOutput(_)
+            | Self::Threads { .. }
+            | Self::Incomplete { .. }
+            | Self::Solver(SolverError::Mesh(_)) => FAILED,
             _ => WRONG_INPUT,
         })
     }

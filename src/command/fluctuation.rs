@@ -6,7 +6,7 @@ use super::subject::Subject;
 use orbitsum::baseline::weyl;
 use orbitsum::billiard::{VertexKind, Wall};
 use orbitsum::orbit::{ClassWeights, Limits, terms};
-use orbitsum::trace::{ClassDensity, Statistics, Term, expected_fluctuation};
+use orbitsum::trace::{ClassDensity, Statistics, Term, expected_fluctuation, mean_fluctuation};
 use std::f64::consts::PI;
 
 /// Longest orbits that are looked for, in mean chords of the shape: enough to see its families, and found at once.
@@ -54,10 +54,36 @@ impl<'a> Fluctuation<'a> {
 
     /// Root mean square of the staircase about the smooth count near k, in levels.
     pub(super) fn at(&self, k: f64) -> Option<f64> {
+        self.is_known().then(|| {
+            expected_fluctuation(
+                &self.terms,
+                k,
+                self.max_length,
+                &self.classes(k),
+                self.statistics,
+            )
+        })
+    }
+
+    /// Root mean square, in levels, of the mean over from..to (in k) of the staircase less the smooth count.
+    pub(super) fn of_mean(&self, from: f64, to: f64) -> Option<f64> {
+        self.is_known().then(|| {
+            mean_fluctuation(
+                &self.terms,
+                [from, to],
+                self.max_length,
+                &self.classes(0.5 * (from + to)),
+                self.statistics,
+            )
+        })
+    }
+
+    /// The classes among the levels, with their densities near k.
+    fn classes(&self, k: f64) -> Vec<ClassDensity> {
         let subject = self.subject;
         let density =
             |class| weyl(&subject.system.domain, &subject.symmetry, Some(class)).density(k, 0.0);
-        let classes: Vec<ClassDensity> = subject
+        subject
             .symmetry
             .irreps
             .iter()
@@ -71,10 +97,7 @@ impl<'a> Fluctuation<'a> {
                 density: density(irrep),
                 dimension: irrep.dimension,
             })
-            .collect();
-        self.is_known().then(|| {
-            expected_fluctuation(&self.terms, k, self.max_length, &classes, self.statistics)
-        })
+            .collect()
     }
 
     /// Where the estimate comes from, for people.

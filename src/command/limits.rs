@@ -5,7 +5,8 @@ use super::error::CommandError;
 use super::note::Note;
 use super::subject::Subject;
 use super::text::significant;
-use super::value::{self, Window};
+use super::value;
+use super::window::{self, Begin, Window};
 use orbitsum::baseline::{Weyl, weyl};
 use orbitsum::billiard::Wall;
 use orbitsum::orbit::Limits;
@@ -67,7 +68,11 @@ impl Wishes {
                 .transpose()
         };
         Ok(Self {
-            window: window(typed, subject)?,
+            window: window::asked(
+                [&typed.k, &typed.energy, &typed.frequency],
+                subject,
+                Begin::AboveZero,
+            )?,
             smoothing: positive("smoothing", &typed.smoothing)?,
             width: positive("smoothing-width", &typed.smoothing_width)?,
             ..Self::of_limits(&typed.limits)?
@@ -92,43 +97,6 @@ impl Wishes {
     }
 }
 
-/// The window in the variable of the file.
-fn window(typed: &Density, subject: &Subject) -> Result<Option<Window>, CommandError> {
-    let units = &subject.system.units;
-    let windows = [
-        ("k", &typed.k),
-        ("energy", &typed.energy),
-        ("frequency", &typed.frequency),
-    ];
-    let mut given = windows
-        .iter()
-        .filter_map(|(option, text)| text.as_deref().map(|text| (*option, text)));
-    let Some((option, text)) = given.next() else {
-        return Ok(None);
-    };
-    if let Some((second, _)) = given.next() {
-        return Err(CommandError::TwoWindows {
-            first: option,
-            second,
-        });
-    }
-    let expected = units.window_option();
-    if option != expected {
-        let label = units.level_label();
-        let unit = if label.is_empty() {
-            label
-        } else {
-            format!(" in {label}")
-        };
-        return Err(CommandError::WindowUnit {
-            given: option,
-            expected,
-            unit,
-        });
-    }
-    value::window(option, text).map(Some)
-}
-
 /// Chooses what was not asked for. `list_end` is the last level of a list (file's unit), if there is one.
 pub(super) fn plan(
     subject: &Subject,
@@ -145,7 +113,7 @@ pub(super) fn plan(
     if wishes.window.is_some() {
         choices.push((
             "window".to_owned(),
-            format!("{} (as asked)", range(subject, window)),
+            format!("{} (as asked)", window.words(subject)),
         ));
     }
     let units = &subject.system.units;
@@ -331,7 +299,7 @@ fn default_window(subject: &Subject, weyl: &Weyl, list_end: Option<f64>) -> (Win
             let window = Window { from, to };
             let why = format!(
                 "{} (from about the {low:.0}th level to five smoothing widths below the end of the list)",
-                range(subject, window)
+                window.words(subject)
             );
             return (window, why);
         }
@@ -342,18 +310,9 @@ fn default_window(subject: &Subject, weyl: &Weyl, list_end: Option<f64>) -> (Win
     };
     let why = format!(
         "{} (from about the {low:.0}th to the {high:.0}th level by the smooth count)",
-        range(subject, window)
+        window.words(subject)
     );
     (window, why)
-}
-
-fn range(subject: &Subject, window: Window) -> String {
-    format!(
-        "{} from {} to {}",
-        subject.system.units.column(),
-        significant(window.from, 6),
-        subject.level(window.to, 6)
-    )
 }
 
 /// To a few digits, for numbers that are chosen here.

@@ -1,6 +1,7 @@
 //! The commands: read, call the library, write.
 //!
 //! * [`arguments`] holds what was typed; [`options`] and [`value`] turn it into validated options.
+//! * [`direct`] computes levels, window by window, with a [`journal`] that an interrupted computation is taken up from.
 //! * [`subject`] is the system that a command is about, with its symmetry and class.
 //! * one module per command makes an [`answer`], which is written to standard output and to files.
 
@@ -8,8 +9,11 @@ mod answer;
 mod arguments;
 mod completeness;
 mod density;
+mod direct;
 mod error;
 mod fluctuation;
+mod journal;
+mod levels;
 mod limits;
 mod note;
 mod options;
@@ -22,6 +26,7 @@ mod table;
 mod text;
 mod value;
 mod weyl;
+mod window;
 
 pub(crate) use arguments::Arguments;
 pub(crate) use error::CommandError;
@@ -37,6 +42,7 @@ pub(crate) fn run(arguments: Arguments) -> Result<(), CommandError> {
         Command::Weyl(typed) => weyl::run(typed, &options),
         Command::Orbits(typed) => orbits::run(typed, &options),
         Command::Density(typed) => density::run(typed, &options),
+        Command::Levels(typed) => levels::run(typed, &options),
     }?;
     answer.deliver(&options)
 }

@@ -27,8 +27,25 @@ pub(super) enum Note {
     NotFlat(NotFlat),
     /// The residual is as large as a whole level somewhere.
     LargeResidual { from: String, size: f64 },
+    /// Neighbouring levels are closer than their errors.
+    Unresolved { pairs: usize },
+    /// Levels agree within their errors beyond what symmetry forces.
+    Degenerate {
+        levels: usize,
+        first: String,
+        error: String,
+    },
+    /// The mean of the staircase is off the smooth count.
+    OffSmoothCount { mean: f64, expected: f64 },
+    /// The directly computed levels are not all that were counted.
+    NotComplete { found: usize, counted: usize },
     /// Only the first rows are shown.
-    MoreRows { shown: usize, all: usize },
+    MoreRows {
+        /// Such as `shortest`.
+        which: &'static str,
+        shown: usize,
+        all: usize,
+    },
     /// The smoothing is too narrow for the known orbits.
     TooNarrow { product: f64, enough: f64 },
     /// The smoothing is wider than the window.
@@ -70,6 +87,8 @@ impl Note {
                 | Self::TooNarrow { .. }
                 | Self::WiderThanWindow
                 | Self::NotSettled { .. }
+                | Self::OffSmoothCount { .. }
+                | Self::NotComplete { .. }
         ) || matches!(self, Self::LeftOut { size, .. } if *size >= UNUSABLE)
     }
 
@@ -115,9 +134,37 @@ impl fmt::Display for Note {
                  far larger belong to a list of another shape, class or unit",
                 significant(*size, 2)
             ),
-            Self::MoreRows { shown, all } => write!(
+            Self::MoreRows { which, shown, all } => write!(
                 f,
-                "the table shows the {shown} shortest of {all}; --format csv or --out gives all"
+                "the table shows the {shown} {which} of {all}; --format csv or --out gives all"
+            ),
+            Self::Unresolved { pairs } => write!(
+                f,
+                "{} of neighbouring levels closer than their errors: their order and distance are not known; a smaller \
+                 --accuracy may tell them apart",
+                counted(*pairs, "pair", "pairs")
+            ),
+            Self::Degenerate {
+                levels,
+                first,
+                error,
+            } => write!(
+                f,
+                "{} (the first one {first}) stand for several waves that symmetry does not force to agree, but whose levels \
+                 do within errors of {error}: degenerate, or closer than the error",
+                counted(*levels, "row", "rows")
+            ),
+            Self::OffSmoothCount { mean, expected } => write!(
+                f,
+                "the staircase is off the smooth count by {} levels in the mean, where {} is expected: levels below the \
+                 window or in it may be counted wrongly, or the smooth count is rough there; compare with another \
+                 --accuracy or a wider window",
+                significant(*mean, 2),
+                significant(*expected, 2)
+            ),
+            Self::NotComplete { found, counted } => write!(
+                f,
+                "of {counted} levels that were counted {found} were found: the comparison rests on an incomplete list"
             ),
             Self::NotFlat(warning) => warning.fmt(f),
             Self::TooNarrow { product, enough } => write!(

@@ -37,7 +37,11 @@ impl Options {
         Ok(Self {
             settings,
             class: typed.class.clone(),
-            folder: typed.out.as_deref().map(Folder::prepare).transpose()?,
+            folder: typed
+                .out
+                .as_deref()
+                .map(|path| Folder::prepare("out", path))
+                .transpose()?,
             format: typed.format,
             quiet: typed.quiet,
         })

@@ -68,6 +68,7 @@ fn answer(subject: &Subject, plan: &Plan, catalogue: &Catalogue) -> Answer {
     ));
     if table.rows.len() > SHOWN_ROWS {
         notes.push(Note::MoreRows {
+            which: "shortest",
             shown: SHOWN_ROWS,
             all: table.rows.len(),
         });
@@ -86,6 +87,8 @@ fn answer(subject: &Subject, plan: &Plan, catalogue: &Catalogue) -> Answer {
         metadata,
         notes,
         pictures: vec![("orbits.svg".into(), picture(subject, &entries))],
+        obsolete: None,
+        failure: None,
     }
 }
 

@@ -13,8 +13,11 @@ pub(super) struct Folder {
 
 impl Folder {
     /// Makes the folder if it is not there, and makes sure that files can be written, before anything is computed.
-    pub(super) fn prepare(path: &Path) -> Result<Self, CommandError> {
+    ///
+    /// `option` is the one that named the folder.
+    pub(super) fn prepare(option: &'static str, path: &Path) -> Result<Self, CommandError> {
         let wrong = |source| CommandError::Output {
+            option,
             path: path.to_owned(),
             source,
         };
@@ -25,9 +28,14 @@ impl Folder {
         })
     }
 
+    /// Path of a file in the folder.
+    pub(super) fn file(&self, name: &str) -> PathBuf {
+        self.path.join(name)
+    }
+
     /// Writes a file: under a temporary name first, so that nobody ever sees half of it.
     pub(super) fn write(&self, name: &str, content: &str) -> Result<PathBuf, CommandError> {
-        let target = self.path.join(name);
+        let target = self.file(name);
         let written = || -> io::Result<()> {
             let mut file = temporary(&self.path)?;
             file.write_all(content.as_bytes())?;

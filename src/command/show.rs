@@ -53,6 +53,8 @@ pub(super) fn run(typed: &Show, options: &Options) -> Result<Answer, CommandErro
         metadata,
         notes: notes(&subject),
         pictures: vec![("shape.svg".into(), picture)],
+        obsolete: None,
+        failure: None,
     })
 }
 

@@ -1,6 +1,7 @@
 //! Values of options, from text to numbers.
 
 use super::error::CommandError;
+use std::collections::BTreeSet;
 
 /// A finite number.
 pub(super) fn number(option: &'static str, text: &str) -> Result<f64, CommandError> {
@@ -63,32 +64,54 @@ pub(super) fn setting(text: &str) -> Result<(String, String), CommandError> {
     }
 }
 
-/// A window in the unit of the file's levels: 0 < from < to.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub(super) struct Window {
-    /// Lower end.
-    pub(super) from: f64,
-    /// Upper end.
-    pub(super) to: f64,
+/// Whole numbers from 1 on and ranges of them, `12,15-18`: ascending, each once.
+pub(super) fn numbers(
+    option: &'static str,
+    text: &str,
+    most: usize,
+) -> Result<Vec<usize>, CommandError> {
+    let wrong = |part: &str| CommandError::NotNumbers {
+        option,
+        text: part.to_owned(),
+    };
+    let one = |text: &str, part: &str| -> Result<usize, CommandError> {
+        match text.trim().parse() {
+            Ok(number) if number > 0 => Ok(number),
+            _ => Err(wrong(part)),
+        }
+    };
+    let mut numbers = BTreeSet::new();
+    for part in text.split(',') {
+        let (first, last) = part.split_once('-').unwrap_or((part, part));
+        let (first, last) = (one(first, part)?, one(last, part)?);
+        if first > last {
+            return Err(wrong(part));
+        }
+        if last - first >= most {
+            return Err(CommandError::TooManyNumbers { option, most });
+        }
+        numbers.extend(first..=last);
+    }
+    if numbers.len() > most {
+        return Err(CommandError::TooManyNumbers { option, most });
+    }
+    Ok(numbers.into_iter().collect())
 }
 
-/// FROM:TO.
-pub(super) fn window(option: &'static str, text: &str) -> Result<Window, CommandError> {
-    let (from, to) = text
-        .split_once(':')
-        .ok_or_else(|| CommandError::WindowForm {
+/// A number from `least` to `most`.
+pub(super) fn within(
+    option: &'static str,
+    text: &str,
+    [least, most]: [f64; 2],
+) -> Result<f64, CommandError> {
+    match number(option, text)? {
+        value if (least..=most).contains(&value) => Ok(value),
+        value => Err(CommandError::OutOfRange {
             option,
-            text: text.to_owned(),
-        })?;
-    let (from, to) = (number(option, from)?, number(option, to)?);
-    if from <= 0.0 {
-        Err(CommandError::WindowBegin { option, from })
-    } else if from > to {
-        Err(CommandError::WindowReversed { option, from, to })
-    } else if from == to {
-        Err(CommandError::WindowEmpty { option, at: from })
-    } else {
-        Ok(Window { from, to })
+            value,
+            least,
+            most,
+        }),
     }
 }
 
@@ -97,20 +120,23 @@ mod tests {
     use super::*;
 
     #[test]
-    fn a_window_is_two_numbers_in_order() {
-        let read = window("k", "8:42.5").expect("a window");
-        assert_eq!(
-            read,
-            Window {
-                from: 8.0,
-                to: 42.5
-            }
-        );
+    fn lists_of_numbers_have_ranges() {
+        let read = |text| numbers("only", text, 10).ok();
+        assert_eq!(read("12, 15-18"), Some(vec![12, 15, 16, 17, 18]));
+        assert_eq!(read("3,1-3,2"), Some(vec![1, 2, 3]));
         for wrong in [
-            "", ":", "8", "8:", ":42", "8:8", "9:8", "-1:8", "0:8", "nan:8", "8:inf", "8:9:10",
-            "a:b",
+            "", ",", "0", "1-", "-1", "5-3", "1.5", "a", "1-11", "1-6,7-12", "1-2-3",
         ] {
-            assert!(window("k", wrong).is_err(), "{wrong}");
+            assert_eq!(read(wrong), None, "{wrong}");
+        }
+    }
+
+    #[test]
+    fn ranges_hold_their_ends() {
+        let read = |text| within("accuracy", text, [1e-13, 1e-3]);
+        assert!(read("1e-3").is_ok() && read("1e-13").is_ok());
+        for wrong in ["0", "-1e-5", "2e-3", "9e-14", "nan", "x"] {
+            assert!(read(wrong).is_err(), "{wrong}");
         }
     }
 

@@ -82,6 +82,8 @@ pub(super) fn run(typed: &Weyl, options: &Options) -> Result<Answer, CommandErro
         metadata,
         notes,
         pictures: Vec::new(),
+        obsolete: None,
+        failure: None,
     })
 }
 

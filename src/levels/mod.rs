@@ -1,7 +1,7 @@
 //! Level lists and their smoothed staircase.
 //!
 //! * [`read`] reads a [`LevelList`] from csv or white-space text.
-//! * [`staircase`] and [`density`] convolve levels with a Gaussian.
+//! * [`staircase`] and [`density`] convolve levels with a Gaussian, [`mean_staircase`] averages their staircase.
 //! * [`residual_rms`] measures what is left between levels and a prediction.
 
 mod list;
@@ -12,4 +12,4 @@ mod smooth;
 pub use list::{LevelList, ListColumn, ListError, ListNote};
 pub use parse::read;
 pub use residual::{Residual, ResidualWindow, residual_rms};
-pub use smooth::{density, staircase};
+pub use smooth::{density, mean_staircase, staircase};

@@ -30,6 +30,14 @@ pub fn staircase(values: &[f64], points: &[f64], smoothing: f64) -> Vec<f64> {
     })
 }
 
+/// Mean over from..to of the unsmoothed staircase of `values` (ascending); those below `from` count fully, those from `to` on
+/// not at all.
+#[must_use]
+pub fn mean_staircase(values: &[f64], from: f64, to: f64) -> f64 {
+    let share = |value: &f64| ((to - value) / (to - from)).clamp(0.0, 1.0);
+    values.iter().map(share).sum()
+}
+
 /// The density of `values` (ascending) at `points`: a sum of Gaussians of standard deviation `smoothing`, which must be
 /// positive. The result is per unit of `values`; without smoothing it is zero, and infinite at a level.
 pub fn density(values: &[f64], points: &[f64], smoothing: f64) -> Vec<f64> {
@@ -91,5 +99,17 @@ impl Walk {
         }
         self.point = point;
         (self.from, self.to.max(self.from))
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn the_mean_staircase_counts_levels_by_what_follows_them() {
+        // 1 below the window, 1 for the last three quarters, 2 for the last half, none at its end.
+        let mean = mean_staircase(&[0.5, 2.0, 3.0, 3.0, 5.0], 1.0, 5.0);
+        assert!((mean - (1.0 + 0.75 + 2.0 * 0.5)).abs() < 1e-15);
     }
 }

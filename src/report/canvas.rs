@@ -286,6 +286,20 @@ impl Canvas {
         ));
     }
 
+    /// Rows of square cells: for every colour a path of horizontal lines, in units of a cell from the corner on.
+    pub(super) fn cells(&mut self, corner: Vec2, size: f64, paths: &[(String, String)]) {
+        self.element(&format!(
+            "<g transform=\"translate({} {}) scale({size:.5})\" fill=\"none\" stroke-width=\"1\" \
+             shape-rendering=\"crispEdges\">",
+            number(corner.x),
+            number(corner.y)
+        ));
+        for (color, data) in paths {
+            self.element(&format!("<path stroke=\"{color}\" d=\"{data}\"/>"));
+        }
+        self.element("</g>");
+    }
+
     /// A circle.
     pub(super) fn circle(&mut self, center: Vec2, radius: f64, fill: &str, stroke: Option<Stroke>) {
         self.element(&format!(

@@ -187,16 +187,30 @@ impl Solver {
         mut deliver: impl FnMut(WindowLevels) -> bool,
     ) -> Result<(), SolverError> {
         for band in plan::bands(windows) {
-            let mut attempt = 0;
-            let mut grid = self.discretise(band.k, attempt)?;
+            let mut meshes = vec![self.discretise(band.k, 0)?];
             let mut lower = None;
             for chunk in band.windows.chunks(rayon::current_num_threads().max(1)) {
-                let mut results = self.chunk(&grid, chunk, &mut lower);
-                while attempt + 1 < Discretisation::ATTEMPTS && self.missed(&results) {
-                    attempt += 1;
-                    grid = self.discretise(band.k, attempt)?;
-                    lower = None;
-                    results = self.chunk(&grid, chunk, &mut lower);
+                let mut results = self.chunk(&meshes[0], chunk, &mut lower);
+                // Each window by itself: its levels must not depend on which others are computed beside or before it.
+                for attempt in 1..Discretisation::ATTEMPTS {
+                    let missed: Vec<usize> = (0..results.len())
+                        .filter(|&index| self.missed(&results[index..=index]))
+                        .collect();
+                    if missed.is_empty() {
+                        break;
+                    }
+                    if meshes.len() == attempt {
+                        meshes.push(self.discretise(band.k, attempt)?);
+                    }
+                    let again: Vec<WindowLevels> = missed
+                        .par_iter()
+                        .flat_map(|&index| {
+                            self.chunk(&meshes[attempt], &chunk[index..=index], &mut None)
+                        })
+                        .collect();
+                    for (index, result) in missed.into_iter().zip(again) {
+                        results[index] = result;
+                    }
                 }
                 for result in results {
                     if !deliver(result) {

@@ -40,11 +40,15 @@ pub(super) struct Band<'a> {
 
 /// Cuts from..to into windows.
 pub(super) fn windows(sectors: &[Sector], from: f64, to: f64) -> Vec<Window> {
-    // In levels of the fields: copies are computed once.
+    // In levels of the fields: copies are computed once. Without the term in 1/k, which is infinite at k = 0.
     let count = |k: f64| {
         sectors
             .iter()
-            .map(|sector| sector.weyl.count(k, 0.0) / sector.fields.copies as f64)
+            .map(|sector| {
+                let weyl = &sector.weyl;
+                let count = (weyl.coefficient(2) * k + weyl.coefficient(1)) * k + weyl.constant();
+                count / sector.fields.copies as f64
+            })
             .fold(0.0, f64::max)
     };
     let total = (count(to) - count(from)).max(0.0);

@@ -139,6 +139,16 @@ impl Units {
         }
     }
 
+    /// Error of a level in the user's unit that belongs to an error of its wave number.
+    #[must_use]
+    pub fn error(&self, k: f64, error: f64) -> f64 {
+        if self.is_quadratic() {
+            (2.0 * k + error) * error / self.factor()
+        } else {
+            error / self.factor()
+        }
+    }
+
     /// dk/d(value) at a level in the user's unit: a density over k times this is a density over the user's unit.
     #[must_use]
     pub fn derivative(&self, value: f64) -> f64 {
@@ -267,6 +277,8 @@ mod tests {
                 assert!((units.k(value) / k - 1.0).abs() < 1e-14);
                 let power = if units.is_quadratic() { 0.5 } else { 1.0 };
                 assert!((units.derivative(value) * value / (power * k) - 1.0).abs() < 1e-14);
+                let error = units.value(k + 1e-3 * k) - value;
+                assert!((units.error(k, 1e-3 * k) / error - 1.0).abs() < 1e-12);
             }
         }
     }

@@ -56,6 +56,39 @@ pub fn expected_fluctuation(
     (mean_square(terms, k) + beyond).sqrt()
 }
 
+/// Root-mean-square fluctuation, in levels, of the mean of the staircase over from..to.
+///
+/// The mean of a wave of length l over a width w is sin(l w/2)/(l w/2) times its value at the middle, so what long orbits
+/// contribute averages out; beyond `max_length` the square of that factor is taken as 2/(l w)^2.
+#[must_use]
+pub fn mean_fluctuation(
+    terms: &[Term],
+    [from, to]: [f64; 2],
+    max_length: f64,
+    classes: &[ClassDensity],
+    statistics: Statistics,
+) -> f64 {
+    let (middle, width) = (0.5 * (from + to), to - from);
+    let averaged: Vec<Term> = terms
+        .iter()
+        .map(|term| {
+            let phase = 0.5 * term.length * width;
+            let share = if phase > 0.0 {
+                phase.sin() / phase
+            } else {
+                1.0
+            };
+            Term {
+                coefficient: term.coefficient * share,
+                ..*term
+            }
+        })
+        .collect();
+    let beyond = expected_fluctuation(&[], middle, max_length, classes, statistics);
+    let share = (2.0 / (max_length * width).powi(2)).min(1.0);
+    (mean_square(&averaged, middle) + share * beyond * beyond).sqrt()
+}
+
 /// Mean square of the sum of terms near k: half the squared amplitude of each length.
 #[must_use]
 pub fn mean_square(terms: &[Term], k: f64) -> f64 {
@@ -165,6 +198,42 @@ mod tests {
                 );
             }
         }
+    }
+
+    /// Root mean square over many windows of the mean of the exact staircase of the rectangle less its smooth count.
+    #[test]
+    fn means_over_windows_fluctuate_as_counted() {
+        let (width, windows) = (5.0, 400);
+        let centers = |i: i32| 150.0 + 60.0 * f64::from(i) / f64::from(windows);
+        let top = 150.0 + 60.0 + width;
+        let most = (top * B / PI) as i32 + 1;
+        let mut levels: Vec<f64> = (1..=most)
+            .flat_map(|m| (1..=most).map(move |n| PI * (f64::from(m) / A).hypot(f64::from(n) / B)))
+            .filter(|level| *level < top)
+            .collect();
+        levels.sort_by(f64::total_cmp);
+        let terms = rectangle(40.0);
+        let class = ClassDensity {
+            density: A * B * 180.0 / (2.0 * PI) - (A + B) / (2.0 * PI),
+            dimension: 1,
+        };
+        let (mut counted, mut expected) = (0.0, 0.0);
+        for i in 0..windows {
+            let (from, to) = (centers(i) - 0.5 * width, centers(i) + 0.5 * width);
+            let mean = crate::levels::mean_staircase(&levels, from, to);
+            // Integral of A B k^2/(4 pi) - (A + B) k/(2 pi) + 1/4.
+            let smooth = A * B * (to.powi(3) - from.powi(3)) / (12.0 * PI)
+                - (A + B) * (to * to - from * from) / (4.0 * PI)
+                + 0.25 * width;
+            counted += (mean - smooth / width).powi(2) / f64::from(windows);
+            expected +=
+                mean_fluctuation(&terms, [from, to], 40.0, &[class], Statistics::Uncorrelated)
+                    .powi(2)
+                    / f64::from(windows);
+        }
+        let ratio = (expected / counted).sqrt();
+        // Sixty units of k hold few independent windows of the shortest orbits.
+        assert!((ratio - 1.0).abs() < 0.15, "{expected} against {counted}");
     }
 
     #[test]

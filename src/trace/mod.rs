@@ -16,7 +16,9 @@ mod smoothed;
 mod sum;
 mod term;
 
-pub use fluctuation::{ClassDensity, Statistics, expected_fluctuation, mean_square};
+pub use fluctuation::{
+    ClassDensity, Statistics, expected_fluctuation, mean_fluctuation, mean_square,
+};
 pub use smoothed::{SmoothedTerms, Value};
 pub use sum::{DEFAULT_ACCURACY, OrbitSum, UniformGrid, sum_at, sum_on_grid};
 pub use term::{Amplitude, Term};

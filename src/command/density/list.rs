@@ -1,20 +1,35 @@
-//! The list of levels that a prediction is compared with, in k.
+//! The levels that a prediction is compared with, in k: from a list, or computed directly.
 
+use crate::command::direct::{self, Direct, Task};
 use crate::command::error::CommandError;
+use crate::command::limits::Plan;
 use crate::command::note::Note;
+use crate::command::options::Options;
 use crate::command::subject::{Subject, class_name};
 use orbitsum::baseline::Weyl;
 use orbitsum::levels::{ListColumn, read};
+use orbitsum::solver::Window;
 use orbitsum::system::LevelUnit;
 use std::path::Path;
 
-/// A list converted to k.
+/// Relative accuracy of levels that are computed for a comparison: a millionth of a level at the thousandth one, far below the
+/// error of any orbit sum.
+const ACCURACY: f64 = 1e-8;
+/// Standard deviations of the smoothing by which levels are computed beyond the window: the five that a comparison loses at
+/// the end of its levels, and a little for rounding.
+const BEYOND: f64 = 5.01;
+
+/// Levels converted to k.
 pub(super) struct GivenLevels {
     /// Levels in k, ascending.
     pub(super) k: Vec<f64>,
     /// The same levels in the unit of the system file.
     pub(super) values: Vec<f64>,
-    /// How it was read.
+    /// The k up to which nothing is missing.
+    pub(super) end: f64,
+    /// How they were found, where they were computed.
+    pub(super) direct: Option<Direct>,
+    /// How they were read or found.
     pub(super) notes: Vec<Note>,
 }
 
@@ -62,8 +77,41 @@ impl GivenLevels {
         notes.extend(beginning(subject, &subject.weyl(), &k));
         Ok(Self {
             values: k.iter().map(|&k| units.value(k)).collect(),
+            end: k.last().copied().unwrap_or(0.0),
             k,
+            direct: None,
             notes,
+        })
+    }
+
+    /// Computes all levels that the window of a plan needs.
+    pub(super) fn compute(
+        subject: &Subject,
+        plan: &Plan,
+        options: &Options,
+    ) -> Result<Self, CommandError> {
+        let units = &subject.system.units;
+        let task = Task {
+            window: Window {
+                from: 0.0,
+                to: units.k(plan.window.to) + BEYOND * plan.width,
+            },
+            accuracy: ACCURACY,
+            journal: None,
+        };
+        let solver = direct::solver(subject, task.accuracy)?;
+        let computed = direct::compute(subject, &solver, &task, options)?;
+        let k = computed.repeated();
+        let notes = (!computed.levels.complete).then(|| Note::NotComplete {
+            found: computed.levels.found(),
+            counted: computed.levels.counted,
+        });
+        Ok(Self {
+            values: k.iter().map(|&k| units.value(k)).collect(),
+            k,
+            end: task.window.to,
+            direct: Some(computed),
+            notes: notes.into_iter().collect(),
         })
     }
 

@@ -33,6 +33,11 @@ pub(super) fn answer(findings: &Findings<'_>) -> Answer {
         shown: table.thinned(SHOWN_ROWS),
         metadata: metadata(findings, &completeness),
         pictures: vec![("density.svg".into(), picture(findings))],
+        obsolete: None,
+        failure: findings
+            .comparison
+            .and_then(|comparison| comparison.given.direct.as_ref())
+            .and_then(|direct| direct.failure(findings.subject)),
         table,
         notes,
     }
@@ -85,7 +90,7 @@ fn list_notes(findings: &Findings<'_>) -> Vec<Note> {
     };
     let subject = findings.subject;
     let mut notes = comparison.given.notes.clone();
-    let end = subject.level(comparison.given.last(), 6);
+    let end = subject.level(subject.system.units.value(comparison.given.end), 6);
     if comparison.size.points == 0 {
         notes.push(Note::ListTooShort { end });
     } else if comparison.size.cut > 0.0 {
@@ -128,11 +133,14 @@ fn result_lines(comparison: &Comparison) -> Vec<(String, String)> {
     vec![
         (
             "levels".into(),
-            counted(
-                comparison.given.k.len(),
-                "level in the list",
-                "levels in the list",
-            ),
+            match &comparison.given.direct {
+                Some(direct) => format!("computed directly: {}", direct.completeness()),
+                None => counted(
+                    comparison.given.k.len(),
+                    "level in the list",
+                    "levels in the list",
+                ),
+            },
         ),
         (
             "rms before the orbits".into(),
@@ -234,6 +242,10 @@ fn metadata(findings: &Findings<'_>, completeness: &str) -> serde_json::Map<Stri
             "levels".into(),
             json!({
                 "count": comparison.given.k.len(),
+                "direct": comparison.given.direct.as_ref().map(|direct| json!({
+                    "counted": direct.levels.counted,
+                    "complete": direct.levels.complete,
+                })),
                 "used_to": subject.system.units.value(comparison.size.used_to.max(0.0)),
                 "residual_rms": comparison.size.rms,
                 "fluctuation_rms": comparison.before.rms,
