@@ -1,7 +1,8 @@
 //! Walls, outline, symmetry group and bounce map of a flat domain.
 
 mod bounce;
-pub(crate) use detect::Boundary;
+pub(crate) use detect::{Boundary, centroid};
+pub(crate) use symmetry::build;
 mod crossings;
 mod curve_hit;
 mod curve_piece;

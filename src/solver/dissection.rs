@@ -45,7 +45,7 @@ impl Dissection {
         }
         let middle = |leaf: &Leaf| -> Vec2 {
             let triangle = &mesh.triangles[space.elements[leaf.element].triangle];
-            triangle.points.iter().sum::<Vec2>() / 3.0
+            triangle.anchor + triangle.points.iter().sum::<Vec2>() / 3.0
         };
         let middles: Vec<Vec2> = space.leaves.iter().map(middle).collect();
         let mut builder = Builder {

@@ -15,8 +15,9 @@ use rayon::prelude::*;
 const EXTRA: usize = 2;
 /// The estimate leaves out the coupling of edges and all degrees beyond the next two: this much more is stated.
 const SAFETY: f64 = 3.0;
-/// Rounding error of an entry of a matrix in units of the last digit: the root of the number of quadrature points it is a sum over.
-const ROUNDING: f64 = 16.0;
+/// Rounding error of an entry of a matrix in units of the last digit: a few times the root of the number of quadrature points, some
+/// five hundred, that it is a sum over.
+const ROUNDING: f64 = 48.0;
 
 /// The functions of the next degrees on one leaf.
 #[derive(Debug)]

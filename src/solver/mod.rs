@@ -31,7 +31,10 @@ pub use plan::Window;
 pub use waves::{Grid, WallPlace, WaveValues, wall_places};
 
 use crate::baseline::{Weyl, weyl};
-use crate::billiard::{Condition, Domain, Irrep, Symmetry, Vec2, check_declared};
+use crate::billiard::{
+    Condition, Domain, Irrep, Symmetry, Vec2, build, centroid, check_declared,
+    is_rotationally_invariant,
+};
 use discretisation::{Discretisation, Found};
 use fields::Fields;
 use mesh::Cell;
@@ -114,6 +117,9 @@ impl Solver {
             return Err(SolverError::ZeroAngle { at: vertex.point });
         }
         let group = match class {
+            None if is_rotationally_invariant(domain) => {
+                build(centroid(domain), MOST_ROTATIONS, Some(0.0))
+            }
             None => manageable(symmetry),
             Some(_) => symmetry.clone(),
         };

@@ -257,7 +257,7 @@ impl<'a> Locator<'a> {
             .triangles
             .iter()
             .map(|triangle| {
-                let [a, b, c] = triangle.points;
+                let [a, b, c] = triangle.points.map(|point| triangle.anchor + point);
                 let (low, high) = (a.inf(&b).inf(&c), a.sup(&b).sup(&c));
                 // Edges bow by less than half of their length.
                 let margin = if mesh.is_straight(triangle) {

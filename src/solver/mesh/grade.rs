@@ -3,7 +3,7 @@
 //! With layers that shrink by a constant factor and a degree that falls towards the point, the error falls exponentially with
 //! the number of unknowns for every power of the distance (Guo & Babuska, Comput. Mech. 1 (1986) 21).
 
-use super::{BoundaryEdge, Draft};
+use super::{BoundaryEdge, Draft, STRAIGHT};
 use crate::billiard::Vec2;
 
 /// Ratio of the sizes of neighbouring layers (Gui & Babuska, Numer. Math. 49 (1986) 577, find 0.15 for powers of the distance).
@@ -65,62 +65,50 @@ fn rim(
     }
     let wall = draft.take_edge(center, outer);
     let mut points = vec![outer];
-    let mut previous = wall.map(|edge| edge.t_at(outer));
-    for layer in 1..=count {
-        let (point, t) = match &wall {
-            None => {
-                let (c, o) = (draft.points[center], draft.points[outer]);
-                (c + (o - c) * RATIO.powi(layer as i32), None)
-            }
-            Some(edge) => {
-                let t = along_wall(draft, edge, center, outer, RATIO.powi(layer as i32));
-                (draft.wall_point(edge.piece, t), Some(t))
-            }
+    let mut offset = draft.points[outer] - draft.points[center];
+    let mut t = wall.map_or(0.0, |edge| edge.t_at(outer));
+    for _ in 0..count {
+        let before = t;
+        (offset, t) = match &wall {
+            Some(edge) => along_wall(draft, edge, center, offset, t),
+            None => (offset * RATIO, 0.0),
         };
-        draft.points.push(point);
-        let new = draft.points.len() - 1;
-        if let (Some(edge), Some(t), Some(last)) = (&wall, t, previous) {
-            let nodes = [points[layer - 1], new];
-            draft.put_edge(BoundaryEdge {
-                nodes,
-                piece: edge.piece,
-                t: [last, t],
-                straight: false,
-            });
-            previous = Some(t);
-        }
+        let new = draft.add_near(center, offset);
+        let nodes = [points[points.len() - 1], new];
+        draft.put_part(wall.as_ref(), center, nodes, [before, t]);
         points.push(new);
     }
-    if let (Some(edge), Some(last)) = (&wall, previous) {
-        draft.put_edge(BoundaryEdge {
-            nodes: [points[count], center],
-            piece: edge.piece,
-            t: [last, edge.t_at(center)],
-            // What a bow would add to so short an edge is far below rounding, and at a cusp its parameter comes to rest.
-            straight: true,
-        });
-    }
+    let end = wall.map_or(0.0, |edge| edge.t_at(center));
+    draft.put_part(wall.as_ref(), center, [points[count], center], [t, end]);
     rims.push((outer, points.clone()));
     points
 }
 
-/// The wall's parameter at a fraction of the outer end's distance from the centre.
+/// The point of the wall at [`RATIO`] times the distance from the centre that `offset` has, and the wall's parameter there.
 fn along_wall(
     draft: &Draft,
     edge: &BoundaryEdge,
     center: usize,
-    outer: usize,
-    fraction: f64,
-) -> f64 {
+    offset: Vec2,
+    t: f64,
+) -> (Vec2, f64) {
     let origin: Vec2 = draft.points[center];
-    let wanted = fraction * (draft.points[outer] - origin).norm();
-    let (mut near, mut far) = (edge.t_at(center), edge.t_at(outer));
+    let (mut near, mut far) = (edge.t_at(center), t);
+    let wall = &draft.cell.pieces[edge.piece].wall;
+    if wall.is_straight() {
+        return (offset * RATIO, near + (far - near) * RATIO);
+    }
+    let wanted = RATIO * offset.norm();
+    if wanted < STRAIGHT * draft.cell.size {
+        return (offset * RATIO, near);
+    }
+    // Bisection down to the last digit.
     loop {
         let middle = 0.5 * (near + far);
         if middle == near || middle == far {
-            return far;
+            return (wall.point(far) - origin, far);
         }
-        if (draft.wall_point(edge.piece, middle) - origin).norm() < wanted {
+        if (wall.point(middle) - origin).norm() < wanted {
             near = middle;
         } else {
             far = middle;

@@ -16,6 +16,9 @@ use outline::Outline;
 use std::collections::BTreeMap;
 use thiserror::Error;
 
+/// Next to a singular point edges within this part of the domain's size are taken to be straight: there the energy is that of a
+/// part of this order at most, and what a curved edge adds is of the order of this to the power 3/2 even at a cusp.
+const STRAIGHT: f64 = 1e-9;
 /// Rounds of halving edges until all triangles are well shaped.
 const ROUNDS: usize = 40;
 
@@ -38,7 +41,7 @@ struct BoundaryEdge {
     nodes: [usize; 2],
     piece: usize,
     t: [f64; 2],
-    /// Taken to be straight although its wall is curved.
+    /// Taken to be straight although its wall is curved: it is shorter than any bow that counts.
     straight: bool,
 }
 
@@ -59,6 +62,9 @@ struct Draft<'a> {
     /// Corners (counter-clockwise) and the part of the full polynomial degree that the triangle gets.
     triangles: Vec<([usize; 3], f64)>,
     edges: BTreeMap<[usize; 2], BoundaryEdge>,
+    /// Nodes in the layers around a singular point: that point and the distance from it, which may be far below the last digit of
+    /// the position.
+    offsets: BTreeMap<usize, (usize, Vec2)>,
 }
 
 impl Draft<'_> {
@@ -71,8 +77,53 @@ impl Draft<'_> {
         self.edges.insert([a.min(b), a.max(b)], edge);
     }
 
+    /// A part of an edge along a wall, if it is one, that leads to a singular point.
+    fn put_part(
+        &mut self,
+        whole: Option<&BoundaryEdge>,
+        center: usize,
+        nodes: [usize; 2],
+        t: [f64; 2],
+    ) {
+        if let Some(&BoundaryEdge { piece, .. }) = whole {
+            let length = t
+                .map(|t| self.wall_point(piece, t))
+                .map(|point| (point - self.points[center]).norm());
+            self.put_edge(BoundaryEdge {
+                nodes,
+                piece,
+                t,
+                straight: length[1].max(length[0]) * grade::RATIO < STRAIGHT * self.cell.size,
+            });
+        }
+    }
+
     fn wall_point(&self, piece: usize, t: f64) -> Vec2 {
         self.cell.pieces[piece].wall.point(t)
+    }
+
+    /// A new node next to a singular point.
+    fn add_near(&mut self, center: usize, offset: Vec2) -> usize {
+        let node = self.points.len();
+        self.points.push(self.points[center] + offset);
+        self.offsets.insert(node, (center, offset));
+        node
+    }
+
+    /// Corners of a triangle relative to a point close to them, and that point.
+    fn places(&self, nodes: [usize; 3]) -> ([Vec2; 3], Vec2) {
+        let Some(&(center, _)) = nodes.iter().find_map(|node| self.offsets.get(node)) else {
+            return (nodes.map(|node| self.points[node]), Vec2::zeros());
+        };
+        let near = nodes.map(|node| match self.offsets.get(&node) {
+            Some(&(own, offset)) if own == center => Some(offset),
+            None if node == center => Some(Vec2::zeros()),
+            _ => None,
+        });
+        match near {
+            [Some(a), Some(b), Some(c)] => ([a, b, c], self.points[center]),
+            _ => (nodes.map(|node| self.points[node]), Vec2::zeros()),
+        }
     }
 }
 
@@ -148,6 +199,7 @@ fn attempt(cell: &Cell, outline: &Outline, extra: &[Vec2], length: f64) -> Attem
         points: straight.points,
         triangles: straight.triangles.into_iter().map(|t| (t, 1.0)).collect(),
         edges: BTreeMap::new(),
+        offsets: BTreeMap::new(),
     };
     for segment in &outline.segments {
         draft.put_edge(BoundaryEdge {

@@ -8,9 +8,6 @@ use std::collections::BTreeMap;
 
 /// Least ratio of the smallest to the largest Jacobian of a curved triangle: below, its map is too uneven for polynomials.
 const LEAST_EVENNESS: f64 = 0.15;
-/// Edges shorter than this part of the domain's size are taken to be straight: in the layers at a corner, where the energy is
-/// that of a part of this order, what a curved edge adds is of the order of this to the power 3/2 even at a cusp.
-const ALL_STRAIGHT: f64 = 1e-9;
 /// Rows of sample points in which the evenness is looked at.
 const ROWS: usize = 8;
 
@@ -28,7 +25,9 @@ pub(in crate::solver) struct Edge {
 /// One element.
 #[derive(Clone, Debug)]
 pub(in crate::solver) struct Triangle {
+    /// Its corners relative to `anchor`: next to singular points triangles are smaller than the last digit of their place.
     pub(in crate::solver) points: [Vec2; 3],
+    pub(in crate::solver) anchor: Vec2,
     /// Numbers of its corners and edges; edge e lies opposite to corner e.
     pub(in crate::solver) corners: [usize; 3],
     pub(in crate::solver) edges: [usize; 3],
@@ -54,7 +53,7 @@ impl Mesh {
         let l = [1.0 - x - y, x, y];
         let slopes = [[-1.0, -1.0], [1.0, 0.0], [0.0, 1.0]];
         let p = triangle.points;
-        let mut place = p[0] * l[0] + p[1] * l[1] + p[2] * l[2];
+        let mut place = triangle.anchor + p[0] * l[0] + p[1] * l[1] + p[2] * l[2];
         let mut by = [p[1] - p[0], p[2] - p[0]];
         for (index, &[first, second]) in EDGES.iter().enumerate() {
             let Some(bow) = &self.edges[triangle.edges[index]].bow else {
@@ -151,8 +150,10 @@ pub(super) fn connect(draft: &Draft<'_>) -> Result<Mesh, Vec<(usize, f64)>> {
         }
     }
     for (index, (nodes, quality)) in draft.triangles.iter().enumerate() {
+        let (points, anchor) = draft.places(*nodes);
         let triangle = Triangle {
-            points: nodes.map(|node| draft.points[node]),
+            points,
+            anchor,
             corners: corner_of[index],
             edges: edges_of[index].map(|(edge, _)| edge),
             forward: edges_of[index].map(|(_, forward)| forward),
@@ -205,8 +206,7 @@ fn bow(
     wrong: &mut Vec<(usize, f64)>,
 ) -> Option<Bow> {
     let piece: &Piece = &draft.cell.pieces[edge.piece];
-    let chord = (draft.points[a] - draft.points[b]).norm();
-    if piece.is_straight() || edge.straight || chord < ALL_STRAIGHT * draft.cell.size {
+    if piece.is_straight() || edge.straight {
         return None;
     }
     let bow = Bow::new(&piece.wall, [edge.t_at(a), edge.t_at(b)], draft.cell.size);
