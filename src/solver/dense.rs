@@ -3,8 +3,16 @@
 //! All calls run on the calling thread (the library is built without its thread pool), so that results do not depend on the
 //! number of threads; parallel work is cut into pieces further up.
 
-use faer::linalg::solvers::{DenseSolveCore, Lblt, SelfAdjointEigen, Solve};
-use faer::{Accum, MatMut, MatRef, Par, Side};
+use faer::diag::Diag;
+use faer::dyn_stack::{MemBuffer, MemStack};
+use faer::linalg::cholesky::lblt::factor::{self, LbltParams, PivotingStrategy};
+use faer::linalg::cholesky::lblt::solve;
+use faer::linalg::solvers::SelfAdjointEigen;
+use faer::linalg::triangular_solve::{
+    solve_unit_lower_triangular_in_place, solve_unit_upper_triangular_in_place,
+};
+use faer::perm::PermRef;
+use faer::{Accum, Auto, MatMut, MatRef, Par, Side, Spec};
 
 /// A dense matrix, column by column.
 pub(super) type Matrix = faer::Mat<f64>;
@@ -55,52 +63,155 @@ pub(super) fn eigen(matrix: &Matrix) -> (Vec<f64>, Matrix) {
     }
 }
 
-/// A factorised symmetric matrix (Bunch & Kaufman, Math. Comp. 31 (1977) 163).
-pub(super) struct Symmetric(Lblt<f64>);
+/// A factorised symmetric matrix: P A P^T = L B L^T with 1 x 1 and 2 x 2 blocks in B.
+///
+/// Bounded Bunch-Kaufman ("rook") pivoting (Ashcraft, Grimes & Lewis, SIAM J. Matrix Anal. Appl. 20 (1998) 513): with plain partial
+/// pivoting entries of L may grow without bound.
+pub(super) struct Symmetric {
+    lower: Matrix,
+    diagonal: Diag<f64>,
+    beside: Diag<f64>,
+    forward: Vec<usize>,
+    backward: Vec<usize>,
+}
 
 impl Symmetric {
     /// Factorises a matrix, read from its lower half.
     pub(super) fn new(matrix: MatRef<'_, f64>) -> Self {
-        Self(Lblt::new(matrix, Side::Lower))
+        let size = matrix.nrows();
+        let mut parameters = <LbltParams as Auto<f64>>::auto();
+        parameters.pivoting = PivotingStrategy::Rook;
+        let parameters = Spec::new(parameters);
+        let mut lower = Matrix::zeros(size, size);
+        lower.copy_from_triangular_lower(matrix);
+        let mut beside = Diag::zeros(size);
+        let (mut forward, mut backward) = (vec![0; size], vec![0; size]);
+        let mut memory = MemBuffer::new(factor::cholesky_in_place_scratch::<usize, f64>(
+            size,
+            Par::Seq,
+            parameters,
+        ));
+        factor::cholesky_in_place(
+            lower.as_mut(),
+            beside.as_mut(),
+            &mut forward,
+            &mut backward,
+            Par::Seq,
+            MemStack::new(&mut memory),
+            parameters,
+        );
+        let mut diagonal = Diag::zeros(size);
+        for index in 0..size {
+            diagonal[index] = lower[(index, index)];
+            lower[(index, index)] = 1.0;
+        }
+        Self {
+            lower,
+            diagonal,
+            beside,
+            forward,
+            backward,
+        }
     }
 
     /// Number of negative eigenvalues: the signs of the pivots are those of the eigenvalues (Sylvester's law of inertia).
     pub(super) fn negative(&self) -> usize {
-        negative_pivots(&self.0)
+        let (mut index, mut negative) = (0, 0);
+        while index < self.lower.nrows() {
+            let (a, b) = (self.diagonal[index], self.beside[index]);
+            if b == 0.0 {
+                negative += usize::from(a < 0.0);
+                index += 1;
+            } else {
+                let c = self.diagonal[index + 1];
+                negative += match (a * c - b * b < 0.0, a < 0.0) {
+                    (true, _) => 1,
+                    (false, true) => 2,
+                    (false, false) => 0,
+                };
+                index += 2;
+            }
+        }
+        negative
     }
 
     pub(super) fn inverse(&self) -> Matrix {
-        self.0.inverse()
+        let size = self.lower.nrows();
+        self.solve(Matrix::identity(size, size).as_ref())
+    }
+
+    /// With A the matrix and C another one: B^-1 L^-1 P C, of which the other factors give the rest, and L^-1 P C.
+    ///
+    /// C^T A^-1 C is the product of the second's transpose with the first: as stable as elimination row by row, where a product of
+    /// C with solutions would lose digits if entries are large.
+    pub(super) fn halves(&self, right: MatRef<'_, f64>) -> (Matrix, Matrix) {
+        let mut lower = Matrix::zeros(right.nrows(), right.ncols());
+        for column in 0..right.ncols() {
+            for (row, &source) in self.forward.iter().enumerate() {
+                lower[(row, column)] = right[(source, column)];
+            }
+        }
+        solve_unit_lower_triangular_in_place(self.lower.as_ref(), lower.as_mut(), Par::Seq);
+        let mut scaled = lower.clone();
+        for column in 0..scaled.ncols() {
+            self.divide_by_blocks(scaled.col_as_slice_mut(column));
+        }
+        (scaled, lower)
+    }
+
+    /// A^-1 C from B^-1 L^-1 P C.
+    pub(super) fn finish(&self, scaled: &Matrix) -> Matrix {
+        let mut upper = scaled.clone();
+        solve_unit_upper_triangular_in_place(self.lower.transpose(), upper.as_mut(), Par::Seq);
+        let mut solution = Matrix::zeros(upper.nrows(), upper.ncols());
+        for column in 0..upper.ncols() {
+            for (row, &target) in self.forward.iter().enumerate() {
+                solution[(target, column)] = upper[(row, column)];
+            }
+        }
+        solution
+    }
+
+    /// Solves with the 1 x 1 and 2 x 2 blocks.
+    fn divide_by_blocks(&self, values: &mut [f64]) {
+        let mut index = 0;
+        while index < values.len() {
+            let (a, b) = (self.diagonal[index], self.beside[index]);
+            if b == 0.0 {
+                values[index] /= a;
+                index += 1;
+            } else {
+                // Scaled by the larger entry off the diagonal, as pivoting chose it.
+                let (a, c) = (a / b, self.diagonal[index + 1] / b);
+                let (x, y) = (values[index] / b, values[index + 1] / b);
+                let determinant = a * c - 1.0;
+                values[index] = (c * x - y) / determinant;
+                values[index + 1] = (a * y - x) / determinant;
+                index += 2;
+            }
+        }
     }
 
     /// Solutions for the columns of a matrix.
     pub(super) fn solve(&self, right: MatRef<'_, f64>) -> Matrix {
-        self.0.solve(right)
+        let size = self.lower.nrows();
+        let mut solution = right.to_owned();
+        let mut memory = MemBuffer::new(solve::solve_in_place_scratch::<usize, f64>(
+            size,
+            right.ncols(),
+            Par::Seq,
+        ));
+        solve::solve_in_place(
+            self.lower.as_ref(),
+            self.diagonal.as_ref(),
+            self.beside.as_ref(),
+            PermRef::new_checked(&self.forward, &self.backward, size),
+            solution.as_mut(),
+            Par::Seq,
+            MemStack::new(&mut memory),
+        );
+        solution
     }
-}
-
-fn negative_pivots(factor: &Lblt<f64>) -> usize {
-    let diagonal = factor.B_diag().column_vector();
-    let beside = factor.B_subdiag().column_vector();
-    let (mut index, mut negative) = (0, 0);
-    while index < diagonal.nrows() {
-        let a = diagonal[index];
-        if beside[index] == 0.0 {
-            negative += usize::from(a < 0.0);
-            index += 1;
-        } else {
-            let b = diagonal[index + 1];
-            negative += if a * b - beside[index] * beside[index] < 0.0 {
-                1
-            } else if a < 0.0 {
-                2
-            } else {
-                0
-            };
-            index += 2;
-        }
-    }
-    negative
 }
 
 #[cfg(test)]
@@ -132,6 +243,15 @@ mod tests {
                 factor.negative(),
                 values.iter().filter(|&&value| value < 0.0).count()
             );
+            let (scaled, lower) = factor.halves(matrix.as_ref());
+            let back = product(lower.transpose(), scaled.as_ref());
+            let whole = factor.finish(&scaled);
+            for i in 0..n {
+                for j in 0..n {
+                    assert!((back[(i, j)] - matrix[(i, j)]).abs() < 1e-10);
+                    assert!((whole[(i, j)] - f64::from(u8::from(i == j))).abs() < 1e-9);
+                }
+            }
             let unit = product(matrix.as_ref(), inverse.as_ref());
             for i in 0..n {
                 for j in 0..n {

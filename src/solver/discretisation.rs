@@ -170,6 +170,57 @@ impl Discretisation {
     }
 }
 
+/// A shift near the middle of a range at which the factorisation keeps its digits, and the factorised matrix.
+fn well_placed(part: &Part, [from, to]: [f64; 2]) -> (f64, Factor<'_>) {
+    /// Largest entry at which enough digits are left; most shifts stay below.
+    const LARGEST: f64 = 1e4;
+    /// Distances from the middle in widths of the range.
+    const PLACES: [f64; 5] = [0.0, 0.03, -0.03, 0.07, -0.07];
+    let mut best: Option<(f64, Factor<'_>)> = None;
+    for place in PLACES {
+        let shift = 0.5 * (from + to) + place * (to - from);
+        let factor = Factor::new(&part.space, &part.tree, shift);
+        let fine = factor.largest < LARGEST;
+        if best
+            .as_ref()
+            .is_none_or(|(_, other)| factor.largest < other.largest)
+        {
+            best = Some((shift, factor));
+        }
+        if fine {
+            break;
+        }
+    }
+    best.unwrap_or_else(|| {
+        let shift = 0.5 * (from + to);
+        (shift, Factor::new(&part.space, &part.tree, shift))
+    })
+}
+
+/// What errors of the solutions leave in the Rayleigh quotients.
+///
+/// Where the operator of the iteration is off by d, seen in the difference of its values from the quotients, vectors are off by
+/// d/gap and quotients by d^2/gap.
+fn drifts(quotients: &[f64], iterated: &[f64]) -> Vec<f64> {
+    quotients
+        .iter()
+        .zip(iterated)
+        .enumerate()
+        .map(|(index, (&own, &other))| {
+            let drift = (own - other).abs();
+            let neighbours = [index.checked_sub(1), Some(index + 1)];
+            let gap = neighbours
+                .into_iter()
+                .flatten()
+                .filter_map(|neighbour| quotients.get(neighbour))
+                .map(|neighbour| (neighbour - own).abs())
+                .filter(|&distance| distance > drift)
+                .fold(f64::INFINITY, f64::min);
+            drift.min(drift * drift / gap)
+        })
+        .collect()
+}
+
 /// How levels are looked for.
 #[derive(Clone, Copy, Debug)]
 struct Task {
@@ -221,8 +272,7 @@ fn collect(part: &Part, [from, to]: [f64; 2], counts: [usize; 2], task: Task, fo
     if counted == 0 {
         return;
     }
-    let shift = 0.5 * (from + to);
-    let factor = Factor::new(&part.space, &part.tree, shift);
+    let (shift, factor) = well_placed(part, [from, to]);
     let wanted = Wanted {
         from,
         to,
@@ -242,9 +292,14 @@ fn collect(part: &Part, [from, to]: [f64; 2], counts: [usize; 2], task: Task, fo
         return;
     }
     let (values, errors) = part.estimator.assess(&part.space, &pairs.vectors);
-    found.values.extend(values);
-    found
-        .errors
-        .extend(errors.iter().zip(&pairs.remainders).map(|(a, b)| a + b));
+    found.values.extend(&values);
+    let drifts = drifts(&values, &pairs.values);
+    found.errors.extend(
+        errors
+            .iter()
+            .zip(&pairs.remainders)
+            .zip(drifts)
+            .map(|((own, remainder), drift)| own + remainder + drift),
+    );
     found.vectors.push(pairs.vectors);
 }

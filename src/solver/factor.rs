@@ -23,6 +23,9 @@ pub(super) struct Factor<'a> {
     nodes: Vec<Option<Kept>>,
     /// Number of negative eigenvalues: the number of levels below the shift.
     pub(super) negative: usize,
+    /// Largest entry that an elimination left; those of the stiffness matrix are about one. Where the shift is close to a level of a
+    /// part of the domain by itself entries grow, and solutions lose as many digits.
+    pub(super) largest: f64,
 }
 
 /// Number of eigenvalues of the pencil (stiffness, mass) below a shift, by Sylvester's law of inertia.
@@ -121,6 +124,8 @@ struct Eliminated {
     negative: usize,
     /// The matrix on the rim.
     schur: Matrix,
+    /// Its largest entry.
+    largest: f64,
 }
 
 /// Eliminates the part `own`, coupled by `across` to a rim with the matrix `rim`.
@@ -131,31 +136,23 @@ fn eliminate(
     purpose: Purpose,
 ) -> Eliminated {
     let factor = Symmetric::new(own);
+    let (scaled, lower) = factor.halves(across);
     let mut schur = rim.to_owned();
-    let mut update = |coupling: &Matrix| {
-        dense::multiply(
-            schur.as_mut(),
-            Into::Sum,
-            across.transpose(),
-            coupling.as_ref(),
-            -1.0,
-        );
-    };
-    let kept = match purpose {
-        Purpose::Inertia => {
-            update(&factor.solve(across));
-            None
-        }
-        Purpose::Solutions => {
-            let inverse = factor.inverse();
-            let coupling = dense::product(inverse.as_ref(), across);
-            update(&coupling);
-            Some(Kept { inverse, coupling })
-        }
-    };
+    dense::multiply(
+        schur.as_mut(),
+        Into::Sum,
+        lower.transpose(),
+        scaled.as_ref(),
+        -1.0,
+    );
+    let kept = (purpose == Purpose::Solutions).then(|| Kept {
+        inverse: factor.inverse(),
+        coupling: factor.finish(&scaled),
+    });
     Eliminated {
         kept,
         negative: factor.negative(),
+        largest: schur.norm_max(),
         schur,
     }
 }
@@ -189,6 +186,7 @@ impl<'a> Elimination<'a> {
             .map(|&element| self.interior(element))
             .collect();
         let mut negative = 0;
+        let mut largest = kinds.iter().map(|kind| kind.largest).fold(0.0, f64::max);
         let mut rest: Vec<Option<Matrix>> = Vec::with_capacity(self.tree.nodes.len());
         let mut nodes = Vec::with_capacity(self.tree.nodes.len());
         for node in &self.tree.nodes {
@@ -209,6 +207,7 @@ impl<'a> Elimination<'a> {
                 self.purpose,
             );
             negative += done.negative;
+            largest = done.largest.max(largest);
             rest.push(Some(done.schur));
             nodes.push(done.kept);
         }
@@ -218,6 +217,7 @@ impl<'a> Elimination<'a> {
             interiors: kinds.into_iter().filter_map(|kind| kind.kept).collect(),
             nodes,
             negative,
+            largest,
         }
     }
 

@@ -82,6 +82,8 @@ struct Ritz {
     values: Vec<f64>,
     residuals: Vec<f64>,
     vectors: Matrix,
+    /// What the operator adds in the block that follows the basis.
+    tails: Matrix,
 }
 
 impl Ritz {
@@ -101,8 +103,11 @@ impl Ritz {
 
     /// Has the pair converged to a relative accuracy?
     fn has_converged(&self, index: usize, shift: f64, accuracy: f64) -> bool {
+        let value = self.values[index];
+        // Rounding of the reciprocals sets in here.
+        let floor = 4.0 * f64::EPSILON * (value - shift).abs();
         self.residuals[index] <= LARGEST_RESIDUAL
-            && self.remainder(index, shift) <= accuracy * self.values[index].abs().max(shift.abs())
+            && self.remainder(index, shift) <= (accuracy * value.abs()).max(floor)
     }
 
     /// Have all pairs within `reach` of the shift, and one beyond, converged?
@@ -260,6 +265,7 @@ impl<'a> Basis<'a> {
             values: order.iter().map(|&i| shift + 1.0 / values[i]).collect(),
             residuals: order.iter().map(|&i| residual(i)).collect(),
             vectors: Matrix::from_fn(count, count, |i, j| vectors[(i, order[j])]),
+            tails: Matrix::from_fn(WIDTH, count, |i, j| tails[(i, order[j])]),
         }
     }
 
@@ -272,9 +278,16 @@ impl<'a> Basis<'a> {
         chosen.sort_by(|&a, &b| found.values[a].total_cmp(&found.values[b]));
         let count = self.count;
         let mut vectors = Matrix::zeros(chosen.len(), self.space.size);
-        for (index, block) in self.vectors[..count / WIDTH].iter().enumerate() {
+        // One step of inverse iteration comes free: the part that the basis leaves over lies in the block that follows. It takes
+        // out what a vector holds of waves far above the window, which a Rayleigh quotient would weigh heavily (Ericsson & Ruhe).
+        let following = count / WIDTH;
+        for (index, block) in self.vectors.iter().enumerate().take(following + 1) {
             let weights = Matrix::from_fn(chosen.len(), WIDTH, |i, j| {
-                found.vectors[(index * WIDTH + j, chosen[i])]
+                if index == following {
+                    found.tails[(j, chosen[i])] * (found.values[chosen[i]] - shift)
+                } else {
+                    found.vectors[(index * WIDTH + j, chosen[i])]
+                }
             });
             dense::multiply(
                 vectors.as_mut(),

@@ -6,7 +6,7 @@ use super::jacobi::gauss;
 use super::matrices::Selection;
 
 /// Points per direction beyond the degree: exact for straight triangles, and curved ones add a smooth factor.
-const EXTRA_POINTS: usize = 6;
+const EXTRA_POINTS: usize = 8;
 
 /// The triangle with corners (0, 0), (1, 0), (0, 1).
 #[derive(Debug)]

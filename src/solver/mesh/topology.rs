@@ -7,7 +7,7 @@ use crate::solver::elements::EDGES;
 use std::collections::BTreeMap;
 
 /// Least ratio of the smallest to the largest Jacobian of a curved triangle: below, its map is too uneven for polynomials.
-const LEAST_EVENNESS: f64 = 0.15;
+const LEAST_EVENNESS: f64 = 0.3;
 /// Rows of sample points in which the evenness is looked at.
 const ROWS: usize = 8;
 
