@@ -174,7 +174,8 @@ fn crossings(wall: &Wall, center: Vec2, direction: Vec2) -> Vec<f64> {
                 high = middle;
             }
         }
-        if (wall.point(low) - center).dot(&direction) > 0.0 {
+        // The centre itself counts: a thin wall may run through it.
+        if (wall.point(low) - center).dot(&direction) > -SAME_POINT * extent {
             found.push(low);
         }
     }
