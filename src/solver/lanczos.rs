@@ -312,12 +312,8 @@ pub(super) fn mass_times(space: &Space, block: &Matrix) -> Matrix {
     let mut result = Matrix::zeros(block.nrows(), block.ncols());
     for leaf in &space.leaves {
         let element = &space.elements[leaf.element];
-        let whole = element.selection.len() == space.reference.functions.len();
         let local = leaf.restrict(block, element.selection.len());
-        let product =
-            element
-                .matrices
-                .times_mass(&space.reference, whole, &element.selection, &local);
+        let product = element.matrices.times_mass(&space.reference, &local);
         leaf.accumulate(&product, &mut result);
     }
     result

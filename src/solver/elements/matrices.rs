@@ -40,6 +40,8 @@ pub(in crate::solver) enum ElementMatrices {
         metric: [f64; 3],
         /// Coefficient of the reference mass matrix.
         jacobian: f64,
+        /// The mass matrix, where not all functions of the reference triangle are selected.
+        mass: Option<Matrix>,
     },
     /// A curved one: matrices of its own, for the selected functions.
     Curved { stiffness: Matrix, mass: Matrix },
@@ -55,7 +57,18 @@ impl ElementMatrices {
         if mesh.is_straight(triangle) {
             let [p, q, r] = triangle.points;
             let (metric, jacobian) = metric(q - p, r - p);
-            return Self::Straight { metric, jacobian };
+            let whole = selection.len() == reference.functions.len();
+            let columns = &selection.columns;
+            let mass = (!whole).then(|| {
+                Matrix::from_fn(columns.len(), columns.len(), |i, j| {
+                    jacobian * reference.mass[(columns[i], columns[j])]
+                })
+            });
+            return Self::Straight {
+                metric,
+                jacobian,
+                mass,
+            };
         }
         let points = reference.points.len();
         let count = selection.len();
@@ -93,7 +106,10 @@ impl ElementMatrices {
     pub(in crate::solver) fn fingerprint(&self) -> Option<Vec<i64>> {
         /// Relative size of a difference that is taken for rounding: far below the error of a level.
         const STEP: f64 = 1e-13;
-        let Self::Straight { metric, jacobian } = self else {
+        let Self::Straight {
+            metric, jacobian, ..
+        } = self
+        else {
             return None;
         };
         let scale = jacobian.log2().floor().exp2();
@@ -113,7 +129,9 @@ impl ElementMatrices {
         b: f64,
     ) -> Matrix {
         match self {
-            Self::Straight { metric, jacobian } => {
+            Self::Straight {
+                metric, jacobian, ..
+            } => {
                 let [xx, xy, yy] = metric.map(|entry| a * entry);
                 let b = b * jacobian;
                 let columns = &selection.columns;
@@ -139,17 +157,14 @@ impl ElementMatrices {
         }
     }
 
-    /// block x mass: one row per vector, one column per selected function; `whole` if all functions of the reference triangle
-    /// are selected.
-    pub(in crate::solver) fn times_mass(
-        &self,
-        reference: &Reference,
-        whole: bool,
-        selection: &Selection,
-        block: &Matrix,
-    ) -> Matrix {
+    /// block x mass: one row per vector, one column per selected function.
+    pub(in crate::solver) fn times_mass(&self, reference: &Reference, block: &Matrix) -> Matrix {
         match self {
-            Self::Straight { jacobian, .. } if whole => {
+            Self::Straight {
+                jacobian,
+                mass: None,
+                ..
+            } => {
                 let mut result = Matrix::zeros(block.nrows(), block.ncols());
                 let mass = reference.mass.as_ref();
                 dense::multiply(
@@ -161,11 +176,10 @@ impl ElementMatrices {
                 );
                 result
             }
-            Self::Straight { .. } => {
-                let mass = self.combine(reference, selection, 0.0, 1.0);
-                dense::product(block.as_ref(), mass.as_ref())
+            Self::Straight {
+                mass: Some(mass), ..
             }
-            Self::Curved { mass, .. } => dense::product(block.as_ref(), mass.as_ref()),
+            | Self::Curved { mass, .. } => dense::product(block.as_ref(), mass.as_ref()),
         }
     }
 }
