@@ -49,7 +49,7 @@ pub(crate) enum CommandError {
         most: usize,
     },
     /// An option's value lies outside its range.
-    #[error("--{option}: {value:e} is out of range: give a number from {least:e} to {most:e}")]
+    #[error("--{option}: {value:?} is out of range: give a number from {least:e} to {most:e}")]
     OutOfRange {
         option: &'static str,
         value: f64,
