@@ -358,7 +358,7 @@ const WRONG: &[(&[&str], &str)] = &[
     ),
     (
         &["levels", QUARTER, "--k", "0:9", "--accuracy", "0.1"],
-        "--accuracy: 1e-1 is out of range: give a number from 1e-13 to 1e-3",
+        "--accuracy: 0.1 is out of range: give a number from 1e-13 to 1e-3",
     ),
     (
         &["levels", QUARTER, "--k", "0:9", "--accuracy", "-1e-9"],
