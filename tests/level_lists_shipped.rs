@@ -13,11 +13,8 @@ use direct::{
     judge, rectangles, right_isosceles, shape,
 };
 use orbitsum::baseline::weyl;
-use orbitsum::billiard::{Irrep, detect};
+use orbitsum::billiard::detect;
 use orbitsum::levels::{ListNote, mean_staircase, read};
-use orbitsum::orbit::{Catalogue, ClassWeights, Limits, terms};
-use orbitsum::trace::{ClassDensity, Statistics, mean_fluctuation};
-use std::f64::consts::PI;
 use std::fs;
 use std::path::{Path, PathBuf};
 
@@ -25,12 +22,9 @@ use std::path::{Path, PathBuf};
 const LEAST_LEVELS: usize = 300;
 /// Largest stated error, relative.
 const LARGEST_ERROR: f64 = 1e-9;
-/// Mean of the staircase about the smooth count, in levels, up to which nothing has to explain it.
-const SMALL_MEAN: f64 = 0.1;
-/// Larger means may be this many times their expected root mean square.
-const DEVIATIONS: f64 = 2.0;
-/// Orbits of the expected fluctuation, in mean chords.
-const CHORDS: f64 = 5.0;
+/// Largest mean of the staircase about the smooth count, in levels: a fifth of what a level missing in the middle makes.
+/// Measured: 0.086 for the annulus, which fluctuates most, below 0.025 for all others.
+const LARGEST_MEAN: f64 = 0.1;
 
 /// One list.
 struct Shipped {
@@ -89,43 +83,17 @@ impl Shipped {
         self.path.display().to_string()
     }
 
-    /// Mean of the staircase about the smooth count from the lowest level to the end, in levels, and its expected root mean
-    /// square, which is only asked for where the mean is not small.
-    fn mean(&self) -> (f64, impl FnOnce() -> f64) {
+    /// Mean of the staircase about the smooth count from the lowest level to the end, in levels.
+    fn mean(&self) -> f64 {
         let domain = shape(&self.shape, &[]);
         let symmetry = detect(&domain);
         let class = self
             .class
             .as_ref()
-            .map(|name| symmetry.class(name).expect("a class").clone());
-        let smooth = weyl(&domain, &symmetry, class.as_ref());
-        let window = [self.rows[0].k, self.end];
-        let mean = mean_staircase(&copies(&self.rows), window[0], window[1])
-            - smooth.mean_count(window[0], window[1]);
-        let expected = move || {
-            let chord = PI * domain.area / domain.perimeter;
-            let max_length = CHORDS * chord;
-            let catalogue = Catalogue::find(&domain, &symmetry, Limits::up_to(max_length, &domain));
-            let terms = terms(&catalogue, &ClassWeights::new(&symmetry, class.as_ref()));
-            let statistics = if catalogue.integrable.is_some() {
-                Statistics::Uncorrelated
-            } else {
-                Statistics::Orthogonal
-            };
-            let wanted = |irrep: &&Irrep| class.as_ref().is_none_or(|it| it.name == irrep.name);
-            let classes: Vec<ClassDensity> = symmetry
-                .irreps
-                .iter()
-                .filter(wanted)
-                .map(|irrep| ClassDensity {
-                    density: weyl(&domain, &symmetry, Some(irrep))
-                        .density(0.5 * (window[0] + window[1]), 0.0),
-                    dimension: irrep.dimension,
-                })
-                .collect();
-            mean_fluctuation(&terms, window, max_length, &classes, statistics)
-        };
-        (mean, expected)
+            .map(|name| symmetry.class(name).expect("a class"));
+        let from = self.rows[0].k;
+        mean_staircase(&copies(&self.rows), from, self.end)
+            - weyl(&domain, &symmetry, class).mean_count(from, self.end)
     }
 }
 
@@ -201,16 +169,8 @@ fn lists_are_read_without_remarks() {
 #[test]
 fn staircases_follow_the_smooth_count() {
     for list in shipped() {
-        let (mean, expected) = list.mean();
-        if mean.abs() < SMALL_MEAN {
-            continue;
-        }
-        let expected = expected();
-        assert!(
-            mean.abs() < DEVIATIONS * expected,
-            "{}: {mean} level in the mean, {expected} expected",
-            list.name()
-        );
+        let mean = list.mean();
+        assert!(mean.abs() < LARGEST_MEAN, "{}: {mean} level", list.name());
     }
 }
 
