@@ -21,7 +21,7 @@ fn counted(levels: &[f64], from: f64, to: f64, smooth: impl Fn(f64) -> f64) -> f
     (square / f64::from(points)).sqrt()
 }
 
-/// The list is that of data/quarter-stadium.csv (source in its first lines). A window holds some 60 independent spacings, so
+/// The list is that of data/quarter-stadium.csv (its first line is the call that made it). A window holds some 60 independent spacings, so
 /// its rms is known to about a tenth; the estimate has no free parameter, and must not depend on how many orbits are known.
 #[test]
 fn the_quarter_stadium_fluctuates_as_expected() {

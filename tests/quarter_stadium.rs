@@ -1,7 +1,8 @@
-//! The orbit sum of the quarter stadium against levels computed by spectral elements.
+//! The orbit sum of the quarter stadium against levels computed directly.
 //!
-//! Levels: data/quarter-stadium.csv (spectral elements of degree 16, count by matrix inertia; source and accuracy in its
-//! header). The residual is the smoothed staircase of the levels minus the smooth count minus the orbit sum, all three
+//! Levels: data/quarter-stadium.csv, which the command `levels` made (finite elements of high degree, count by matrix inertia; its
+//! call is in the first line, its errors stand beside the levels; tests/direct_quarter_stadium.rs holds the solver against an
+//! independent code). The residual is the smoothed staircase of the levels minus the smooth count minus the orbit sum, all three
 //! smoothed by the same Gaussian, with nothing fitted.
 
 use num_complex::Complex64;

@@ -62,7 +62,8 @@ pub enum ListNote {
         /// Number of distinct values that occur more than once.
         values: usize,
     },
-    /// The file has several columns that could be the levels; the others were not read.
+    /// The file has several columns that could be the levels; the others were not read. An energy that is k^2 beside k is
+    /// not worth a remark.
     OtherLevels {
         /// The column that was read.
         used: ListColumn,
