@@ -16,7 +16,7 @@ use crate::billiard::cross;
 /// level, lower and higher ones more.
 const DEGREE: usize = 16;
 /// Degrees that are tried where the first is not accurate enough.
-const HIGHER_DEGREES: [usize; 2] = [20, 24];
+const HIGHER_DEGREES: [usize; 2] = [18, 22];
 /// In two dimensions the error is that of one dimension for a wave with this times the wave number (measured on disks).
 const DISPERSION: f64 = 1.2;
 /// The largest error of a window's levels is about this many times the one that the mesh is made for.

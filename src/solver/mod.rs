@@ -50,7 +50,7 @@ const MOST_UNKNOWNS: f64 = 3e6;
 /// Wedges narrower than those of a group with this many rotations make bad elements; a subgroup is used where it can be.
 const MOST_ROTATIONS: usize = 6;
 /// Where errors of levels exceed the wanted accuracy by this factor, a higher polynomial degree is tried.
-const MISSED: f64 = 10.0;
+const MISSED: f64 = 3.0;
 
 /// Why levels could not be computed.
 #[derive(Clone, Debug, Error, PartialEq)]
