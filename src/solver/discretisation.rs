@@ -15,8 +15,9 @@ use crate::billiard::cross;
 /// Polynomial degree that is tried first: with straight triangles of many shapes, degrees of 12 to 20 cost about the same per
 /// level, lower and higher ones more.
 const DEGREE: usize = 16;
-/// Degrees that are tried where the first is not accurate enough.
-const HIGHER_DEGREES: [usize; 2] = [18, 22];
+/// What is tried where the first degree is not accurate enough: a degree, and the length of edges in units of that at first. Shorter
+/// edges help where parts of the outline much shorter than a wave lie beside long ones.
+const FINER: [(usize, f64); 2] = [(18, 1.0), (20, 0.4)];
 /// In two dimensions the error is that of one dimension for a wave with this times the wave number (measured on disks).
 const DISPERSION: f64 = 1.2;
 /// The largest error of a window's levels is about this many times the one that the mesh is made for.
@@ -66,8 +67,8 @@ pub(super) struct Found {
 }
 
 impl Discretisation {
-    /// How many degrees there are to be tried one after the other.
-    pub(super) const ATTEMPTS: usize = 1 + HIGHER_DEGREES.len();
+    /// How many meshes and degrees there are to be tried one after the other.
+    pub(super) const ATTEMPTS: usize = 1 + FINER.len();
 
     /// Discretises all sectors for waves up to `k` with the relative accuracy; `attempt` counts from 0.
     pub(super) fn new(
@@ -77,11 +78,11 @@ impl Discretisation {
         accuracy: f64,
         attempt: usize,
     ) -> Result<Self, MeshError> {
-        let degree = match attempt {
-            0 => DEGREE,
-            _ => HIGHER_DEGREES[(attempt - 1).min(HIGHER_DEGREES.len() - 1)],
+        let (degree, part) = match attempt {
+            0 => (DEGREE, 1.0),
+            _ => FINER[(attempt - 1).min(FINER.len() - 1)],
         };
-        let mesh = Mesh::new(cell, length_times_k(DEGREE, accuracy) / k)?;
+        let mesh = Mesh::new(cell, part * length_times_k(DEGREE, accuracy) / k)?;
         let parts = sectors
             .iter()
             .map(|sector| Part::new(&mesh, cell, &sector.fields, degree))
