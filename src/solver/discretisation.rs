@@ -17,7 +17,7 @@ use crate::billiard::cross;
 const DEGREE: usize = 16;
 /// What is tried where the first degree is not accurate enough: a degree, and the length of edges in units of that at first. Shorter
 /// edges help where parts of the outline much shorter than a wave lie beside long ones.
-const FINER: [(usize, f64); 2] = [(18, 1.0), (20, 0.4)];
+const FINER: [(usize, f64); 2] = [(20, 1.0), (20, 0.4)];
 /// In two dimensions the error is that of one dimension for a wave with this times the wave number (measured on disks).
 const DISPERSION: f64 = 1.2;
 /// The largest error of a window's levels is about this many times the one that the mesh is made for.
