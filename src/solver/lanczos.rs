@@ -11,6 +11,9 @@ use super::space::Space;
 const WIDTH: usize = 8;
 /// Blocks between two looks at what has converged.
 const LOOK_EVERY: usize = 3;
+/// Ratio of the smallest to the largest eigenvalue of the products of a block's vectors below which they are taken to depend on each
+/// other: two passes of orthonormalisation restore what is lost above.
+const DEPENDENT: f64 = 1e-26;
 /// Largest residual of a converged pair relative to its reciprocal: its vector is then good enough for the estimate of its error.
 const LARGEST_RESIDUAL: f64 = 1e-5;
 /// Vectors per wanted level after which the iteration gives up.
@@ -29,6 +32,18 @@ pub(super) struct Pairs {
     pub(super) vectors: Matrix,
     /// Have all pairs in the wanted range converged?
     pub(super) converged: bool,
+}
+
+impl Pairs {
+    /// What is found where the iteration cannot even begin.
+    fn none(space: &Space) -> Self {
+        Self {
+            values: Vec::new(),
+            remainders: Vec::new(),
+            vectors: Matrix::zeros(0, space.size),
+            converged: false,
+        }
+    }
 }
 
 /// What is looked for.
@@ -55,7 +70,9 @@ pub(super) fn pairs_near(space: &Space, factor: &Factor<'_>, shift: f64, wanted:
     let limit = (MOST_PER_LEVEL * expected).max(LEAST_LIMIT).min(space.size);
     let mut basis = Basis::new(space, limit.div_ceil(WIDTH) + 1);
     let reach = (to - shift).max(shift - from);
-    basis.start(factor);
+    if !basis.start(factor) {
+        return Pairs::none(space);
+    }
     let mut looked = None;
     let mut blocks = 0;
     while blocks * WIDTH < limit {
@@ -151,7 +168,8 @@ impl<'a> Basis<'a> {
         }
     }
 
-    fn start(&mut self, factor: &Factor<'_>) {
+    /// The first block. False if it has no eight independent finite vectors.
+    fn start(&mut self, factor: &Factor<'_>) -> bool {
         let mut block = Matrix::zeros(WIDTH, self.space.size);
         let mut state = 0x9e37_79b9_7f4a_7c15_u64;
         for column in 0..self.space.size {
@@ -165,7 +183,7 @@ impl<'a> Basis<'a> {
         }
         let mut block = mass_times(self.space, &block);
         factor.solve(&mut block);
-        self.append(&block);
+        self.append(&block).is_some()
     }
 
     /// Orthonormalises a block in the mass matrix and writes it behind the last one. Returns its factor: block = factor x rows.
@@ -178,7 +196,9 @@ impl<'a> Basis<'a> {
             let gram = dense::product(rows.as_ref(), weighted.transpose());
             let (values, vectors) = dense::eigen(&gram);
             let largest = values.last().copied().unwrap_or(0.0);
-            if values[0] <= 1e-26 * largest || !largest.is_finite() || largest <= 0.0 {
+            // Also false for numbers that are not finite.
+            let independent = values[0] > DEPENDENT * largest && largest.is_finite();
+            if !independent {
                 return None;
             }
             // rows -> diag(1/root) V^T rows; factor: V diag(root).

@@ -297,12 +297,6 @@ impl Solver {
             .flat_map(|result| &result.levels)
             .any(|level| level.error > MISSED * self.accuracy * level.k)
     }
-
-    /// Smooth count of the levels below k, for the second check of completeness.
-    #[must_use]
-    pub fn smooth_count(&self, k: f64, smoothing: f64) -> f64 {
-        self.weyl.count(k, smoothing)
-    }
 }
 
 /// The group, or a subgroup whose fundamental cell is not too narrow.
