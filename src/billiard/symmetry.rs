@@ -122,6 +122,16 @@ impl Symmetry {
         })
     }
 
+    /// The subgroup with so many rotations, a divisor of those of the group, and as many reflections if the group has any.
+    #[must_use]
+    pub(crate) fn subgroup(&self, rotations: usize) -> Self {
+        let axis = self
+            .axes()
+            .first()
+            .map(|(_, direction)| turns_of(*direction));
+        build(self.center, rotations, axis)
+    }
+
     /// Number of rotations in the group, the identity included.
     #[must_use]
     pub fn rotations(&self) -> usize {

@@ -32,8 +32,7 @@ pub use waves::{Grid, WallPlace, WaveValues, wall_places};
 
 use crate::baseline::{Weyl, weyl};
 use crate::billiard::{
-    Condition, Domain, Irrep, Symmetry, Vec2, build, centroid, check_declared,
-    is_rotationally_invariant,
+    Condition, Domain, Irrep, Symmetry, Vec2, build, centroid, is_rotationally_invariant,
 };
 use discretisation::{Discretisation, Found};
 use fields::Fields;
@@ -305,19 +304,8 @@ fn manageable(symmetry: &Symmetry) -> Symmetry {
     if rotations <= MOST_ROTATIONS {
         return symmetry.clone();
     }
-    let reflections = symmetry.order() > rotations;
     let divisor = (1..=MOST_ROTATIONS)
         .rev()
-        .find(|d| rotations.is_multiple_of(*d))
-        .unwrap_or(1);
-    let name = match (divisor, reflections) {
-        (1, true) => "reflection".to_owned(),
-        (1, false) => "none".to_owned(),
-        (2, true) => "rectangle".to_owned(),
-        (3, true) => "triangle".to_owned(),
-        (4, true) => "square".to_owned(),
-        (n, true) => format!("{n}-gon"),
-        (n, false) => format!("C{n}"),
-    };
-    check_declared(symmetry, &name).unwrap_or_else(|_| Symmetry::trivial())
+        .find(|divisor| rotations.is_multiple_of(*divisor));
+    symmetry.subgroup(divisor.unwrap_or(1))
 }
