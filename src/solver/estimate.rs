@@ -5,10 +5,10 @@
 //! Anal. 30 (1993) 921), here with the interior functions solved for exactly and the edge functions one by one.
 
 use super::dense::{self, Matrix, Symmetric};
-use super::elements::Function;
 use super::fields::Fields;
 use super::mesh::{Cell, Mesh};
 use super::space::{Leaf, Space};
+use faer::MatRef;
 use rayon::prelude::*;
 
 /// Degrees that are added to test the residual.
@@ -19,29 +19,39 @@ const SAFETY: f64 = 3.0;
 /// five hundred, that it is a sum over.
 const ROUNDING: f64 = 48.0;
 
-/// The functions of the next degrees on one leaf.
+/// The functions of the next degrees on the elements of one kind: new edge functions first, new interior functions behind.
 #[derive(Debug)]
 struct Surplus {
     /// For each function that the wave has: its place among those of the richer element.
     known: Vec<usize>,
-    /// Rows of the new functions, in the order of the columns.
-    new: Vec<usize>,
     /// Stiffness and mass between all functions of the richer element (rows) and the new ones (columns).
     stiffness: Matrix,
     mass: Matrix,
-    /// New edge functions: column, unknown, coefficient.
-    edges: Vec<(usize, usize, f64)>,
-    /// Columns of the new interior functions, the inverse of their stiffness, and its product with their coupling to the columns of
-    /// the edges.
-    interior: Vec<usize>,
+    /// Number of new edge functions.
+    rim: usize,
+    /// The inverse of the stiffness of the new interior functions, and its product with their coupling to the new edge functions.
     inverse: Matrix,
     coupling: Matrix,
+    /// Stiffness of each new edge function with the new interior functions solved for.
+    pivots: Vec<f64>,
+}
+
+/// A new edge function of a leaf holds `coefficient` times one unknown of the richer space.
+#[derive(Clone, Copy, Debug)]
+struct NewEdge {
+    /// Number of the new function.
+    column: usize,
+    unknown: usize,
+    coefficient: f64,
 }
 
 /// Estimates the errors of all waves of one space.
 #[derive(Debug)]
 pub(super) struct Estimator {
-    surplus: Vec<Surplus>,
+    /// By the kinds of the elements of the richer space.
+    kinds: Vec<Surplus>,
+    /// Kind and new edge functions of every leaf.
+    leaves: Vec<(usize, Vec<NewEdge>)>,
     /// Stiffness of every unknown on an edge, its neighbourhood solved for.
     pivots: Vec<f64>,
 }
@@ -55,22 +65,31 @@ impl Estimator {
         degree: usize,
     ) -> Self {
         let richer = Space::new(mesh, cell, fields, degree, EXTRA);
-        let surplus: Vec<Surplus> = (0..space.leaves.len())
-            .into_par_iter()
-            .map(|leaf| surplus(space, &richer, leaf))
+        let kinds: Vec<Surplus> = richer
+            .kinds
+            .par_iter()
+            .map(|&element| Surplus::new(space, &richer, element))
+            .collect();
+        let leaves: Vec<(usize, Vec<NewEdge>)> = richer
+            .leaves
+            .iter()
+            .map(|leaf| {
+                let kind = richer.elements[leaf.element].kind;
+                (kind, new_edges(leaf, &kinds[kind]))
+            })
             .collect();
         let mut pivots = vec![0.0; richer.size];
-        for part in &surplus {
-            for (index, &(column, unknown, coefficient)) in part.edges.iter().enumerate() {
-                let mut pivot = part.stiffness[(part.new[column], column)];
-                for (row, &inner) in part.interior.iter().enumerate() {
-                    pivot -=
-                        part.stiffness[(part.new[inner], column)] * part.coupling[(row, index)];
-                }
-                pivots[unknown] += coefficient * coefficient * pivot;
+        for (kind, edges) in &leaves {
+            for edge in edges {
+                let weight = edge.coefficient * edge.coefficient;
+                pivots[edge.unknown] += weight * kinds[*kind].pivots[edge.column];
             }
         }
-        Self { surplus, pivots }
+        Self {
+            kinds,
+            leaves,
+            pivots,
+        }
     }
 
     /// Rayleigh quotients of the vectors in the rows, and their errors: discretisation and rounding.
@@ -83,11 +102,12 @@ impl Estimator {
         let values = energies.quotients();
         let mut on_edges = Matrix::zeros(count, self.pivots.len());
         let mut lowered = vec![0.0; count];
-        for (leaf, part) in space.leaves.iter().zip(&self.surplus) {
+        for (leaf, (kind, edges)) in space.leaves.iter().zip(&self.leaves) {
+            let part = &self.kinds[*kind];
             let local = widened(leaf, space, part, vectors);
             let residual = part.residual(&local, &values);
             part.add_interior(&residual, &mut lowered);
-            part.add_edges(&residual, &mut on_edges);
+            part.add_edges(edges, &residual, &mut on_edges);
         }
         for (unknown, &pivot) in self.pivots.iter().enumerate() {
             if pivot > 0.0 {
@@ -119,8 +139,8 @@ impl Surplus {
     }
 
     fn add_interior(&self, residual: &Matrix, lowered: &mut [f64]) {
-        let inner = super::factor::gather(residual, &self.interior);
-        let solved = dense::product(inner.as_ref(), self.inverse.as_ref());
+        let inner = self.interior(residual);
+        let solved = dense::product(inner, self.inverse.as_ref());
         for (row, sum) in lowered.iter_mut().enumerate() {
             for column in 0..inner.ncols() {
                 *sum += inner[(row, column)] * solved[(row, column)];
@@ -128,18 +148,22 @@ impl Surplus {
         }
     }
 
-    fn add_edges(&self, residual: &Matrix, on_edges: &mut Matrix) {
-        if self.edges.is_empty() {
+    fn add_edges(&self, edges: &[NewEdge], residual: &Matrix, on_edges: &mut Matrix) {
+        if edges.is_empty() {
             return;
         }
-        let inner = super::factor::gather(residual, &self.interior);
-        let taken = dense::product(inner.as_ref(), self.coupling.as_ref());
-        for (index, &(column, unknown, coefficient)) in self.edges.iter().enumerate() {
+        let taken = dense::product(self.interior(residual), self.coupling.as_ref());
+        for edge in edges {
             for row in 0..residual.nrows() {
-                on_edges[(row, unknown)] +=
-                    coefficient * (residual[(row, column)] - taken[(row, index)]);
+                let own = residual[(row, edge.column)] - taken[(row, edge.column)];
+                on_edges[(row, edge.unknown)] += edge.coefficient * own;
             }
         }
+    }
+
+    /// The columns of the new interior functions.
+    fn interior<'a>(&self, residual: &'a Matrix) -> MatRef<'a, f64> {
+        residual.subcols(self.rim, residual.ncols() - self.rim)
     }
 }
 
@@ -211,74 +235,71 @@ fn sizes(matrix: &Matrix) -> Matrix {
     Matrix::from_fn(matrix.nrows(), matrix.ncols(), |i, j| matrix[(i, j)].abs())
 }
 
-fn surplus(space: &Space, richer: &Space, index: usize) -> Surplus {
-    let wide = &richer.leaves[index];
-    let rich = &richer.elements[wide.element];
-    let function = |column: usize| richer.reference.functions[column];
-    let known: Vec<usize> = known_places(space, richer, index);
-    let mut is_new = vec![true; rich.selection.len()];
-    for &place in &known {
-        is_new[place] = false;
-    }
-    let new: Vec<usize> = (0..is_new.len()).filter(|&place| is_new[place]).collect();
-    let columns = |matrix: &Matrix| super::factor::gather(matrix, &new);
-    let stiffness = columns(
-        &rich
-            .matrices
-            .combine(&richer.reference, &rich.selection, 1.0, 0.0),
-    );
-    let mass = columns(
-        &rich
-            .matrices
-            .combine(&richer.reference, &rich.selection, 0.0, 1.0),
-    );
-    let edges: Vec<(usize, usize, f64)> = wide
-        .entries
-        .iter()
-        .filter(|entry| {
-            is_new[entry.local]
-                && matches!(
-                    function(rich.selection.columns[entry.local]),
-                    Function::Edge { .. }
-                )
-        })
-        .map(|entry| {
-            let column = new.iter().position(|&i| i == entry.local).unwrap_or(0);
-            (column, wide.rim[entry.slot], entry.coefficient)
-        })
-        .collect();
-    let interior: Vec<usize> = (0..new.len())
-        .filter(|&i| {
-            matches!(
-                function(rich.selection.columns[new[i]]),
-                Function::Interior { .. }
-            )
-        })
-        .collect();
-    let own = Matrix::from_fn(interior.len(), interior.len(), |i, j| {
-        stiffness[(new[interior[i]], interior[j])]
-    });
-    let across = Matrix::from_fn(interior.len(), edges.len(), |i, j| {
-        stiffness[(new[interior[i]], edges[j].0)]
-    });
-    let inverse = Symmetric::new(own.as_ref()).inverse();
-    Surplus {
-        coupling: dense::product(inverse.as_ref(), across.as_ref()),
-        known,
-        new,
-        stiffness,
-        mass,
-        edges,
-        interior,
-        inverse,
+impl Surplus {
+    fn new(space: &Space, richer: &Space, element: usize) -> Self {
+        let rich = &richer.elements[element];
+        let known = known_places(space, richer, element);
+        let new = new_places(&known, rich.selection.len());
+        let rim = new.iter().take_while(|&&place| place < rich.rim).count();
+        let columns = |a, b| {
+            let matrix = rich
+                .matrices
+                .combine(&richer.reference, &rich.selection, a, b);
+            super::factor::gather(&matrix, &new)
+        };
+        let stiffness = columns(1.0, 0.0);
+        let inside = new.len() - rim;
+        let own = Matrix::from_fn(inside, inside, |i, j| stiffness[(new[rim + i], rim + j)]);
+        let across = Matrix::from_fn(inside, rim, |i, j| stiffness[(new[rim + i], j)]);
+        let inverse = Symmetric::new(own.as_ref()).inverse();
+        let coupling = dense::product(inverse.as_ref(), across.as_ref());
+        let pivot = |edge: usize| {
+            let solved: f64 = (0..inside)
+                .map(|row| across[(row, edge)] * coupling[(row, edge)])
+                .sum();
+            stiffness[(new[edge], edge)] - solved
+        };
+        Self {
+            pivots: (0..rim).map(pivot).collect(),
+            mass: columns(0.0, 1.0),
+            known,
+            stiffness,
+            rim,
+            inverse,
+            coupling,
+        }
     }
 }
 
+/// Places of the richer element's functions, `count` of them, that the wave does not have.
+fn new_places(known: &[usize], count: usize) -> Vec<usize> {
+    let mut is_new = vec![true; count];
+    for &place in known {
+        is_new[place] = false;
+    }
+    (0..count).filter(|&place| is_new[place]).collect()
+}
+
+/// What the new edge functions of a leaf of the richer space are made of.
+fn new_edges(leaf: &Leaf, kind: &Surplus) -> Vec<NewEdge> {
+    let new = new_places(&kind.known, kind.stiffness.nrows());
+    leaf.entries
+        .iter()
+        .filter_map(|entry| {
+            let column = new.iter().position(|&place| place == entry.local)?;
+            Some(NewEdge {
+                column,
+                unknown: leaf.rim[entry.slot],
+                coefficient: entry.coefficient,
+            })
+        })
+        .collect()
+}
+
 /// For each function of an element its place in the richer one.
-fn known_places(space: &Space, richer: &Space, index: usize) -> Vec<usize> {
-    let leaf = &space.leaves[index];
-    let element = &space.elements[leaf.element];
-    let rich = &richer.elements[leaf.element];
+fn known_places(space: &Space, richer: &Space, element: usize) -> Vec<usize> {
+    let rich = &richer.elements[element];
+    let element = &space.elements[element];
     // Interior functions of one degree stand in the same order in both.
     let mut used = vec![false; rich.selection.len()];
     element
