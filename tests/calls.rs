@@ -1,5 +1,9 @@
 //! Calls of the program: wrong ones, each with its message, and what good ones print and write.
 
+#[path = "common/folder.rs"]
+mod folder;
+
+use folder::names;
 use serde_json::Value;
 use std::fs;
 use std::io::Write;
@@ -656,22 +660,6 @@ fn settings_reach_the_shape() {
         .expect("the area is there");
     let expected = 1.0 + std::f64::consts::PI;
     assert!((area[1].parse::<f64>().expect("a number") - expected).abs() < 1e-12);
-}
-
-/// Names in a folder, sorted.
-fn names(folder: &Path) -> Vec<String> {
-    let mut names: Vec<String> = fs::read_dir(folder)
-        .expect("a folder")
-        .map(|entry| {
-            entry
-                .expect("an entry")
-                .file_name()
-                .to_string_lossy()
-                .into_owned()
-        })
-        .collect();
-    names.sort();
-    names
 }
 
 #[test]

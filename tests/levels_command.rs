@@ -1,5 +1,9 @@
 //! The command `levels`: what it prints and writes, interruptions, and what `density` makes of its lists.
 
+#[path = "common/folder.rs"]
+mod folder;
+
+use folder::names;
 use serde_json::Value;
 use std::fs;
 use std::path::Path;
@@ -294,22 +298,11 @@ fn waves_are_written_with_their_numbers() {
     let out = path(folder.path());
     let disk = ["levels", DISK, "--k", "0:6", "--accuracy", "1e-8"];
     answer(&disk, &["--vectors", out, "--only", "2-3,6"]);
-    let mut names: Vec<String> = fs::read_dir(out)
-        .expect("a folder")
-        .map(|entry| {
-            entry
-                .expect("an entry")
-                .file_name()
-                .to_string_lossy()
-                .into_owned()
-        })
-        .collect();
-    names.sort();
     let expected: Vec<String> = ["000002", "000003", "000006"]
         .iter()
         .flat_map(|n| ["-walls.csv", ".csv", ".svg"].map(|ending| format!("wave-{n}{ending}")))
         .collect();
-    assert_eq!(names, expected);
+    assert_eq!(names(folder.path()), expected);
     // The sixth wave is J0(k r), up to its sign and norm: largest at the centre, and with no angle in it.
     let grid = fs::read_to_string(folder.path().join("wave-000006.csv")).expect("text");
     assert!(grid.starts_with("x,y,u\n"));

@@ -29,6 +29,8 @@ pub(crate) enum Command {
     /// List the periodic orbits up to a length and a number of bounces
     Orbits(Orbits),
     /// Predict density and staircase of levels, and compare them with a list
+    ///
+    /// Without a window: from the 10th to the 250th level, or to the end of the list.
     Density(Density),
     /// Compute levels directly, with an error for each and a count of all
     Levels(Levels),
@@ -113,13 +115,10 @@ pub(crate) struct Orbits {
     pub(crate) limits: OrbitLimits,
 }
 
+/// A window, in whichever variable the system file names.
 #[derive(Debug, Args)]
-pub(crate) struct Density {
-    /// System file
-    #[arg(value_name = "SYSTEM.toml")]
-    pub(crate) system: PathBuf,
-    /// Window in k, for files whose levels are wave numbers [default: from the 10th to the 250th level, or to the end of
-    /// the list]
+pub(crate) struct WindowOptions {
+    /// Window in k, for files whose levels are wave numbers
     #[arg(long, value_name = "FROM:TO", allow_hyphen_values = true)]
     pub(crate) k: Option<String>,
     /// Window in energy, for files whose levels are energies
@@ -128,6 +127,15 @@ pub(crate) struct Density {
     /// Window in frequency, for files whose levels are frequencies
     #[arg(long, value_name = "FROM:TO", allow_hyphen_values = true)]
     pub(crate) frequency: Option<String>,
+}
+
+#[derive(Debug, Args)]
+pub(crate) struct Density {
+    /// System file
+    #[arg(value_name = "SYSTEM.toml")]
+    pub(crate) system: PathBuf,
+    #[command(flatten)]
+    pub(crate) window: WindowOptions,
     /// Standard deviation of the Gaussian in mean spacings at the middle of the window [default: 2, or more
     /// where the longest orbit asks for it]
     #[arg(
@@ -155,15 +163,8 @@ pub(crate) struct Levels {
     /// System file
     #[arg(value_name = "SYSTEM.toml")]
     pub(crate) system: PathBuf,
-    /// Window in k, for files whose levels are wave numbers
-    #[arg(long, value_name = "FROM:TO", allow_hyphen_values = true)]
-    pub(crate) k: Option<String>,
-    /// Window in energy, for files whose levels are energies
-    #[arg(long, value_name = "FROM:TO", allow_hyphen_values = true)]
-    pub(crate) energy: Option<String>,
-    /// Window in frequency, for files whose levels are frequencies
-    #[arg(long, value_name = "FROM:TO", allow_hyphen_values = true)]
-    pub(crate) frequency: Option<String>,
+    #[command(flatten)]
+    pub(crate) window: WindowOptions,
     /// Relative accuracy of k that is aimed at, from 1e-13 to 1e-3; coarser is faster [default: 1e-11]
     #[arg(long, value_name = "A", allow_hyphen_values = true)]
     pub(crate) accuracy: Option<String>,

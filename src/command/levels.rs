@@ -29,14 +29,10 @@ pub(super) fn run(typed: &Levels, options: &Options) -> Result<Answer, CommandEr
     let files = WaveFiles::from_arguments(typed)?;
     let subject = Subject::load(&typed.system, options)?;
     let units = &subject.system.units;
-    let asked = window::asked(
-        [&typed.k, &typed.energy, &typed.frequency],
-        &subject,
-        Begin::AtZero,
-    )?
-    .ok_or(CommandError::NoWindow {
-        expected: units.window_option(),
-    })?;
+    let asked =
+        window::asked(&typed.window, &subject, Begin::AtZero)?.ok_or(CommandError::NoWindow {
+            expected: units.window_option(),
+        })?;
     let task = Task {
         window: Window {
             from: units.k(asked.from),

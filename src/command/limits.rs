@@ -68,11 +68,7 @@ impl Wishes {
                 .transpose()
         };
         Ok(Self {
-            window: window::asked(
-                [&typed.k, &typed.energy, &typed.frequency],
-                subject,
-                Begin::AboveZero,
-            )?,
+            window: window::asked(&typed.window, subject, Begin::AboveZero)?,
             smoothing: positive("smoothing", &typed.smoothing)?,
             width: positive("smoothing-width", &typed.smoothing_width)?,
             ..Self::of_limits(&typed.limits)?

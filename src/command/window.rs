@@ -1,5 +1,6 @@
 //! Windows of levels in the unit of the system file.
 
+use super::arguments::WindowOptions;
 use super::error::CommandError;
 use super::subject::Subject;
 use super::text::significant;
@@ -37,12 +38,16 @@ impl Window {
 
 /// The window that was typed as --k, --energy or --frequency, which must be the variable of the file.
 pub(super) fn asked(
-    [k, energy, frequency]: [&Option<String>; 3],
+    typed: &WindowOptions,
     subject: &Subject,
     begin: Begin,
 ) -> Result<Option<Window>, CommandError> {
     let units = &subject.system.units;
-    let windows = [("k", k), ("energy", energy), ("frequency", frequency)];
+    let windows = [
+        ("k", &typed.k),
+        ("energy", &typed.energy),
+        ("frequency", &typed.frequency),
+    ];
     let mut given = windows
         .iter()
         .filter_map(|(option, text)| text.as_deref().map(|text| (*option, text)));
