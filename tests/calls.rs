@@ -7,7 +7,6 @@ use folder::names;
 use serde_json::Value;
 use std::fs;
 use std::io::Write;
-use std::path::Path;
 use std::process::{Command, Output, Stdio};
 
 /// Least number of wrong calls that are kept here.

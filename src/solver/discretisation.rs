@@ -175,27 +175,21 @@ impl Discretisation {
 fn well_placed(part: &Part, [from, to]: [f64; 2]) -> (f64, Factor<'_>) {
     /// Largest entry at which enough digits are left; most shifts stay below.
     const LARGEST: f64 = 1e4;
-    /// Distances from the middle in widths of the range.
-    const PLACES: [f64; 5] = [0.0, 0.03, -0.03, 0.07, -0.07];
-    let mut best: Option<(f64, Factor<'_>)> = None;
+    /// Distances from the middle, in widths of the range, that are tried where the middle does not do.
+    const PLACES: [f64; 4] = [0.03, -0.03, 0.07, -0.07];
+    let middle = 0.5 * (from + to);
+    let at = |shift: f64| (shift, Factor::new(&part.space, &part.tree, shift));
+    let mut best = at(middle);
     for place in PLACES {
-        let shift = 0.5 * (from + to) + place * (to - from);
-        let factor = Factor::new(&part.space, &part.tree, shift);
-        let fine = factor.largest < LARGEST;
-        if best
-            .as_ref()
-            .is_none_or(|(_, other)| factor.largest < other.largest)
-        {
-            best = Some((shift, factor));
-        }
-        if fine {
+        if best.1.largest < LARGEST {
             break;
         }
+        let next = at(middle + place * (to - from));
+        if next.1.largest < best.1.largest {
+            best = next;
+        }
     }
-    best.unwrap_or_else(|| {
-        let shift = 0.5 * (from + to);
-        (shift, Factor::new(&part.space, &part.tree, shift))
-    })
+    best
 }
 
 /// What errors of the solutions leave in the Rayleigh quotients.
