@@ -19,6 +19,7 @@
 
 pub mod baseline;
 pub mod billiard;
+mod dense;
 pub mod levels;
 pub mod orbit;
 pub mod report;

@@ -4,6 +4,7 @@
 //! * [`staircase`] and [`density`] convolve levels with a Gaussian, [`mean_staircase`] averages their staircase.
 //! * [`residual_rms`] measures what is left between levels and a prediction.
 
+pub mod audit;
 mod list;
 mod parse;
 mod residual;

@@ -1,7 +1,7 @@
 //! One mesh with the unknowns of every symmetry class on it, good up to some k.
 
 use super::Sector;
-use super::dense::Matrix;
+use crate::dense::Matrix;
 use super::dissection::Dissection;
 use super::estimate::Estimator;
 use super::factor::{Factor, count_below};

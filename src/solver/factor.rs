@@ -1,6 +1,6 @@
 //! Factorisation of stiffness - shift x mass along the dissection tree, its inertia, and solutions.
 
-use super::dense::{self, Into, Matrix, Symmetric};
+use crate::dense::{self, Into, Matrix, Symmetric};
 use super::dissection::{Below, Dissection, Node};
 use super::space::Space;
 use faer::MatRef;

@@ -3,7 +3,7 @@
 //! Ericsson & Ruhe, Math. Comp. 35 (1980) 1251; the block form finds levels of any multiplicity up to its width, and blocks
 //! are kept orthogonal to all earlier ones.
 
-use super::dense::{self, Into, Matrix};
+use crate::dense::{self, Into, Matrix};
 use super::factor::Factor;
 use super::space::Space;
 

@@ -11,7 +11,6 @@
 //! Domain, Symmetry -> Cell -> Mesh -> Space -> Dissection -> Factor -> Lanczos pairs -> Estimator -> Levels
 //! ```
 
-mod dense;
 mod discretisation;
 mod dissection;
 mod elements;

@@ -1,6 +1,6 @@
 //! The unknowns: which functions of which triangles are one and the same, and which vanish on the boundary.
 
-use super::dense::Matrix;
+use crate::dense::Matrix;
 use super::elements::{ElementMatrices, Function, Reference, Selection};
 use super::fields::{Direction, Fields};
 use super::mesh::{Cell, Mesh, Side, Triangle, same_length};

@@ -1,6 +1,6 @@
 //! Jacobi polynomials and the quadrature rules built on their zeros.
 
-use super::super::dense::{self, Matrix};
+use crate::dense::{self, Matrix};
 
 /// Coefficients of the recurrence P_{n+1} = (slope x + offset) P_n - back P_{n-1} of the Jacobi polynomials P_n^{(a, b)}.
 ///

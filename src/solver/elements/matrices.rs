@@ -1,6 +1,6 @@
 //! Stiffness and mass matrices of single triangles.
 
-use super::super::dense::{self, Into, Matrix};
+use crate::dense::{self, Into, Matrix};
 use super::super::mesh::{Mesh, Triangle};
 use super::basis::Function;
 use super::reference::Reference;

@@ -1,6 +1,6 @@
 //! What all triangles of one polynomial degree share: functions, quadrature and the matrices of the reference triangle.
 
-use super::super::dense::{self, Into, Matrix};
+use crate::dense::{self, Into, Matrix};
 use super::basis::{Function, evaluate, functions};
 use super::jacobi::gauss;
 use super::matrices::Selection;

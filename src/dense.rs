@@ -7,19 +7,19 @@ use faer::diag::Diag;
 use faer::dyn_stack::{MemBuffer, MemStack};
 use faer::linalg::cholesky::lblt::factor::{self, LbltParams, PivotingStrategy};
 use faer::linalg::cholesky::lblt::solve;
-use faer::linalg::solvers::SelfAdjointEigen;
+use faer::linalg::solvers::{Llt, SelfAdjointEigen};
 use faer::linalg::triangular_solve::{
-    solve_unit_lower_triangular_in_place, solve_unit_upper_triangular_in_place,
+    solve_lower_triangular_in_place, solve_upper_triangular_in_place, solve_unit_lower_triangular_in_place, solve_unit_upper_triangular_in_place,
 };
 use faer::perm::PermRef;
 use faer::{Accum, Auto, MatMut, MatRef, Par, Side, Spec};
 
 /// A dense matrix, column by column.
-pub(super) type Matrix = faer::Mat<f64>;
+pub(crate) type Matrix = faer::Mat<f64>;
 
 /// What happens to the numbers that a product is written over.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub(super) enum Into {
+pub(crate) enum Into {
     /// They are replaced.
     Fresh,
     /// The product is added to them.
@@ -27,7 +27,7 @@ pub(super) enum Into {
 }
 
 /// target (+)= factor a b.
-pub(super) fn multiply(
+pub(crate) fn multiply(
     target: MatMut<'_, f64>,
     into: Into,
     a: MatRef<'_, f64>,
@@ -42,14 +42,32 @@ pub(super) fn multiply(
 }
 
 /// a b.
-pub(super) fn product(a: MatRef<'_, f64>, b: MatRef<'_, f64>) -> Matrix {
+pub(crate) fn product(a: MatRef<'_, f64>, b: MatRef<'_, f64>) -> Matrix {
     let mut result = Matrix::zeros(a.nrows(), b.ncols());
     multiply(result.as_mut(), Into::Fresh, a, b, 1.0);
     result
 }
 
+/// Scalar product; eight partial sums, in a fixed order, that a processor does at once.
+pub(crate) fn dot(a: &[f64], b: &[f64]) -> f64 {
+    let mut sums = [0.0; 8];
+    let (a_chunks, b_chunks) = (a.chunks_exact(8), b.chunks_exact(8));
+    let rest: f64 = a_chunks
+        .remainder()
+        .iter()
+        .zip(b_chunks.remainder())
+        .map(|(a, b)| a * b)
+        .sum();
+    for (a, b) in a_chunks.zip(b_chunks) {
+        for (sum, (a, b)) in sums.iter_mut().zip(a.iter().zip(b)) {
+            *sum += a * b;
+        }
+    }
+    sums.iter().sum::<f64>() + rest
+}
+
 /// Eigenvalues (ascending) and eigenvectors (columns) of a symmetric matrix, read from its lower half.
-pub(super) fn eigen(matrix: &Matrix) -> (Vec<f64>, Matrix) {
+pub(crate) fn eigen(matrix: &Matrix) -> (Vec<f64>, Matrix) {
     match SelfAdjointEigen::new(matrix.as_ref(), Side::Lower) {
         Ok(found) => (
             found.S().column_vector().iter().copied().collect(),
@@ -67,7 +85,7 @@ pub(super) fn eigen(matrix: &Matrix) -> (Vec<f64>, Matrix) {
 ///
 /// Bounded Bunch-Kaufman ("rook") pivoting (Ashcraft, Grimes & Lewis, SIAM J. Matrix Anal. Appl. 20 (1998) 513): with plain partial
 /// pivoting entries of L may grow without bound.
-pub(super) struct Symmetric {
+pub(crate) struct Symmetric {
     lower: Matrix,
     diagonal: Diag<f64>,
     beside: Diag<f64>,
@@ -77,7 +95,7 @@ pub(super) struct Symmetric {
 
 impl Symmetric {
     /// Factorises a matrix, read from its lower half.
-    pub(super) fn new(matrix: MatRef<'_, f64>) -> Self {
+    pub(crate) fn new(matrix: MatRef<'_, f64>) -> Self {
         let size = matrix.nrows();
         let mut parameters = <LbltParams as Auto<f64>>::auto();
         parameters.pivoting = PivotingStrategy::Rook;
@@ -115,7 +133,7 @@ impl Symmetric {
     }
 
     /// Number of negative eigenvalues: the signs of the pivots are those of the eigenvalues (Sylvester's law of inertia).
-    pub(super) fn negative(&self) -> usize {
+    pub(crate) fn negative(&self) -> usize {
         let (mut index, mut negative) = (0, 0);
         while index < self.lower.nrows() {
             let (a, b) = (self.diagonal[index], self.beside[index]);
@@ -135,7 +153,7 @@ impl Symmetric {
         negative
     }
 
-    pub(super) fn inverse(&self) -> Matrix {
+    pub(crate) fn inverse(&self) -> Matrix {
         let size = self.lower.nrows();
         self.solve(Matrix::identity(size, size).as_ref())
     }
@@ -144,7 +162,7 @@ impl Symmetric {
     ///
     /// C^T A^-1 C is the product of the second's transpose with the first: as stable as elimination row by row, where a product of
     /// C with solutions would lose digits if entries are large.
-    pub(super) fn halves(&self, right: MatRef<'_, f64>) -> (Matrix, Matrix) {
+    pub(crate) fn halves(&self, right: MatRef<'_, f64>) -> (Matrix, Matrix) {
         let mut lower = Matrix::zeros(right.nrows(), right.ncols());
         for column in 0..right.ncols() {
             for (row, &source) in self.forward.iter().enumerate() {
@@ -160,7 +178,7 @@ impl Symmetric {
     }
 
     /// A^-1 C from B^-1 L^-1 P C.
-    pub(super) fn finish(&self, scaled: &Matrix) -> Matrix {
+    pub(crate) fn finish(&self, scaled: &Matrix) -> Matrix {
         let mut upper = scaled.clone();
         solve_unit_upper_triangular_in_place(self.lower.transpose(), upper.as_mut(), Par::Seq);
         let mut solution = Matrix::zeros(upper.nrows(), upper.ncols());
@@ -193,7 +211,7 @@ impl Symmetric {
     }
 
     /// Solutions for the columns of a matrix.
-    pub(super) fn solve(&self, right: MatRef<'_, f64>) -> Matrix {
+    pub(crate) fn solve(&self, right: MatRef<'_, f64>) -> Matrix {
         let size = self.lower.nrows();
         let mut solution = right.to_owned();
         let mut memory = MemBuffer::new(solve::solve_in_place_scratch::<usize, f64>(
@@ -211,6 +229,50 @@ impl Symmetric {
             MemStack::new(&mut memory),
         );
         solution
+    }
+}
+
+/// The factor L of a positive definite matrix C = L L^T.
+///
+/// With C a covariance, L^-1 x has independent components of variance one ("whitening").
+pub(crate) struct Cholesky {
+    lower: Matrix,
+}
+
+impl Cholesky {
+    /// Factorises a matrix, read from its lower half; nothing where it is not positive definite.
+    pub(crate) fn new(matrix: MatRef<'_, f64>) -> Option<Self> {
+        let factor = Llt::new(matrix, Side::Lower).ok()?;
+        Some(Self {
+            lower: factor.L().to_owned(),
+        })
+    }
+
+    /// L^-1 times the columns of a matrix.
+    pub(crate) fn whitened(&self, columns: MatRef<'_, f64>) -> Matrix {
+        let mut result = columns.to_owned();
+        solve_lower_triangular_in_place(self.lower.as_ref(), result.as_mut(), Par::Seq);
+        result
+    }
+
+    /// L^-1 times one column.
+    pub(crate) fn whitened_column(&self, column: &[f64]) -> Vec<f64> {
+        let whitened = self.whitened(MatRef::from_column_major_slice(column, column.len(), 1));
+        whitened.col_as_slice(0).to_vec()
+    }
+
+    /// C^-1 times the columns of a matrix.
+    pub(crate) fn solved(&self, columns: &Matrix) -> Matrix {
+        let mut result = self.whitened(columns.as_ref());
+        solve_upper_triangular_in_place(self.lower.transpose(), result.as_mut(), Par::Seq);
+        result
+    }
+
+    /// ln det C.
+    pub(crate) fn log_determinant(&self) -> f64 {
+        (0..self.lower.nrows())
+            .map(|index| 2.0 * self.lower[(index, index)].ln())
+            .sum()
     }
 }
 

@@ -1,0 +1,197 @@
+//! Noise and faults of a record, found together.
+//!
+//! How probable a set of faults is depends on the noise, and what noise there is shows only when the faults have been taken out.
+//! So both are found in turns: first with all expected errors of the orbit sum enlarged by one factor, from a large one down to
+//! where the record becomes most probable; then with the spectrum of the noise learned from what the faults leave.
+
+use super::decode::decode;
+use super::noise::{Expected, Noise, Waves};
+use super::prediction::Prediction;
+use super::record::Predicted;
+use super::search::{Ban, Explanation, Scene, Step};
+use crate::dense::{Cholesky, Matrix};
+
+/// Factors of the expected variances that are tried, in descending order.
+const HEATS: [f64; 6] = [1e4, 1e3, 1e2, 1e1, 1.0, 0.1];
+/// Rounds of learning the noise.
+const ROUNDS: usize = 6;
+/// Gain in evidence, in natural units, below which learning has settled.
+const SETTLED: f64 = 1.0;
+/// Rounds of questioning single faults, each of which may turn up a better explanation.
+const QUESTIONS: usize = 8;
+/// Mean spacings about a fault within which another of its kind is taken for the same one.
+pub(super) const SAME: f64 = 0.5;
+
+/// What the explanation of a record needs besides the levels.
+pub(super) struct Setting<'a> {
+    pub(super) prediction: &'a Prediction,
+    pub(super) predicted: &'a Predicted,
+    pub(super) waves: &'a Waves,
+    /// Covariance of the record that is known beforehand: errors of the levels, trends that are to be allowed.
+    pub(super) fixed: Matrix,
+}
+
+/// A fault, as the search sees it.
+#[derive(Clone, Copy, Debug)]
+pub(super) struct Found {
+    pub(super) step: Step,
+    pub(super) k: f64,
+    /// Standard deviation of k; of a false level, as if it could be anywhere.
+    pub(super) error: f64,
+    /// Logarithm of the odds against the best explanation without it.
+    pub(super) odds: f64,
+}
+
+/// A record with its faults and its noise.
+pub(super) struct Explained {
+    pub(super) found: Vec<Found>,
+    /// The record without the faults.
+    pub(super) rest: Vec<f64>,
+    /// Standard deviation of the noise at the points.
+    pub(super) noise: Vec<f64>,
+    /// Standard deviation of single levels, in mean spacings, as it shows in the record.
+    pub(super) level_error: f64,
+    /// Logarithm of the probability of the record, up to a constant of the points.
+    pub(super) evidence: f64,
+    pub(super) whitener: Cholesky,
+}
+
+struct Best<'a> {
+    steps: Vec<Step>,
+    evidence: f64,
+    noise: Noise<'a>,
+}
+
+/// Finds faults and noise. Nothing comes back where no noise model could be factorised (numbers that are not finite).
+pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> Option<Explained> {
+    let predicted = setting.predicted;
+    let span = predicted.span;
+    let weyl = &setting.prediction.weyl;
+    let density = |k: f64| positive_density(weyl.density(k, 0.0), span.to - span.from);
+    let expected = Expected {
+        prediction: setting.prediction,
+        middle: 0.5 * (span.from + span.to),
+    };
+    let single = shifts(predicted, levels, &density);
+    let scene = |whitener: &Cholesky| {
+        Scene::new(span, &predicted.points, record, levels, whitener, &density)
+    };
+    let max_length = setting.prediction.max_length;
+    let mut noise = Noise::new(setting.waves, predicted, &expected, setting.fixed.clone(), single);
+    let mut best: Option<Best> = None;
+    let mut steps = Vec::new();
+    for heat in HEATS {
+        noise.heat(heat, max_length);
+        let whitener = noise.whitener()?;
+        let found = scene(&whitener).search(steps, None);
+        let evidence = found.value - 0.5 * whitener.log_determinant();
+        steps = found.steps;
+        if best.as_ref().is_some_and(|best| best.evidence >= evidence) {
+            break;
+        }
+        best = Some(Best {
+            steps: steps.clone(),
+            evidence,
+            noise: noise.clone(),
+        });
+    }
+    let mut best = best?;
+    noise = best.noise.clone();
+    steps = best.steps.clone();
+    for _ in 0..ROUNDS {
+        let whitener = noise.whitener()?;
+        let scene = scene(&whitener);
+        let found = better(scene.search(steps, None), scene.search(decode(&scene), None));
+        let evidence = found.value - 0.5 * whitener.log_determinant();
+        let rest = scene.rest_of(record, &found.steps);
+        steps = found.steps;
+        let gained = evidence - best.evidence;
+        if gained > 0.0 {
+            best = Best {
+                steps: steps.clone(),
+                evidence,
+                noise: noise.clone(),
+            };
+        } else if gained < -SETTLED {
+            break;
+        }
+        noise.learn(&whitener, &rest);
+    }
+    let whitener = best.noise.whitener()?;
+    let scene = scene(&whitener);
+    let (found, odds) = questioned(&scene, scene.search(best.steps, None), &density);
+    let errors = scene.errors(&found);
+    Some(Explained {
+        rest: scene.rest_of(record, &found.steps),
+        noise: best.noise.deviations(),
+        level_error: best.noise.level_error(),
+        evidence: found.value - 0.5 * whitener.log_determinant(),
+        found: found
+            .steps
+            .iter()
+            .zip(errors.iter().zip(odds))
+            .map(|(&step, (&error, odds))| Found {
+                step,
+                k: scene.place(step),
+                error,
+                odds,
+            })
+            .collect(),
+        whitener,
+    })
+}
+
+fn better(a: Explanation, b: Explanation) -> Explanation {
+    if b.value > a.value { b } else { a }
+}
+
+/// Looks for the best explanation without each fault in turn; one that turns out better than the explanation replaces it.
+fn questioned(
+    scene: &Scene<'_>,
+    mut found: Explanation,
+    density: &dyn Fn(f64) -> f64,
+) -> (Explanation, Vec<f64>) {
+    let mut odds = Vec::new();
+    for _ in 0..QUESTIONS {
+        odds.clear();
+        let mut replaced = None;
+        for (index, &step) in found.steps.iter().enumerate() {
+            let mut others = found.steps.clone();
+            others.remove(index);
+            let ban = Ban {
+                step,
+                reach: SAME / density(scene.place(step)),
+            };
+            let without = scene.search(others, Some(ban));
+            if without.value > found.value {
+                replaced = Some(without);
+                break;
+            }
+            odds.push(found.value - without.value);
+        }
+        match replaced {
+            Some(better) => found = scene.search(better.steps, None),
+            None => break,
+        }
+    }
+    odds.resize(found.steps.len(), 0.0);
+    (found, odds)
+}
+
+/// What a shift of each level by its mean spacing does to the record.
+fn shifts(predicted: &Predicted, levels: &[f64], density: &dyn Fn(f64) -> f64) -> Matrix {
+    let mut columns = Matrix::zeros(predicted.points.len(), levels.len());
+    for (column, &level) in levels.iter().enumerate() {
+        let spacing = 1.0 / density(level);
+        let column = columns.col_as_slice_mut(column);
+        for (value, &k) in column.iter_mut().zip(&predicted.points) {
+            *value = spacing * predicted.span.step_slope(level, k);
+        }
+    }
+    columns
+}
+
+/// The smooth density, where it is one: close to k = 0 it falls below zero, and a level there counts as one in the whole span.
+pub(super) fn positive_density(density: f64, width: f64) -> f64 {
+    density.max(1.0 / width)
+}
