@@ -5,5 +5,5 @@ mod boundary;
 mod saturation;
 mod weyl;
 
-pub use saturation::saturation_fluctuation;
+pub use saturation::{orthogonal_form_factor, saturation_fluctuation};
 pub use weyl::{Contribution, Omission, Weyl, WeylTerm, weyl};

@@ -31,15 +31,19 @@ pub fn saturation_fluctuation(mean_density: f64, shortest_length: f64) -> f64 {
     // In x = ln tau: K/tau^2 dtau = K(e^x) e^(-x) dx; the form factor has a kink at tau = 1.
     let part = |from: f64, to: f64| {
         let panels = ((to - from) * PANELS_PER_LOGARITHM).ceil().max(1.0) as usize;
-        quadrature::integrate(from, to, panels, |x| form_factor(x.exp()) * (-x).exp())
+        quadrature::integrate(from, to, panels, |x| {
+            orthogonal_form_factor(x.exp()) * (-x).exp()
+        })
     };
     let kink = 0.0_f64.clamp(from, to);
     let rest = (-to).exp();
     ((part(from, kink) + part(kink, to) + rest) / (2.0 * PI * PI)).sqrt()
 }
 
-/// Form factor of the Gaussian orthogonal ensemble.
-fn form_factor(tau: f64) -> f64 {
+/// Form factor of the Gaussian orthogonal ensemble at tau, in Heisenberg times: 2 tau - tau ln(1 + 2 tau) up to tau = 1 and
+/// 2 - tau ln((2 tau + 1)/(2 tau - 1)) beyond (Mehta, Random Matrices).
+#[must_use]
+pub fn orthogonal_form_factor(tau: f64) -> f64 {
     if tau < 1.0 {
         2.0 * tau - tau * (2.0 * tau).ln_1p()
     } else {
@@ -67,10 +71,10 @@ mod tests {
 
     #[test]
     fn the_form_factor_is_continuous_and_tends_to_one() {
-        assert!((form_factor(1.0 - 1e-12) - form_factor(1.0)).abs() < 1e-11);
-        assert!((form_factor(1.0) - (2.0 - 3.0_f64.ln())).abs() < 1e-15);
+        assert!((orthogonal_form_factor(1.0 - 1e-12) - orthogonal_form_factor(1.0)).abs() < 1e-11);
+        assert!((orthogonal_form_factor(1.0) - (2.0 - 3.0_f64.ln())).abs() < 1e-15);
         // 1 - 1/(12 tau^2) + ...
-        assert!((form_factor(100.0) - 1.0 + 1.0 / 120_000.0).abs() < 1e-9);
+        assert!((orthogonal_form_factor(100.0) - 1.0 + 1.0 / 120_000.0).abs() < 1e-9);
     }
 
     #[test]

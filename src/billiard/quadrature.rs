@@ -14,6 +14,14 @@ const NODES: [(f64, f64); 5] = [
 /// Panels on a curve; analytic curves are integrated to rounding by then (a test halves the panels and compares).
 const PANELS: usize = 64;
 
+/// Places and weights of the rule on [from, to].
+pub(crate) fn nodes(from: f64, to: f64) -> impl Iterator<Item = (f64, f64)> {
+    let (middle, half) = (0.5 * (from + to), 0.5 * (to - from));
+    NODES
+        .into_iter()
+        .flat_map(move |(x, w)| [-x, x].map(|x| (middle + half * x, half * w)))
+}
+
 /// Integral of `value` over the parameter interval [from, to] with the given number of panels.
 pub(crate) fn integrate(
     from: f64,

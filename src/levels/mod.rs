@@ -3,12 +3,14 @@
 //! * [`read`] reads a [`LevelList`] from csv or white-space text.
 //! * [`staircase`] and [`density`] convolve levels with a Gaussian, [`mean_staircase`] averages their staircase.
 //! * [`residual_rms`] measures what is left between levels and a prediction.
+//! * [`statistics`] measures how the levels of an unfolded list are spread.
 
 pub mod audit;
 mod list;
 mod parse;
 mod residual;
 mod smooth;
+pub mod statistics;
 
 pub use list::{LevelList, ListColumn, ListError, ListNote};
 pub use parse::read;

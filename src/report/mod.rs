@@ -1,4 +1,5 @@
-//! Pictures, written as SVG: the shape, its orbits, density and staircase, levels, waves.
+//! Pictures, written as SVG: the shape, its orbits, density and staircase, levels and their
+//! statistics, waves.
 //!
 //! Plain data goes in, the text of a self-contained SVG document comes out; nothing here writes files. One unit of a
 //! picture is one point (1/72 inch), and every picture is 180 mm wide: the text width of a printed
@@ -16,6 +17,7 @@ mod orbits;
 mod outline;
 mod panel;
 mod shape;
+mod statistics;
 #[cfg(test)]
 mod testing;
 mod thinning;
@@ -25,4 +27,7 @@ pub use density::{DensityCurves, density_picture};
 pub use levels::{LevelCurves, levels_picture};
 pub use orbits::{LARGEST_GRID, OrbitDrawing, OrbitStroke, orbits_picture};
 pub use shape::shape_picture;
+pub use statistics::{
+    CurveKind, MeasuredCurve, StatisticsCurve, StatisticsCurves, statistics_picture,
+};
 pub use wave::{WaveDrawing, wave_picture};

@@ -3,10 +3,12 @@
 use super::term::{Amplitude, Term};
 use crate::baseline::saturation_fluctuation;
 use num_complex::Complex64;
+use serde::Serialize;
 use std::f64::consts::PI;
 
 /// How the levels beyond the reach of the known orbits are spread.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize)]
+#[serde(rename_all = "snake_case")]
 pub enum Statistics {
     /// Uncorrelated, as the levels of integrable shapes: form factor 1 (Berry & Tabor, Proc. R. Soc. A 356, 1977).
     Uncorrelated,
@@ -92,18 +94,36 @@ pub fn mean_fluctuation(
 /// Mean square of the sum of terms near k: half the squared amplitude of each length.
 #[must_use]
 pub fn mean_square(terms: &[Term], k: f64) -> f64 {
-    let mut waves: Vec<(f64, Complex64)> = terms
+    waves(terms, k).iter().map(|wave| wave.mean_square).sum()
+}
+
+/// All terms of one length together, near some k.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Wave {
+    /// The length.
+    pub length: f64,
+    /// Mean square of the wave in the staircase: half its squared amplitude.
+    pub mean_square: f64,
+}
+
+/// The terms as waves near k, by length; those of one length interfere.
+#[must_use]
+pub fn waves(terms: &[Term], k: f64) -> Vec<Wave> {
+    let mut amplitudes: Vec<(f64, Complex64)> = terms
         .iter()
         .map(|term| (term.length, amplitude(term, k)))
         .collect();
-    waves.sort_by(|a, b| a.0.total_cmp(&b.0));
-    waves
+    amplitudes.sort_by(|a, b| a.0.total_cmp(&b.0));
+    amplitudes
         .chunk_by(|a, b| b.0 - a.0 <= SAME_LENGTH * b.0)
         .map(|together| {
             let sum: Complex64 = together.iter().map(|(_, amplitude)| amplitude).sum();
-            0.5 * sum.norm_sqr()
+            Wave {
+                length: together[0].0,
+                mean_square: 0.5 * sum.norm_sqr(),
+            }
         })
-        .sum()
+        .collect()
 }
 
 /// A with term = Re[A exp(i k l)] near k.

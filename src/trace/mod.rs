@@ -17,7 +17,7 @@ mod sum;
 mod term;
 
 pub use fluctuation::{
-    ClassDensity, Statistics, expected_fluctuation, mean_fluctuation, mean_square,
+    ClassDensity, Statistics, Wave, expected_fluctuation, mean_fluctuation, mean_square, waves,
 };
 pub use smoothed::{SmoothedTerms, Value};
 pub use sum::{DEFAULT_ACCURACY, OrbitSum, UniformGrid, sum_at, sum_on_grid};
