@@ -12,6 +12,7 @@ mod density;
 mod direct;
 mod error;
 mod fluctuation;
+mod given;
 mod journal;
 mod levels;
 mod limits;
