@@ -3,7 +3,9 @@
 //! * [`read`] reads a [`LevelList`] from csv or white-space text.
 //! * [`staircase`] and [`density`] convolve levels with a Gaussian, [`mean_staircase`] averages their staircase.
 //! * [`residual_rms`] measures what is left between levels and a prediction.
+//! * [`lengths`] compares levels and terms by their length spectra.
 
+pub mod lengths;
 mod list;
 mod parse;
 mod residual;

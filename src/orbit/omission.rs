@@ -48,8 +48,18 @@ impl fmt::Display for OmissionKind {
     }
 }
 
+impl OmissionKind {
+    /// Does what shows at a length show at its multiples too? Repetitions of orbits are listed themselves.
+    fn repeats(self) -> bool {
+        matches!(
+            self,
+            Self::Corners | Self::StripCorners | Self::StripGrazing | Self::Families
+        )
+    }
+}
+
 /// An estimate of what the sum leaves out: amplitude x k^power levels at the given length.
-#[derive(Clone, Copy, Debug, PartialEq)]
+#[derive(Clone, Debug, PartialEq)]
 pub struct Omission {
     /// Reason.
     pub kind: OmissionKind,
@@ -57,6 +67,8 @@ pub struct Omission {
     pub count: usize,
     /// Length of the shortest of them, at which it would show in a length spectrum.
     pub length: f64,
+    /// Lengths of all of them, shortest first.
+    pub lengths: Vec<f64>,
     /// Amplitude of the largest of them, in levels at k = 1.
     pub amplitude: f64,
     /// Power of k.
@@ -71,6 +83,19 @@ impl Omission {
         self.amplitude * k.powf(self.power) * (-0.5 * (s * self.length).powi(2)).exp()
     }
 
+    /// Would it show within `distance` of a length?
+    #[must_use]
+    pub fn shows_at(&self, length: f64, distance: f64) -> bool {
+        self.lengths.iter().any(|own| {
+            let times = if self.kind.repeats() {
+                (length / own).round().max(1.0)
+            } else {
+                1.0
+            };
+            (times * own - length).abs() <= distance
+        })
+    }
+
     /// One kind's omissions as one: the shortest length and the largest amplitude.
     fn of(kind: OmissionKind, power: f64, items: impl Iterator<Item = (f64, f64)>) -> Option<Self> {
         let mut joined: Option<Self> = None;
@@ -79,12 +104,17 @@ impl Omission {
                 kind,
                 count: 0,
                 length,
+                lengths: Vec::new(),
                 amplitude,
                 power,
             });
+            entry.lengths.push(length);
             entry.count += 1;
             entry.length = entry.length.min(length);
             entry.amplitude = entry.amplitude.max(amplitude);
+        }
+        if let Some(entry) = &mut joined {
+            entry.lengths.sort_by(f64::total_cmp);
         }
         joined
     }
@@ -96,6 +126,7 @@ impl From<&LeftOut> for Omission {
             kind: OmissionKind::Tori(left_out.kind),
             count: 1,
             length: left_out.length,
+            lengths: vec![left_out.length],
             amplitude: left_out.amplitude,
             power: left_out.power,
         }
