@@ -26,10 +26,6 @@ pub(super) struct GivenLevels {
     /// The same levels in the unit of the system file.
     pub(super) values: Vec<f64>,
     /// Uncertainty of each level in k, where the list states it or they were computed.
-    #[allow(
-        dead_code,
-        reason = "read by the commands that weigh levels by their errors"
-    )]
     pub(super) errors: Option<Vec<f64>>,
     /// Width of each level in k (a resonance's), where the list states it.
     #[allow(

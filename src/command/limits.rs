@@ -1,6 +1,6 @@
 //! Window, smoothing and orbit limits: what was asked for, and what is chosen where nothing was.
 
-use super::arguments::{Density, OrbitLimits};
+use super::arguments::{Density, Lengths, OrbitLimits};
 use super::error::CommandError;
 use super::note::Note;
 use super::subject::Subject;
@@ -14,6 +14,9 @@ use orbitsum::orbit::Limits;
 /// Levels between which the default window lies, by the smooth count: above the first few, where the semiclassical terms are
 /// rough, and short enough that a default is quick.
 const DEFAULT_LEVELS: (f64, f64) = (10.0, 250.0);
+/// Level at which the default window of a length spectrum begins, by the smooth count: its window function weighs what lies near
+/// its ends, where semiclassical terms are rough, hardly at all.
+const FIRST_LEVEL_OF_LENGTHS: f64 = 5.0;
 /// Default smoothing in mean spacings: short orbits describe a staircase smoothed like this to a few hundredths of a level.
 const DEFAULT_SMOOTHING: f64 = 2.0;
 /// Smoothing width x longest orbit at which the shortest orbit that is left out counts exp(-9/2) = 0.011 of its term.
@@ -37,7 +40,7 @@ pub(super) struct Plan {
     pub(super) middle: f64,
     /// Mean spacing there, in k.
     pub(super) spacing: f64,
-    /// Standard deviation of the Gaussian in k.
+    /// Standard deviation of the Gaussian in k, 0 where nothing is smoothed.
     pub(super) width: f64,
     /// How far orbits are looked for.
     pub(super) limits: Limits,
@@ -75,6 +78,14 @@ impl Wishes {
         })
     }
 
+    /// Numbers of the command `lengths`.
+    pub(super) fn of_lengths(typed: &Lengths, subject: &Subject) -> Result<Self, CommandError> {
+        Ok(Self {
+            window: window::asked(&typed.window, subject, Begin::AboveZero)?,
+            ..Self::of_limits(&typed.limits)?
+        })
+    }
+
     /// Numbers of the command `orbits`.
     pub(super) fn of_limits(typed: &OrbitLimits) -> Result<Self, CommandError> {
         Ok(Self {
@@ -99,48 +110,121 @@ pub(super) fn plan(
     wishes: &Wishes,
     list_end: Option<f64>,
 ) -> Result<Plan, CommandError> {
-    let weyl = subject.weyl();
-    let mut choices = Vec::new();
-    let window = wishes.window.unwrap_or_else(|| {
-        let (window, why) = default_window(subject, &weyl, list_end);
-        choices.push(("window".to_owned(), why));
-        window
-    });
-    if wishes.window.is_some() {
-        choices.push((
-            "window".to_owned(),
-            format!("{} (as asked)", window.words(subject)),
-        ));
-    }
-    let units = &subject.system.units;
-    let middle = 0.5 * (units.k(window.from) + units.k(window.to));
-    let spacing = weyl.mean_spacing(middle);
-    if !spacing.is_finite() {
-        return Err(CommandError::BelowFirstLevel {
-            option: units.window_option(),
-            at: units.value(middle),
-            first: units.value(weyl.k_at_count(1.0)),
-        });
-    }
-    let mut plan = Plan {
-        window,
-        middle,
-        spacing,
-        width: 0.0,
-        limits: Limits {
-            max_length: 0.0,
-            max_bounces: 0,
-        },
-        choices,
-        notes: Vec::new(),
-    };
+    let (window, why) = wishes.window.map_or_else(
+        || default_window(subject, &subject.weyl(), list_end),
+        |window| (window, asked_words(window, subject)),
+    );
+    let mut plan = Plan::new(subject, window, why)?;
     plan.choose_smoothing(subject, wishes);
     plan.choose_bounces(subject, wishes);
     plan.warn(subject);
     Ok(plan)
 }
 
+/// How far a list reaches, in the file's unit.
+#[derive(Clone, Copy, Debug)]
+pub(super) struct Reach {
+    /// From here on it is complete.
+    pub(super) complete_from: f64,
+    /// Its first level.
+    pub(super) first: f64,
+    /// Its last level.
+    pub(super) last: f64,
+}
+
+/// Chooses what was not asked for a length spectrum: its window function ends where the list does.
+pub(super) fn plan_lengths(
+    subject: &Subject,
+    wishes: &Wishes,
+    list: &Reach,
+) -> Result<Plan, CommandError> {
+    let units = &subject.system.units;
+    let default = Window {
+        from: rounded(units.value(subject.weyl().k_at_count(FIRST_LEVEL_OF_LENGTHS))),
+        to: list.last,
+    };
+    let wanted = wishes.window.unwrap_or(default);
+    let window = Window {
+        from: wanted.from.max(list.complete_from),
+        to: wanted.to.min(list.last),
+    };
+    if window.from >= window.to {
+        return Err(CommandError::ListOutsideWindow {
+            begin: subject.level(wanted.from, DIGITS),
+            first: subject.level(list.first, DIGITS),
+            last: subject.level(list.last, DIGITS),
+        });
+    }
+    let why = match wishes.window {
+        Some(asked) if asked == window => asked_words(window, subject),
+        Some(_) => format!(
+            "{} (as far as the list reaches into what was asked)",
+            window.words(subject)
+        ),
+        None if window.from > default.from => {
+            format!("{} (all of the list)", window.words(subject))
+        }
+        None => format!(
+            "{} (from about the {FIRST_LEVEL_OF_LENGTHS:.0}th level to the end of the list)",
+            window.words(subject)
+        ),
+    };
+    let mut plan = Plan::new(subject, window, why)?;
+    let wanted = ENOUGH / (DEFAULT_SMOOTHING * plan.spacing);
+    let (longest, why) = match wishes.length {
+        Some(length) => (length, "as asked".to_owned()),
+        None => (
+            longest_default(subject, wanted),
+            "what the default smoothing of `density` asks for, if it is quick to find".to_owned(),
+        ),
+    };
+    plan.choose_longest(subject, longest, &why);
+    plan.choose_bounces(subject, wishes);
+    plan.notes
+        .extend(units.warning(plan.window.to).map(Note::NotFlat));
+    Ok(plan)
+}
+
+fn asked_words(window: Window, subject: &Subject) -> String {
+    format!("{} (as asked)", window.words(subject))
+}
+
 impl Plan {
+    /// A plan that knows its window only.
+    fn new(subject: &Subject, window: Window, why: String) -> Result<Self, CommandError> {
+        let units = &subject.system.units;
+        let weyl = subject.weyl();
+        let middle = 0.5 * (units.k(window.from) + units.k(window.to));
+        let spacing = weyl.mean_spacing(middle);
+        if !spacing.is_finite() {
+            return Err(CommandError::BelowFirstLevel {
+                option: units.window_option(),
+                at: units.value(middle),
+                first: units.value(weyl.k_at_count(1.0)),
+            });
+        }
+        Ok(Self {
+            window,
+            middle,
+            spacing,
+            width: 0.0,
+            limits: Limits {
+                max_length: 0.0,
+                max_bounces: 0,
+            },
+            choices: vec![("window".to_owned(), why)],
+            notes: Vec::new(),
+        })
+    }
+
+    fn choose_longest(&mut self, subject: &Subject, length: f64, why: &str) {
+        self.limits.max_length = length;
+        self.choices.push((
+            "longest orbit".into(),
+            format!("{} ({why})", subject.length(length, DIGITS)),
+        ));
+    }
+
     /// Width and longest orbit: each follows from the other where only one is given.
     fn choose_smoothing(&mut self, subject: &Subject, wishes: &Wishes) {
         let units = &subject.system.units;
@@ -170,7 +254,6 @@ impl Plan {
                 ),
             ),
         };
-        self.limits.max_length = length;
         let from_length = asked.is_none() && (wishes.length.is_some() || ENOUGH / wanted > most);
         self.width = if from_length { ENOUGH / length } else { wanted };
         let reason = if asked.is_some() {
@@ -195,10 +278,7 @@ impl Plan {
                 subject.level(self.width_in_units(subject), DIGITS),
             ),
         ));
-        self.choices.push((
-            "longest orbit".into(),
-            format!("{} ({why})", subject.length(length, DIGITS)),
-        ));
+        self.choose_longest(subject, length, &why);
     }
 
     fn choose_bounces(&mut self, subject: &Subject, wishes: &Wishes) {

@@ -58,6 +58,18 @@ impl Noise {
         self.factor * self.at(length)
     }
 
+    /// Was it measured below the shortest orbit?
+    #[must_use]
+    pub fn is_measured(&self) -> bool {
+        self.cells >= LEAST_CELLS
+    }
+
+    /// Shortest orbit below which it can be measured.
+    #[must_use]
+    pub fn shortest_measurable(&self, taper: &Taper) -> f64 {
+        2.0 * taper.main_lobe() + LEAST_CELLS * taper.cell()
+    }
+
     pub(super) fn measure(data: &Measured<'_>) -> Self {
         let begin = data.lengths.first().copied().unwrap_or(0.0);
         let cells = ((data.known_to - begin) / data.taper.cell()).max(1.0);

@@ -79,6 +79,14 @@ pub struct LengthComparison {
     pub explained: Option<f64>,
 }
 
+impl LengthComparison {
+    /// What peaks and differences at a length must pass to be listed, but for side lobes.
+    #[must_use]
+    pub fn least_listed(&self, length: f64) -> f64 {
+        self.noise.threshold(length).max(LEAST)
+    }
+}
+
 impl LengthSpectrum {
     /// Compares levels and terms. `shortest` is the smallest length at which anything is expected, of a term or of what is known
     /// to be left out; `known_to` the length up to which all terms are there.
