@@ -21,10 +21,9 @@ use orbitsum::trace::Term;
 /// Least number of levels: with n of them about n/2.35 lengths are told apart below that of the mean spacing (2 pi times the
 /// density), four with this many.
 const LEAST_LEVELS: usize = 10;
-/// A list with this many times the levels that are expected is another one; no measurement adds half of all.
-const MOST_LEVELS: f64 = 1.5;
-/// A list with less than this part of the levels that are expected is another one, or of no use.
-const LEAST_PART: f64 = 0.5;
+/// A list with less or more than this part of the levels that are expected is another one: with a third missing or false, their
+/// noise hides every orbit that is not a wide family.
+const COUNT: std::ops::RangeInclusive<f64> = 0.7..=1.3;
 /// Levels by which a staircase strays from the smooth count without any level missing, and the part of all that is not worth a
 /// warning.
 const STRAY: (f64, f64) = (4.0, 0.01);
@@ -132,10 +131,9 @@ fn check_count(
     enough(format!("the window ({words})"), found)?;
     let weyl = subject.weyl();
     let expected = weyl.count(taper.to, 0.0) - weyl.count(taper.from, 0.0);
-    let stray = STRAY.0;
-    if found as f64 > MOST_LEVELS * expected + stray
-        || (found as f64) < LEAST_PART * expected - stray
-    {
+    let least = COUNT.start() * expected - STRAY.0;
+    let most = COUNT.end() * expected + STRAY.0;
+    if !(least..=most).contains(&(found as f64)) {
         return Err(CommandError::AnotherList {
             window: words,
             found,

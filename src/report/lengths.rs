@@ -151,7 +151,10 @@ fn difference_panel(canvas: &mut Canvas, curves: &LengthCurves<'_>, x: Axis, top
             Sample::Line(DIFFERENCE),
             "complex difference of the two".to_owned(),
         ),
-        (Sample::Line(NOISE), "not listed below".to_owned()),
+        (
+            Sample::Line(NOISE),
+            "not listed below, nor below a tenth of the peaks".to_owned(),
+        ),
     ];
     let high = largest(curves.difference).max(f64::MIN_POSITIVE);
     let y = Axis::new(0.0, high / (1.0 - 2.0 * LABEL_SHARE));

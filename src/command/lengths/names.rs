@@ -3,7 +3,8 @@
 use super::Findings;
 use crate::command::orbits::torus_word;
 use crate::command::text::{counted, significant};
-use orbitsum::orbit::{SourcedTerm, TermSource};
+use orbitsum::levels::lengths::Side;
+use orbitsum::orbit::{OmissionKind, SourcedTerm, TermSource};
 
 /// Digits of the lengths of orbits.
 const DIGITS: usize = 6;
@@ -53,8 +54,9 @@ fn name(sourced: &SourcedTerm<'_>) -> String {
     )
 }
 
-/// What the sum leaves out or describes badly near a length, largest first.
-pub(super) fn causes_at(findings: &Findings<'_>, length: f64) -> Vec<String> {
+/// What the sum leaves out or describes badly near a length, largest first. Of orbits that diffract at corners only the shortest from
+/// each corner to itself are known: where nothing else explains what only the levels show, longer ones may.
+pub(super) fn causes_at(findings: &Findings<'_>, length: f64, side: Side) -> Vec<String> {
     let near = 0.5 * findings.spectrum.taper.resolution();
     let k = findings.plan.middle;
     let mut kinds: Vec<(f64, String)> = findings
@@ -67,5 +69,13 @@ pub(super) fn causes_at(findings: &Findings<'_>, length: f64) -> Vec<String> {
     kinds.sort_by(|a, b| b.0.total_cmp(&a.0));
     let mut words: Vec<String> = kinds.into_iter().map(|(_, words)| words).collect();
     words.dedup();
+    let diffracts = findings
+        .catalogue
+        .omissions
+        .iter()
+        .any(|omission| omission.kind == OmissionKind::Corners && omission.length < length);
+    if words.is_empty() && side == Side::Levels && diffracts {
+        words.push("perhaps a longer orbit that diffracts at corners".into());
+    }
     words
 }

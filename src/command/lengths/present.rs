@@ -48,7 +48,7 @@ pub(super) fn answer(findings: &Findings<'_>) -> Answer {
         .iter()
         .map(|misfit| Named {
             orbit: orbit_at(findings, misfit.length, misfit.size),
-            causes: causes_at(findings, misfit.length),
+            causes: causes_at(findings, misfit.length, misfit.side),
             what: *misfit,
         })
         .collect();

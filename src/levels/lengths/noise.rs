@@ -11,8 +11,9 @@ use super::taper::Taper;
 const LEAST_CELLS: f64 = 2.0;
 /// Lower quartile of the modulus of complex noise in its standard deviations (real and imaginary part each): sqrt(2 ln(4/3)).
 const LOWER_QUARTILE: f64 = 0.758_528;
-/// Probability that noise alone passes the threshold anywhere.
-const FALSE_ALARM: f64 = 0.01;
+/// Probability that noise of known size passes the threshold anywhere. Its size is known to a fifth only, which makes it about a
+/// hundred times as frequent: one list in a hundred.
+const FALSE_ALARM: f64 = 1e-4;
 
 /// Noise of a length spectrum.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -79,32 +80,37 @@ impl Noise {
         let long_from =
             0.5 * (data.shortest.clamp(begin, data.known_to.max(begin)) + data.known_to);
         let long = part(data, long_from, data.known_to);
-        let at_long = quartile(&long) / LOWER_QUARTILE;
         let mut noise = Self {
             reference: mean(&long, |(length, _)| length).unwrap_or(data.known_to),
-            size: at_long,
+            size: quartile(&long) / LOWER_QUARTILE,
             power: 0.0,
             least: data.least,
             cells: extent.max(0.0),
             factor: (2.0 * (cells / FALSE_ALARM).ln()).sqrt(),
         };
-        if extent >= LEAST_CELLS
+        if noise.is_measured()
             && let (Some(square), Some(reference)) = (
                 mean(&quiet, |(_, size)| size * size),
                 mean(&quiet, |(length, _)| length),
             )
         {
-            let size = (0.5 * square).sqrt();
-            let ratio = (noise.reference / reference).ln();
-            // The root mean square of n complex values is too small by its part n^(-1/2) once in forty times.
-            let most = -(1.0 - extent.sqrt().recip()).ln() / ratio;
-            if ratio > 0.0 && size > 0.0 {
-                noise.power = ((at_long / size).ln() / ratio).clamp(-1.0, most);
-            }
-            noise.reference = reference;
-            noise.size = size;
+            noise.goes_through(reference, (0.5 * square).sqrt(), extent);
         }
         noise
+    }
+
+    /// Makes this noise, known at long lengths, the one measured over some cells about a shorter length as well: between a constant and
+    /// 1/l, and never growing with the length.
+    fn goes_through(&mut self, reference: f64, size: f64, cells: f64) {
+        // The root mean square of n complex values is too small by its part n^(-1/2) once in forty times.
+        let most = size / (1.0 - cells.sqrt().recip());
+        let at_long = self.size.min(most);
+        let ratio = (self.reference / reference).ln();
+        if at_long < size && ratio > 0.0 {
+            self.power = ((at_long / size).ln() / ratio).max(-1.0);
+        }
+        self.size = size.max(at_long);
+        self.reference = reference;
     }
 }
 

@@ -195,16 +195,25 @@ fn side(levels: f64, orbits: f64, difference: f64) -> Side {
     }
 }
 
-/// A local maximum: place and height of the parabola through three points, and the number of the middle one.
+/// A local maximum of length x size, where waves have theirs: beside a peak the size itself falls as 1/l, which would draw its maximum
+/// towards shorter lengths.
 struct Maximum {
+    /// Number of the middle one of three points.
     index: usize,
+    /// Place of the maximum of the parabola through them.
     place: f64,
+    /// Size there.
     height: f64,
 }
 
 fn maxima(lengths: &[f64], sizes: &[f64]) -> Vec<Maximum> {
+    let weighted: Vec<f64> = lengths
+        .iter()
+        .zip(sizes)
+        .map(|(length, size)| length * size)
+        .collect();
     let mut found = Vec::new();
-    for (index, window) in sizes.windows(3).enumerate() {
+    for (index, window) in weighted.windows(3).enumerate() {
         let &[before, top, after] = window else {
             continue;
         };
@@ -214,10 +223,11 @@ fn maxima(lengths: &[f64], sizes: &[f64]) -> Vec<Maximum> {
         let bend = before - 2.0 * top + after;
         let shift = 0.5 * (before - after) / bend;
         let step = lengths[index + 2] - lengths[index + 1];
+        let place = lengths[index + 1] + shift * step;
         found.push(Maximum {
             index: index + 1,
-            place: lengths[index + 1] + shift * step,
-            height: top - 0.25 * (before - after) * shift,
+            place,
+            height: (top - 0.25 * (before - after) * shift) / place,
         });
     }
     found
