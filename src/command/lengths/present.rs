@@ -361,18 +361,7 @@ fn result_lines(findings: &Findings<'_>, peaks: &[Named<Peak>]) -> Vec<(String, 
                 subject.length(comparison.compared_to, DIGITS)
             ),
         ),
-        (
-            "explained".into(),
-            comparison.explained.map_or_else(
-                || "nothing to explain".into(),
-                |part| {
-                    format!(
-                        "{} % of the squared spectrum of the levels by the orbits",
-                        significant(100.0 * part, 4)
-                    )
-                },
-            ),
-        ),
+        ("explained".into(), explained(comparison.explained)),
         (
             "peaks".into(),
             format!(
@@ -384,6 +373,20 @@ fn result_lines(findings: &Findings<'_>, peaks: &[Named<Peak>]) -> Vec<(String, 
             ),
         ),
     ]
+}
+
+/// How much of the levels' spectrum the orbits explain.
+fn explained(part: Option<f64>) -> String {
+    match part {
+        None => "nothing to explain".into(),
+        Some(part) if part <= 0.0 => {
+            "nothing: levels and orbits differ by more than the levels alone".into()
+        }
+        Some(part) => format!(
+            "{} % of the squared spectrum of the levels by the orbits",
+            significant(100.0 * part, 4)
+        ),
+    }
 }
 
 fn metadata(findings: &Findings<'_>, completeness: &str) -> Map<String, Value> {
