@@ -64,12 +64,9 @@ impl Orbits {
 
     fn shortest(&self) -> f64 {
         let terms = self.terms.iter().map(|term| term.length);
-        let omissions = self
-            .catalogue
-            .omissions
-            .iter()
-            .map(|left_out| left_out.length);
-        terms.chain(omissions).fold(f64::INFINITY, f64::min)
+        let omissions = self.catalogue.omissions.iter();
+        let left_out = omissions.flat_map(|left_out| &left_out.lengths);
+        terms.chain(left_out.copied()).fold(f64::INFINITY, f64::min)
     }
 
     fn compare(&self, levels: &[f64], taper: Taper) -> LengthComparison {

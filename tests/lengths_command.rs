@@ -130,10 +130,7 @@ fn strips_that_diffract_are_named() {
     }
     let corners = at(&found["unmatched"], 8_f64.sqrt(), 0.03).expect("a diffracted orbit");
     assert_eq!(corners["side"], "levels");
-    assert_eq!(
-        corners["cause"],
-        "perhaps a longer orbit that diffracts at corners"
-    );
+    assert_eq!(corners["cause"], "orbits that diffract at corners");
 }
 
 /// Beyond the longest orbit less a peak's half width at its foot nothing is said to be missing.

@@ -173,6 +173,11 @@ fn nothing_resolved(subject: &Subject, plan: &Plan, taper: &Taper) -> CommandErr
 /// The smallest length at which anything is expected: a term, or something that the terms leave out.
 fn shortest(catalogue: &Catalogue, terms: &[Term]) -> f64 {
     let terms = terms.iter().map(|term| term.length);
-    let omissions = catalogue.omissions.iter().map(|omission| omission.length);
-    terms.chain(omissions).fold(f64::INFINITY, f64::min)
+    let omissions = catalogue
+        .omissions
+        .iter()
+        .flat_map(|left_out| &left_out.lengths);
+    terms
+        .chain(omissions.copied())
+        .fold(f64::INFINITY, f64::min)
 }
