@@ -1,13 +1,15 @@
 //! `lengths`: the length spectrum of a list of levels beside that of the orbits.
 
 mod names;
+mod plan;
 mod present;
+mod tables;
 
 use super::answer::Answer;
 use super::arguments::Lengths;
 use super::error::CommandError;
 use super::given::GivenLevels;
-use super::limits::{self, Plan, Reach, Wishes};
+use super::limits::{Plan, Wishes};
 use super::note::Note;
 use super::options::Options;
 use super::orbits;
@@ -17,8 +19,9 @@ use super::text::counted;
 use orbitsum::levels::lengths::{LengthComparison, LengthInput, LengthSpectrum, Taper};
 use orbitsum::orbit::{Catalogue, ClassWeights, SourcedTerm, sourced_terms};
 use orbitsum::trace::Term;
+use plan::Reach;
 
-/// Least number of levels: with n of them about n/2.35 lengths are told apart below that of the mean spacing (2 pi times the
+/// Least number of levels: with n of them about n/2.3 lengths are told apart below that of the mean spacing (2 pi times the
 /// density), four with this many.
 const LEAST_LEVELS: usize = 10;
 /// A list with less or more than this part of the levels that are expected is another one: with a third missing or false, their
@@ -36,7 +39,7 @@ pub(super) fn run(typed: &Lengths, options: &Options) -> Result<Answer, CommandE
     subject.check_class_of_orbits()?;
     let given = GivenLevels::read(&typed.levels, &subject)?;
     enough("the list".into(), given.k.len())?;
-    let plan = limits::plan_lengths(&subject, &wishes, &reach(&given))?;
+    let plan = plan::plan(&subject, &wishes, &reach(&given))?;
     let taper = taper(&subject, &plan);
     let expected = check_count(&subject, &plan, &taper, &given)?;
     check_resolution(&subject, &plan, &taper)?;

@@ -14,11 +14,8 @@ use orbitsum::orbit::Limits;
 /// Levels between which the default window lies, by the smooth count: above the first few, where the semiclassical terms are
 /// rough, and short enough that a default is quick.
 const DEFAULT_LEVELS: (f64, f64) = (10.0, 250.0);
-/// Level at which the default window of a length spectrum begins, by the smooth count: its window function weighs what lies near
-/// its ends, where semiclassical terms are rough, hardly at all.
-const FIRST_LEVEL_OF_LENGTHS: f64 = 5.0;
 /// Default smoothing in mean spacings: short orbits describe a staircase smoothed like this to a few hundredths of a level.
-const DEFAULT_SMOOTHING: f64 = 2.0;
+pub(super) const DEFAULT_SMOOTHING: f64 = 2.0;
 /// Smoothing width x longest orbit at which the shortest orbit that is left out counts exp(-9/2) = 0.011 of its term.
 pub(super) const ENOUGH: f64 = 3.0;
 /// Rounding of width x length that is no reason for a warning.
@@ -53,12 +50,12 @@ pub(super) struct Plan {
 /// Numbers that were asked for.
 #[derive(Clone, Copy, Debug, Default)]
 pub(super) struct Wishes {
-    window: Option<Window>,
+    pub(super) window: Option<Window>,
     /// In mean spacings.
     smoothing: Option<f64>,
     /// In the file's unit.
     width: Option<f64>,
-    length: Option<f64>,
+    pub(super) length: Option<f64>,
     bounces: Option<usize>,
 }
 
@@ -121,77 +118,17 @@ pub(super) fn plan(
     Ok(plan)
 }
 
-/// How far a list reaches, in the file's unit.
-#[derive(Clone, Copy, Debug)]
-pub(super) struct Reach {
-    /// From here on it is complete.
-    pub(super) complete_from: f64,
-    /// Its first level.
-    pub(super) first: f64,
-    /// Its last level.
-    pub(super) last: f64,
-}
-
-/// Chooses what was not asked for a length spectrum: its window function ends where the list does.
-pub(super) fn plan_lengths(
-    subject: &Subject,
-    wishes: &Wishes,
-    list: &Reach,
-) -> Result<Plan, CommandError> {
-    let units = &subject.system.units;
-    let default = Window {
-        from: rounded(units.value(subject.weyl().k_at_count(FIRST_LEVEL_OF_LENGTHS))),
-        to: list.last,
-    };
-    let wanted = wishes.window.unwrap_or(default);
-    let window = Window {
-        from: wanted.from.max(list.complete_from),
-        to: wanted.to.min(list.last),
-    };
-    if window.from >= window.to {
-        return Err(CommandError::ListOutsideWindow {
-            begin: subject.level(wanted.from, DIGITS),
-            first: subject.level(list.first, DIGITS),
-            last: subject.level(list.last, DIGITS),
-        });
-    }
-    let why = match wishes.window {
-        Some(asked) if asked == window => asked_words(window, subject),
-        Some(_) => format!(
-            "{} (as far as the list reaches into what was asked)",
-            window.words(subject)
-        ),
-        None if window.from > default.from => {
-            format!("{} (all of the list)", window.words(subject))
-        }
-        None => format!(
-            "{} (from about the {FIRST_LEVEL_OF_LENGTHS:.0}th level to the end of the list)",
-            window.words(subject)
-        ),
-    };
-    let mut plan = Plan::new(subject, window, why)?;
-    let wanted = ENOUGH / (DEFAULT_SMOOTHING * plan.spacing);
-    let (longest, why) = match wishes.length {
-        Some(length) => (length, "as asked".to_owned()),
-        None => (
-            longest_default(subject, wanted),
-            "what the default smoothing of `density` asks for, if it is quick to find".to_owned(),
-        ),
-    };
-    plan.choose_longest(subject, longest, &why);
-    plan.choose_bounces(subject, wishes);
-    plan.notes
-        .extend(units.warning(plan.window.to).map(Note::NotFlat));
-    Ok(plan)
-}
-
-fn asked_words(window: Window, subject: &Subject) -> String {
+pub(super) fn asked_words(window: Window, subject: &Subject) -> String {
     format!("{} (as asked)", window.words(subject))
 }
 
 impl Plan {
     /// A plan that knows its window only.
-    fn new(subject: &Subject, window: Window, why: String) -> Result<Self, CommandError> {
+    pub(super) fn new(
+        subject: &Subject,
+        window: Window,
+        why: String,
+    ) -> Result<Self, CommandError> {
         let units = &subject.system.units;
         let weyl = subject.weyl();
         let middle = 0.5 * (units.k(window.from) + units.k(window.to));
@@ -217,7 +154,7 @@ impl Plan {
         })
     }
 
-    fn choose_longest(&mut self, subject: &Subject, length: f64, why: &str) {
+    pub(super) fn choose_longest(&mut self, subject: &Subject, length: f64, why: &str) {
         self.limits.max_length = length;
         self.choices.push((
             "longest orbit".into(),
@@ -281,7 +218,7 @@ impl Plan {
         self.choose_longest(subject, length, &why);
     }
 
-    fn choose_bounces(&mut self, subject: &Subject, wishes: &Wishes) {
+    pub(super) fn choose_bounces(&mut self, subject: &Subject, wishes: &Wishes) {
         let default = Limits::up_to(self.limits.max_length, &subject.system.domain);
         self.limits.max_bounces = wishes.bounces.unwrap_or(default.max_bounces);
         let why = if wishes.bounces.is_some() {
@@ -328,7 +265,7 @@ impl Plan {
 const REACH: f64 = 5.0;
 
 /// The longest orbits, up to `wanted`, that are looked for without being asked.
-fn longest_default(subject: &Subject, wanted: f64) -> f64 {
+pub(super) fn longest_default(subject: &Subject, wanted: f64) -> f64 {
     let domain = &subject.system.domain;
     if subject.integrable.is_some() {
         // Tori are listed without a search.

@@ -1,32 +1,24 @@
-//! Tables, summary and picture of a length spectrum.
+//! Summary and picture of a length spectrum.
 
 use super::names::{causes_at, orbit_at};
+use super::tables::{
+    Named, SHOWN_PEAKS, misfit_lines, misfits_in_full, peak_table, peaks_in_full, shown_peaks,
+    spectrum_table,
+};
 use super::{Findings, STRAY, shortest};
 use crate::command::answer::Answer;
 use crate::command::completeness;
 use crate::command::note::Note;
-use crate::command::table::{Cell, Table};
 use crate::command::text::{counted, listed, significant};
 use orbitsum::levels::lengths::{Agreement, Misfit, Peak, Side, Taper};
 use orbitsum::report::{LengthCurves, LengthMark, lengths_picture};
 use orbitsum::trace::Term;
 use serde_json::{Map, Value, json};
 
-/// Rows of the table of peaks for people.
-const SHOWN_PEAKS: usize = 30;
-/// Rows of each table of differences for people.
-const SHOWN_MISFITS: usize = 10;
 /// Digits of lengths, which are good to a small part of the resolution.
-const LENGTH_DIGITS: usize = 4;
+pub(super) const LENGTH_DIGITS: usize = 4;
 /// Digits of amplitudes.
-const DIGITS: usize = 3;
-
-/// A peak or a difference with the words that belong to it.
-struct Named<T> {
-    what: T,
-    orbit: Option<String>,
-    causes: Vec<String>,
-}
+pub(super) const DIGITS: usize = 3;
 
 /// Everything that `lengths` has to say.
 pub(super) fn answer(findings: &Findings<'_>) -> Answer {
@@ -86,123 +78,6 @@ pub(super) fn answer(findings: &Findings<'_>) -> Answer {
         obsolete: None,
         failure: None,
     }
-}
-
-fn spectrum_table(findings: &Findings<'_>) -> Table {
-    let mut table = Table::new(&["length", "levels", "orbits"]);
-    let spectrum = findings.spectrum;
-    for ((length, levels), orbits) in spectrum
-        .lengths
-        .iter()
-        .zip(&spectrum.levels)
-        .zip(&spectrum.orbits)
-    {
-        table.push(vec![
-            (*length).into(),
-            levels.norm().into(),
-            orbits.norm().into(),
-        ]);
-    }
-    table
-}
-
-/// The peaks as scripts read them.
-fn peak_table(peaks: &[Named<Peak>]) -> Table {
-    let mut table = Table::new(&["length", "amplitude", "orbit"]);
-    for peak in peaks {
-        table.push(vec![
-            peak.what.length.into(),
-            peak.what.amplitude.into(),
-            peak.orbit.clone().into(),
-        ]);
-    }
-    table
-}
-
-fn peaks_in_full(peaks: &[Named<Peak>]) -> Table {
-    let mut table = Table::new(&[
-        "length",
-        "amplitude",
-        "orbit",
-        "orbits",
-        "difference",
-        "agreement",
-    ]);
-    for peak in peaks {
-        table.push(vec![
-            peak.what.length.into(),
-            peak.what.amplitude.into(),
-            peak.orbit.clone().into(),
-            peak.what.orbits.into(),
-            peak.what.difference.into(),
-            peak.what.agreement.map(agreement_word).into(),
-        ]);
-    }
-    table
-}
-
-fn misfits_in_full(misfits: &[Named<Misfit>]) -> Table {
-    let mut table = Table::new(&[
-        "length",
-        "levels",
-        "orbits",
-        "difference",
-        "side",
-        "orbit",
-        "cause",
-    ]);
-    for misfit in misfits {
-        let causes = misfit.causes.join("; ");
-        table.push(vec![
-            misfit.what.length.into(),
-            misfit.what.levels.into(),
-            misfit.what.orbits.into(),
-            misfit.what.size.into(),
-            side_word(misfit.what.side).into(),
-            misfit.orbit.clone().into(),
-            Some(causes).filter(|words| !words.is_empty()).into(),
-        ]);
-    }
-    table
-}
-
-fn agreement_word(agreement: Agreement) -> &'static str {
-    match agreement {
-        Agreement::Full => "full",
-        Agreement::Part => "part",
-        Agreement::None => "none",
-    }
-}
-
-fn side_word(side: Side) -> &'static str {
-    match side {
-        Side::Levels => "levels",
-        Side::Orbits => "orbits",
-        Side::Phase => "phase",
-    }
-}
-
-/// A number for people in a table that is aligned as words, so that it keeps its few digits.
-fn short(value: f64, digits: usize) -> Cell {
-    significant(value, digits).into()
-}
-
-/// The highest peaks, in the order of their lengths.
-fn shown_peaks(peaks: &[Named<Peak>]) -> Table {
-    let mut heights: Vec<f64> = peaks.iter().map(|peak| peak.what.amplitude).collect();
-    heights.sort_by(|a, b| b.total_cmp(a));
-    let least = heights.get(SHOWN_PEAKS - 1).copied().unwrap_or(0.0);
-    let mut table = Table::new(&["length", "amplitude", "difference", "agreement", "orbit"]);
-    for peak in peaks.iter().filter(|peak| peak.what.amplitude >= least) {
-        table.push(vec![
-            short(peak.what.length, LENGTH_DIGITS),
-            short(peak.what.amplitude, DIGITS),
-            short(peak.what.difference, DIGITS),
-            peak.what.agreement.map_or("beyond", agreement_word).into(),
-            peak.orbit.clone().into(),
-        ]);
-    }
-    table
 }
 
 /// Notes about the list; that it begins late does no harm here.
@@ -282,35 +157,6 @@ fn summary(
         }
     }
     text
-}
-
-/// Differences of one side, largest first.
-fn misfit_lines(mut misfits: Vec<&Named<Misfit>>) -> String {
-    misfits.sort_by(|a, b| b.what.size.total_cmp(&a.what.size));
-    let mut table = Table::new(&[
-        "length",
-        "levels",
-        "orbits",
-        "difference",
-        "orbit",
-        "likely cause",
-    ]);
-    for misfit in misfits.iter().take(SHOWN_MISFITS) {
-        let causes = misfit.causes.join("; ");
-        table.push(vec![
-            short(misfit.what.length, LENGTH_DIGITS),
-            short(misfit.what.levels, DIGITS),
-            short(misfit.what.orbits, DIGITS),
-            short(misfit.what.size, DIGITS),
-            misfit.orbit.clone().unwrap_or_else(|| "-".into()).into(),
-            causes.into(),
-        ]);
-    }
-    let more = match misfits.len().saturating_sub(SHOWN_MISFITS) {
-        0 => String::new(),
-        more => format!("and {more} smaller (lengths-unmatched.csv with --out)\n"),
-    };
-    table.aligned() + &more
 }
 
 fn result_lines(findings: &Findings<'_>, peaks: &[Named<Peak>]) -> Vec<(String, String)> {
