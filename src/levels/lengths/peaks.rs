@@ -117,12 +117,12 @@ impl LengthSpectrum {
             .map(|top| Peak {
                 length: top.place,
                 amplitude: top.height,
-                orbits: orbits[top.index],
-                difference: difference[top.index],
+                orbits: top.value(&orbits),
+                difference: top.value(&difference),
                 agreement: (top.place <= compared_to).then(|| {
                     agreement(
-                        difference[top.index],
-                        top.height.max(orbits[top.index]),
+                        top.value(&difference),
+                        top.height.max(top.value(&orbits)),
                         least_misfit[top.index],
                     )
                 }),
@@ -132,15 +132,15 @@ impl LengthSpectrum {
             .into_iter()
             .filter(|top| top.place <= compared_to)
             .filter(|top| {
-                let larger = levels[top.index].max(orbits[top.index]);
+                let larger = top.value(&levels).max(top.value(&orbits));
                 agreement(top.height, larger, least_misfit[top.index]) != Agreement::Full
             })
             .map(|top| Misfit {
                 length: top.place,
                 size: top.height,
-                levels: levels[top.index],
-                orbits: orbits[top.index],
-                side: side(levels[top.index], orbits[top.index], top.height),
+                levels: top.value(&levels),
+                orbits: top.value(&orbits),
+                side: side(top.value(&levels), top.value(&orbits), top.height),
             })
             .collect();
         LengthComparison {
@@ -202,8 +202,24 @@ struct Maximum {
     index: usize,
     /// Place of the maximum of the parabola through them.
     place: f64,
+    /// The same as a part of the distance to the next point.
+    shift: f64,
     /// Size there.
     height: f64,
+}
+
+impl Maximum {
+    /// Another modulus at the place, by the parabola through its three points.
+    fn value(&self, sizes: &[f64]) -> f64 {
+        let (before, here, after) = (
+            sizes[self.index - 1],
+            sizes[self.index],
+            sizes[self.index + 1],
+        );
+        let slope = 0.5 * (after - before);
+        let bend = 0.5 * (before - 2.0 * here + after);
+        (here + (slope + bend * self.shift) * self.shift).max(0.0)
+    }
 }
 
 fn maxima(lengths: &[f64], sizes: &[f64]) -> Vec<Maximum> {
@@ -227,6 +243,7 @@ fn maxima(lengths: &[f64], sizes: &[f64]) -> Vec<Maximum> {
         found.push(Maximum {
             index: index + 1,
             place,
+            shift,
             height: (top - 0.25 * (before - after) * shift) / place,
         });
     }
