@@ -16,6 +16,7 @@ const QUARTER: &str = "billiards/quarter-stadium.toml";
 const STADIUM: &str = "billiards/stadium.toml";
 const ELLIPSE: &str = "billiards/ellipse.toml";
 const DISK: &str = "billiards/disk.toml";
+const LIST: &str = "data/quarter-stadium.csv";
 const CAVITY: &str = "tests/cli/cavity.toml";
 const DOT: &str = "tests/cli/dot.toml";
 
@@ -391,6 +392,107 @@ const WRONG: &[(&[&str], &str)] = &[
         &["levels", QUARTER, "--k", "0:9", "--vectors", "Cargo.toml"],
         "--vectors: cannot write into `Cargo.toml`",
     ),
+    // Length spectra.
+    (
+        &["lengths", QUARTER],
+        "required arguments were not provided",
+    ),
+    (
+        &["lengths", QUARTER, "--levels", "nowhere.csv"],
+        "cannot read the level list nowhere.csv",
+    ),
+    (
+        &["lengths", QUARTER, "--levels", "tests/cli/empty.csv"],
+        "the level list is empty",
+    ),
+    (
+        &["lengths", QUARTER, "--levels", "tests/cli/negative.csv"],
+        "negative.csv, line 2: -3",
+    ),
+    (
+        &["lengths", QUARTER, "--levels", "tests/cli/one-level.csv"],
+        "the list holds 1 level: a length spectrum needs at least 10",
+    ),
+    (
+        &["lengths", CAVITY, "--levels", "tests/cli/energies.csv"],
+        "a column `energy`",
+    ),
+    (
+        &["lengths", QUARTER, "--levels", LIST, "--k", "60:80"],
+        "the list runs from 3.64 to 46 and has no levels in the window, which begins at 60",
+    ),
+    (
+        &["lengths", QUARTER, "--levels", LIST, "--k", "1:5"],
+        "the window (k from 1 to 5) holds 2 levels",
+    ),
+    (
+        &[
+            "lengths",
+            QUARTER,
+            "--levels",
+            LIST,
+            "--k",
+            "10.00001:10.00002",
+        ],
+        "holds 0 levels",
+    ),
+    (
+        &["lengths", QUARTER, "--levels", LIST, "--k", "42:8"],
+        "the window 42:8 is reversed",
+    ),
+    (
+        &["lengths", QUARTER, "--levels", LIST, "--frequency", "8:42"],
+        "give the window with --k FROM:TO",
+    ),
+    (
+        &["lengths", QUARTER, "--levels", LIST, "--k", "8:14"],
+        "give a wider window or a larger --max-length",
+    ),
+    (
+        &["lengths", QUARTER, "--levels", LIST, "--max-length", "0.5"],
+        "lengths below 0.491 cannot be told from the smooth part",
+    ),
+    (
+        &["lengths", QUARTER, "--levels", LIST, "--max-length", "-1"],
+        "--max-length: -1 is not positive",
+    ),
+    (
+        &["lengths", QUARTER, "--levels", LIST, "--max-length", "1e9"],
+        "choose a narrower window or a smaller --max-length",
+    ),
+    (
+        &["lengths", QUARTER, "--levels", LIST, "--max-bounces", "0"],
+        "--max-bounces: `0` is not a whole number",
+    ),
+    (
+        &["lengths", QUARTER, "--levels", LIST, "--smoothing", "2"],
+        "unexpected argument '--smoothing'",
+    ),
+    (
+        &["lengths", QUARTER, "--levels", LIST, "--class", "odd"],
+        "it has no symmetry",
+    ),
+    (
+        &["lengths", ELLIPSE, "--levels", LIST, "--class", "odd,odd"],
+        "leave --class out",
+    ),
+    // Lists of another shape, class, size or unit.
+    (
+        &["lengths", "billiards/l-shape.toml", "--levels", LIST],
+        "it belongs to another shape, size, class or unit",
+    ),
+    (
+        &["lengths", STADIUM, "--levels", LIST],
+        "where the smooth count of stadium is",
+    ),
+    (
+        &["lengths", QUARTER, "--levels", "data/levels/disk.csv"],
+        "it belongs to another shape, size, class or unit",
+    ),
+    (
+        &["lengths", QUARTER, "--levels", LIST, "--set", "R=3"],
+        "it belongs to another shape, size, class or unit",
+    ),
     // The output folder.
     (
         &["show", QUARTER, "--out", "Cargo.toml"],
@@ -636,6 +738,7 @@ fn threads_do_not_change_a_digit() {
             "4",
         ],
         vec!["density", DISK, "--k", "8:20"],
+        vec!["lengths", QUARTER, "--levels", LIST, "--max-length", "8"],
         vec!["weyl", "billiards/sinai.toml"],
         vec!["show", "billiards/sinai.toml"],
     ] {
@@ -675,12 +778,27 @@ fn files_are_written_whole_and_nothing_else_is_left() {
         "--levels",
         "data/quarter-stadium.csv",
     ]));
+    answer(&[
+        "lengths",
+        QUARTER,
+        "--levels",
+        LIST,
+        "--max-length",
+        "8",
+        "--out",
+        out,
+    ]);
     assert_eq!(
         names(&deep),
         [
             "density.csv",
             "density.json",
             "density.svg",
+            "lengths-peaks.csv",
+            "lengths-unmatched.csv",
+            "lengths.csv",
+            "lengths.json",
+            "lengths.svg",
             "orbits.csv",
             "orbits.json",
             "orbits.svg",
@@ -703,7 +821,7 @@ fn files_are_written_whole_and_nothing_else_is_left() {
     }
     // Once more over the files that are there.
     answer(&["show", STADIUM, "--out", out]);
-    assert_eq!(names(&deep).len(), 11);
+    assert_eq!(names(&deep).len(), 16);
 }
 
 /// Tags are nested and closed, and there is one root, `svg`.
@@ -773,7 +891,7 @@ fn a_full_disk_is_a_failure() {
 #[test]
 fn help_lists_what_works_and_succeeds() {
     let help = answer(&["--help"]);
-    for command in ["show", "weyl", "orbits", "density", "levels"] {
+    for command in ["show", "weyl", "orbits", "density", "levels", "lengths"] {
         assert!(help.contains(command));
         assert!(answer(&[command, "--help"]).contains("SYSTEM.toml"));
     }

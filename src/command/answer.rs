@@ -20,6 +20,8 @@ pub(super) struct Answer {
     pub(super) shown: Table,
     /// All rows.
     pub(super) table: Table,
+    /// Further tables, each with the word that its file's name ends in.
+    pub(super) more_tables: Vec<(&'static str, Table)>,
     /// What the rows depend on.
     pub(super) metadata: Map<String, Value>,
     /// What the user should know.
@@ -43,6 +45,10 @@ impl Answer {
         let mut written = Vec::new();
         if let Some(folder) = &options.folder {
             written.push(folder.write(&format!("{}.csv", self.name), &self.table.csv())?);
+            for (word, table) in &self.more_tables {
+                let name = format!("{}-{word}.csv", self.name);
+                written.push(folder.write(&name, &table.csv())?);
+            }
             written.push(folder.write(&format!("{}.json", self.name), &self.json())?);
             for (name, content) in &self.pictures {
                 written.push(folder.write(name, content)?);

@@ -34,6 +34,11 @@ pub(crate) enum Command {
     Density(Density),
     /// Compute levels directly, with an error for each and a count of all
     Levels(Levels),
+    /// Compare the length spectrum of a list of levels with that of the orbits
+    ///
+    /// It shows which orbits a list knows of, what a search of orbits left out and what a measurement did. Without a window: from
+    /// about the 5th level to the end of the list.
+    Lengths(Lengths),
 }
 
 /// Options of every command.
@@ -179,4 +184,18 @@ pub(crate) struct Levels {
         requires = "vectors"
     )]
     pub(crate) only: Option<String>,
+}
+
+#[derive(Debug, Args)]
+pub(crate) struct Lengths {
+    /// System file
+    #[arg(value_name = "SYSTEM.toml")]
+    pub(crate) system: PathBuf,
+    #[command(flatten)]
+    pub(crate) window: WindowOptions,
+    /// Levels: one a line, or csv with a column k, energy or frequency
+    #[arg(long, value_name = "FILE")]
+    pub(crate) levels: PathBuf,
+    #[command(flatten)]
+    pub(crate) limits: OrbitLimits,
 }

@@ -1,17 +1,16 @@
 //! `density`: density and staircase from the orbits, beside those of levels from a list or computed directly.
 
-mod list;
 mod present;
 
 use super::answer::Answer;
 use super::arguments::Density;
 use super::error::CommandError;
+use super::given::GivenLevels;
 use super::limits::{self, Plan, Wishes};
 use super::options::Options;
 use super::orbits;
 use super::progress;
 use super::subject::Subject;
-use list::GivenLevels;
 use orbitsum::levels::{Residual, ResidualWindow, density, residual_rms, staircase};
 use orbitsum::orbit::{Catalogue, ClassWeights, terms};
 use orbitsum::trace::{OrbitSum, Term, UniformGrid, sum_on_grid};

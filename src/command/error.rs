@@ -132,6 +132,58 @@ pub(crate) enum CommandError {
         at: f64,
         first: f64,
     },
+    /// A window that a list does not reach into.
+    #[error(
+        "the list runs from {first} to {last} and has no levels in the window, which begins at {begin}: choose a window that it covers, \
+         or give a longer list"
+    )]
+    ListOutsideWindow {
+        begin: String,
+        first: String,
+        last: String,
+    },
+    /// Too few levels for a length spectrum.
+    #[error(
+        "{place} holds {found}: a length spectrum needs at least {least} to tell any lengths apart"
+    )]
+    TooFewLevels {
+        /// `the list`, or the window in words.
+        place: String,
+        /// Such as `1 level`.
+        found: String,
+        least: usize,
+    },
+    /// A list whose number of levels fits no shape like this.
+    #[error(
+        "the list holds {found} levels in the window ({window}), where the smooth count of {system} is {expected:.0}: it belongs to \
+         another shape, size, class or unit"
+    )]
+    AnotherList {
+        window: String,
+        found: usize,
+        expected: f64,
+        system: String,
+    },
+    /// A window that tells no orbit from the smooth part.
+    #[error(
+        "in this window lengths below {resolved} cannot be told from the smooth part, and a comparison takes orbits up to {needed}, \
+         where they are looked for up to {longest}: give a wider window or a larger --max-length"
+    )]
+    NothingResolved {
+        resolved: String,
+        needed: String,
+        longest: String,
+    },
+    /// More lengths than make sense.
+    #[error(
+        "a window this wide would tell {lengths:.0} lengths up to {longest} apart, more than {limit}: choose a narrower window or a \
+         smaller --max-length"
+    )]
+    TooManyLengths {
+        lengths: f64,
+        longest: String,
+        limit: usize,
+    },
     /// More points than make sense.
     #[error(
         "the window is {widths:.0} times as wide as the smoothing and would need {points:.0} points, more than {limit}: \

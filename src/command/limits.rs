@@ -1,6 +1,6 @@
 //! Window, smoothing and orbit limits: what was asked for, and what is chosen where nothing was.
 
-use super::arguments::{Density, OrbitLimits};
+use super::arguments::{Density, Lengths, OrbitLimits};
 use super::error::CommandError;
 use super::note::Note;
 use super::subject::Subject;
@@ -15,7 +15,7 @@ use orbitsum::orbit::Limits;
 /// rough, and short enough that a default is quick.
 const DEFAULT_LEVELS: (f64, f64) = (10.0, 250.0);
 /// Default smoothing in mean spacings: short orbits describe a staircase smoothed like this to a few hundredths of a level.
-const DEFAULT_SMOOTHING: f64 = 2.0;
+pub(super) const DEFAULT_SMOOTHING: f64 = 2.0;
 /// Smoothing width x longest orbit at which the shortest orbit that is left out counts exp(-9/2) = 0.011 of its term.
 pub(super) const ENOUGH: f64 = 3.0;
 /// Rounding of width x length that is no reason for a warning.
@@ -37,7 +37,7 @@ pub(super) struct Plan {
     pub(super) middle: f64,
     /// Mean spacing there, in k.
     pub(super) spacing: f64,
-    /// Standard deviation of the Gaussian in k.
+    /// Standard deviation of the Gaussian in k, 0 where nothing is smoothed.
     pub(super) width: f64,
     /// How far orbits are looked for.
     pub(super) limits: Limits,
@@ -50,12 +50,12 @@ pub(super) struct Plan {
 /// Numbers that were asked for.
 #[derive(Clone, Copy, Debug, Default)]
 pub(super) struct Wishes {
-    window: Option<Window>,
+    pub(super) window: Option<Window>,
     /// In mean spacings.
     smoothing: Option<f64>,
     /// In the file's unit.
     width: Option<f64>,
-    length: Option<f64>,
+    pub(super) length: Option<f64>,
     bounces: Option<usize>,
 }
 
@@ -71,6 +71,14 @@ impl Wishes {
             window: window::asked(&typed.window, subject, Begin::AboveZero)?,
             smoothing: positive("smoothing", &typed.smoothing)?,
             width: positive("smoothing-width", &typed.smoothing_width)?,
+            ..Self::of_limits(&typed.limits)?
+        })
+    }
+
+    /// Numbers of the command `lengths`.
+    pub(super) fn of_lengths(typed: &Lengths, subject: &Subject) -> Result<Self, CommandError> {
+        Ok(Self {
+            window: window::asked(&typed.window, subject, Begin::AboveZero)?,
             ..Self::of_limits(&typed.limits)?
         })
     }
@@ -99,48 +107,61 @@ pub(super) fn plan(
     wishes: &Wishes,
     list_end: Option<f64>,
 ) -> Result<Plan, CommandError> {
-    let weyl = subject.weyl();
-    let mut choices = Vec::new();
-    let window = wishes.window.unwrap_or_else(|| {
-        let (window, why) = default_window(subject, &weyl, list_end);
-        choices.push(("window".to_owned(), why));
-        window
-    });
-    if wishes.window.is_some() {
-        choices.push((
-            "window".to_owned(),
-            format!("{} (as asked)", window.words(subject)),
-        ));
-    }
-    let units = &subject.system.units;
-    let middle = 0.5 * (units.k(window.from) + units.k(window.to));
-    let spacing = weyl.mean_spacing(middle);
-    if !spacing.is_finite() {
-        return Err(CommandError::BelowFirstLevel {
-            option: units.window_option(),
-            at: units.value(middle),
-            first: units.value(weyl.k_at_count(1.0)),
-        });
-    }
-    let mut plan = Plan {
-        window,
-        middle,
-        spacing,
-        width: 0.0,
-        limits: Limits {
-            max_length: 0.0,
-            max_bounces: 0,
-        },
-        choices,
-        notes: Vec::new(),
-    };
+    let (window, why) = wishes.window.map_or_else(
+        || default_window(subject, &subject.weyl(), list_end),
+        |window| (window, asked_words(window, subject)),
+    );
+    let mut plan = Plan::new(subject, window, why)?;
     plan.choose_smoothing(subject, wishes);
     plan.choose_bounces(subject, wishes);
     plan.warn(subject);
     Ok(plan)
 }
 
+pub(super) fn asked_words(window: Window, subject: &Subject) -> String {
+    format!("{} (as asked)", window.words(subject))
+}
+
 impl Plan {
+    /// A plan that knows its window only.
+    pub(super) fn new(
+        subject: &Subject,
+        window: Window,
+        why: String,
+    ) -> Result<Self, CommandError> {
+        let units = &subject.system.units;
+        let weyl = subject.weyl();
+        let middle = 0.5 * (units.k(window.from) + units.k(window.to));
+        let spacing = weyl.mean_spacing(middle);
+        if !spacing.is_finite() {
+            return Err(CommandError::BelowFirstLevel {
+                option: units.window_option(),
+                at: units.value(middle),
+                first: units.value(weyl.k_at_count(1.0)),
+            });
+        }
+        Ok(Self {
+            window,
+            middle,
+            spacing,
+            width: 0.0,
+            limits: Limits {
+                max_length: 0.0,
+                max_bounces: 0,
+            },
+            choices: vec![("window".to_owned(), why)],
+            notes: Vec::new(),
+        })
+    }
+
+    pub(super) fn choose_longest(&mut self, subject: &Subject, length: f64, why: &str) {
+        self.limits.max_length = length;
+        self.choices.push((
+            "longest orbit".into(),
+            format!("{} ({why})", subject.length(length, DIGITS)),
+        ));
+    }
+
     /// Width and longest orbit: each follows from the other where only one is given.
     fn choose_smoothing(&mut self, subject: &Subject, wishes: &Wishes) {
         let units = &subject.system.units;
@@ -170,7 +191,6 @@ impl Plan {
                 ),
             ),
         };
-        self.limits.max_length = length;
         let from_length = asked.is_none() && (wishes.length.is_some() || ENOUGH / wanted > most);
         self.width = if from_length { ENOUGH / length } else { wanted };
         let reason = if asked.is_some() {
@@ -195,13 +215,10 @@ impl Plan {
                 subject.level(self.width_in_units(subject), DIGITS),
             ),
         ));
-        self.choices.push((
-            "longest orbit".into(),
-            format!("{} ({why})", subject.length(length, DIGITS)),
-        ));
+        self.choose_longest(subject, length, &why);
     }
 
-    fn choose_bounces(&mut self, subject: &Subject, wishes: &Wishes) {
+    pub(super) fn choose_bounces(&mut self, subject: &Subject, wishes: &Wishes) {
         let default = Limits::up_to(self.limits.max_length, &subject.system.domain);
         self.limits.max_bounces = wishes.bounces.unwrap_or(default.max_bounces);
         let why = if wishes.bounces.is_some() {
@@ -248,7 +265,7 @@ impl Plan {
 const REACH: f64 = 5.0;
 
 /// The longest orbits, up to `wanted`, that are looked for without being asked.
-fn longest_default(subject: &Subject, wanted: f64) -> f64 {
+pub(super) fn longest_default(subject: &Subject, wanted: f64) -> f64 {
     let domain = &subject.system.domain;
     if subject.integrable.is_some() {
         // Tori are listed without a search.

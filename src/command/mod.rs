@@ -12,7 +12,9 @@ mod density;
 mod direct;
 mod error;
 mod fluctuation;
+mod given;
 mod journal;
+mod lengths;
 mod levels;
 mod limits;
 mod note;
@@ -43,6 +45,7 @@ pub(crate) fn run(arguments: Arguments) -> Result<(), CommandError> {
         Command::Orbits(typed) => orbits::run(typed, &options),
         Command::Density(typed) => density::run(typed, &options),
         Command::Levels(typed) => levels::run(typed, &options),
+        Command::Lengths(typed) => lengths::run(typed, &options),
     }?;
     answer.deliver(&options)
 }

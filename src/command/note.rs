@@ -19,6 +19,12 @@ pub(super) enum Note {
     ListOfClass { class: String },
     /// The list does not begin at the lowest level.
     ListBegins { first: String, expected_below: f64 },
+    /// The list does not hold as many levels as the smooth count.
+    CountOff { found: usize, expected: f64 },
+    /// The terms explain nothing of a length spectrum.
+    NothingExplained,
+    /// There is no room below the shortest orbit in which the noise could be measured.
+    NoiseUnmeasured { shortest: String, needed: String },
     /// The list ends inside the window.
     ListEnds { end: String, used_to: String },
     /// The list ends before the window begins.
@@ -81,6 +87,8 @@ impl Note {
         matches!(
             self,
             Self::ListBegins { .. }
+                | Self::CountOff { .. }
+                | Self::NothingExplained
                 | Self::ListTooShort { .. }
                 | Self::LargeResidual { .. }
                 | Self::NotFlat(_)
@@ -118,6 +126,21 @@ impl fmt::Display for Note {
                 "the level list begins at {first}, where about {} levels are expected below: a staircase needs the list \
                  to begin with the lowest level",
                 significant(*expected_below, 3)
+            ),
+            Self::CountOff { found, expected } => write!(
+                f,
+                "the list holds {found} levels in the window, where the smooth count is {}: levels are missing or false, and every \
+                 length shows their noise",
+                significant(*expected, 4)
+            ),
+            Self::NothingExplained => f.write_str(
+                "the orbits explain nothing of what the levels show: the list belongs to another shape or class, or terms are far \
+                 too large (orbits near a bifurcation)",
+            ),
+            Self::NoiseUnmeasured { shortest, needed } => write!(
+                f,
+                "the noise of the list could not be measured below the shortest orbit ({shortest}), which takes a length of {needed}: \
+                 it is taken from the lower quartile of the difference, and some of what is listed may be noise; a wider window helps"
             ),
             Self::ListEnds { end, used_to } => write!(
                 f,

@@ -87,6 +87,7 @@ fn answer(subject: &Subject, plan: &Plan, catalogue: &Catalogue) -> Answer {
         metadata,
         notes,
         pictures: vec![("orbits.svg".into(), picture(subject, &entries))],
+        more_tables: Vec::new(),
         obsolete: None,
         failure: None,
     }
@@ -257,14 +258,7 @@ impl Entry {
             _ => "family",
         };
         Self {
-            word: match family.winding {
-                0 => family.kind.to_string(),
-                turns => format!(
-                    "{}, {}",
-                    family.kind,
-                    counted(turns as usize, "turn", "turns")
-                ),
-            },
+            word: torus_word(family.kind, family.winding),
             bounces: family.bounces as usize,
             length: family.length,
             trace: None,
@@ -276,6 +270,14 @@ impl Entry {
             copies: 1,
             path: Vec::new(),
         }
+    }
+}
+
+/// A family in words, such as `torus of chords, 2 turns`.
+pub(super) fn torus_word(kind: FamilyKind, winding: u32) -> String {
+    match winding {
+        0 => kind.to_string(),
+        turns => format!("{kind}, {}", counted(turns as usize, "turn", "turns")),
     }
 }
 

@@ -53,6 +53,7 @@ pub(super) fn run(typed: &Show, options: &Options) -> Result<Answer, CommandErro
         metadata,
         notes: notes(&subject),
         pictures: vec![("shape.svg".into(), picture)],
+        more_tables: Vec::new(),
         obsolete: None,
         failure: None,
     })

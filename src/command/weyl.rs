@@ -82,6 +82,7 @@ pub(super) fn run(typed: &Weyl, options: &Options) -> Result<Answer, CommandErro
         metadata,
         notes,
         pictures: Vec::new(),
+        more_tables: Vec::new(),
         obsolete: None,
         failure: None,
     })

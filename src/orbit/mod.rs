@@ -22,5 +22,8 @@ pub use passes::Pass;
 pub use periodic::{Closure, Fixing, Orbit, OrbitKind, OrbitPoint};
 pub use search::CurvedFamily;
 pub use strip::{Strip, StripEdge};
-pub use terms::{ClassWeights, orbit_terms, strip_terms, terms, torus_classes_known};
+pub use terms::{
+    ClassWeights, SourcedTerm, TermSource, orbit_terms, sourced_terms, strip_terms, terms,
+    torus_classes_known,
+};
 pub mod tori;

@@ -4,7 +4,9 @@ use super::periodic::{Closure, Orbit, OrbitKind};
 use super::search::CurvedFamily;
 use super::strip::{Strip, StripEdge};
 use super::tori::{LeftOut, LeftOutKind};
-use crate::billiard::{Domain, Event, Origin, Ray, Tracer, VertexKind, incidence, left};
+use crate::billiard::{
+    Domain, Event, Hit, Origin, Ray, Tracer, Vec2, VertexKind, cross, incidence, left,
+};
 use std::f64::consts::PI;
 use std::fmt;
 
@@ -48,8 +50,18 @@ impl fmt::Display for OmissionKind {
     }
 }
 
+impl OmissionKind {
+    /// Does what shows at a length show at its multiples too? Repetitions of orbits are listed themselves.
+    fn repeats(self) -> bool {
+        matches!(
+            self,
+            Self::Corners | Self::StripCorners | Self::StripGrazing | Self::Families
+        )
+    }
+}
+
 /// An estimate of what the sum leaves out: amplitude x k^power levels at the given length.
-#[derive(Clone, Copy, Debug, PartialEq)]
+#[derive(Clone, Debug, PartialEq)]
 pub struct Omission {
     /// Reason.
     pub kind: OmissionKind,
@@ -57,6 +69,9 @@ pub struct Omission {
     pub count: usize,
     /// Length of the shortest of them, at which it would show in a length spectrum.
     pub length: f64,
+    /// Lengths at which they would show, shortest first: of all of them, for corners of every way straight to a wall or a corner and
+    /// back.
+    pub lengths: Vec<f64>,
     /// Amplitude of the largest of them, in levels at k = 1.
     pub amplitude: f64,
     /// Power of k.
@@ -71,6 +86,19 @@ impl Omission {
         self.amplitude * k.powf(self.power) * (-0.5 * (s * self.length).powi(2)).exp()
     }
 
+    /// Would it show within `distance` of a length?
+    #[must_use]
+    pub fn shows_at(&self, length: f64, distance: f64) -> bool {
+        self.lengths.iter().any(|own| {
+            let times = if self.kind.repeats() {
+                (length / own).round().max(1.0)
+            } else {
+                1.0
+            };
+            (times * own - length).abs() <= distance
+        })
+    }
+
     /// One kind's omissions as one: the shortest length and the largest amplitude.
     fn of(kind: OmissionKind, power: f64, items: impl Iterator<Item = (f64, f64)>) -> Option<Self> {
         let mut joined: Option<Self> = None;
@@ -79,12 +107,17 @@ impl Omission {
                 kind,
                 count: 0,
                 length,
+                lengths: Vec::new(),
                 amplitude,
                 power,
             });
+            entry.lengths.push(length);
             entry.count += 1;
             entry.length = entry.length.min(length);
             entry.amplitude = entry.amplitude.max(amplitude);
+        }
+        if let Some(entry) = &mut joined {
+            entry.lengths.sort_by(f64::total_cmp);
         }
         joined
     }
@@ -96,6 +129,7 @@ impl From<&LeftOut> for Omission {
             kind: OmissionKind::Tori(left_out.kind),
             count: 1,
             length: left_out.length,
+            lengths: vec![left_out.length],
             amplitude: left_out.amplitude,
             power: left_out.power,
         }
@@ -133,7 +167,10 @@ pub(crate) fn omissions(domain: &Domain, tracer: &Tracer, found: &Found) -> Vec<
             .map(|strip| strip.length)
     };
     [
-        Omission::of(OmissionKind::Corners, -0.5, corners(domain, tracer)),
+        Omission::of(OmissionKind::Corners, -0.5, corners(domain, tracer)).map(|joined| Omission {
+            lengths: ways_back(domain, tracer),
+            ..joined
+        }),
         // The edge of a shadow is blurred over a width of about sqrt(L/k), which is this much of a level of
         // (w/2 pi) k J1(k L).
         Omission::of(
@@ -244,34 +281,115 @@ const LEAST_SINE: f64 = 0.3;
 /// Twice the shortest distance at which a ray from the corner meets a wall nearly at a right angle, or the mean distance if
 /// none does.
 fn way_back(domain: &Domain, tracer: &Tracer, index: usize) -> f64 {
-    let vertex = domain.vertices[index];
-    let first = domain.walls[vertex.after].frame(0.0).tangent;
-    let mut nearest = f64::INFINITY;
-    let mut total = 0.0;
-    let mut count = 0;
-    for i in 0..DIRECTIONS {
-        let angle = vertex.angle * (i as f64 + 0.5) / DIRECTIONS as f64;
-        let direction = first * angle.cos() + left(first) * angle.sin();
-        let ray = Ray {
-            point: vertex.point,
-            direction,
-            origin: Origin::Vertex(index),
-        };
-        if let Event::Wall(hit) = tracer.next(&ray) {
-            total += hit.distance;
-            count += 1;
-            if incidence(direction, &hit) > NEARLY_NORMAL {
-                nearest = nearest.min(hit.distance);
-            }
-        }
-    }
-    let mean = if count > 0 {
-        total / f64::from(count)
-    } else {
+    let hits = hits(domain, tracer, index);
+    let nearest = returning(&hits)
+        .map(|hit| hit.distance)
+        .fold(f64::INFINITY, f64::min);
+    let mean = if hits.is_empty() {
         domain.size
+    } else {
+        hits.iter().map(|(_, hit)| hit.distance).sum::<f64>() / hits.len() as f64
     };
     2.0 * if nearest.is_finite() { nearest } else { mean }
 }
+
+/// Lengths of all ways from a corner that diffracts straight to a wall, at a right angle, or into a corner, and back; shortest first.
+fn ways_back(domain: &Domain, tracer: &Tracer) -> Vec<f64> {
+    let mut lengths = Vec::new();
+    let diffracting = (0..domain.vertices.len())
+        .filter(|&index| domain.vertices[index].kind == VertexKind::Corner);
+    for index in diffracting {
+        lengths.push(way_back(domain, tracer, index));
+        let hits = hits(domain, tracer, index);
+        for wall in 0..domain.walls.len() {
+            let nearest = returning(&hits)
+                .filter(|hit| hit.wall == wall)
+                .map(|hit| hit.distance)
+                .min_by(f64::total_cmp);
+            lengths.extend(nearest.map(|distance| 2.0 * distance));
+        }
+        lengths.extend(seen_corners(domain, tracer, index).map(|distance| 2.0 * distance));
+    }
+    lengths.sort_by(f64::total_cmp);
+    lengths.dedup_by(|a, b| (*a - *b).abs() < SAME_WAY * domain.size);
+    lengths
+}
+
+/// Lengths that differ by less than this part of the domain's size are one: rays are sampled, and no spectrum tells them apart.
+const SAME_WAY: f64 = 1e-3;
+
+/// Hits of rays into the wedge of a corner, with their directions.
+fn hits(domain: &Domain, tracer: &Tracer, index: usize) -> Vec<(Vec2, Hit)> {
+    let vertex = domain.vertices[index];
+    let first = domain.walls[vertex.after].frame(0.0).tangent;
+    (0..DIRECTIONS)
+        .map(|i| vertex.angle * (i as f64 + 0.5) / DIRECTIONS as f64)
+        .map(|angle| first * angle.cos() + left(first) * angle.sin())
+        .filter_map(|direction| {
+            let ray = Ray {
+                point: vertex.point,
+                direction,
+                origin: Origin::Vertex(index),
+            };
+            match tracer.next(&ray) {
+                Event::Wall(hit) => Some((direction, hit)),
+                _ => None,
+            }
+        })
+        .collect()
+}
+
+/// The hits nearly at a right angle.
+fn returning(hits: &[(Vec2, Hit)]) -> impl Iterator<Item = &Hit> {
+    hits.iter()
+        .filter(|(direction, hit)| incidence(*direction, hit) > NEARLY_NORMAL)
+        .map(|(_, hit)| hit)
+}
+
+/// Distances of the corners that a ray from a corner runs into, those along its own walls left out.
+fn seen_corners<'a>(
+    domain: &'a Domain,
+    tracer: &'a Tracer,
+    index: usize,
+) -> impl Iterator<Item = f64> + 'a {
+    let from = domain.vertices[index];
+    let first = domain.walls[from.after].frame(0.0).tangent;
+    domain
+        .vertices
+        .iter()
+        .enumerate()
+        .filter(move |(other, vertex)| *other != index && sends_back(vertex.kind))
+        .filter_map(move |(_, vertex)| {
+            let way = vertex.point - from.point;
+            let turned = cross(first, way)
+                .atan2(first.dot(&way))
+                .rem_euclid(2.0 * PI);
+            let inside = turned > ALONG && turned < from.angle - ALONG;
+            let ray = Ray {
+                point: from.point,
+                direction: way.normalize(),
+                origin: Origin::Vertex(index),
+            };
+            let met = inside.then(|| tracer.next(&ray));
+            let hit = match met? {
+                Event::Corner { hit, .. } | Event::Wall(hit) => hit,
+                Event::Escaped => return None,
+            };
+            ((hit.point - vertex.point).norm() < SAME_WAY * domain.size).then(|| way.norm())
+        })
+}
+
+/// Does a wave that runs into a vertex come back along the same way? From a regular corner after an even number of reflections.
+fn sends_back(kind: VertexKind) -> bool {
+    match kind {
+        VertexKind::Corner => true,
+        VertexKind::Regular { n } => n % 2 == 0,
+        VertexKind::Smooth | VertexKind::Joint => false,
+    }
+}
+
+/// Angle (radians) from a wall within which a ray runs along it.
+const ALONG: f64 = 1e-6;
 
 /// Cosine of incidence above which a ray counts as coming back.
 const NEARLY_NORMAL: f64 = 0.99;

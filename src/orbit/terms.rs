@@ -3,7 +3,7 @@
 use super::catalogue::Catalogue;
 use super::periodic::{Closure, Fixing, Orbit};
 use super::strip::{Strip, StripEdge};
-use super::tori::Integrable;
+use super::tori::{Integrable, TorusFamily};
 use crate::billiard::{Condition, Irrep, Symmetry};
 use crate::trace::{Amplitude, Term};
 use num_complex::Complex64;
@@ -55,29 +55,66 @@ impl<'a> ClassWeights<'a> {
     }
 }
 
+/// Where a term comes from.
+#[derive(Clone, Copy, Debug)]
+pub enum TermSource<'a> {
+    /// An isolated orbit.
+    Orbit(&'a Orbit),
+    /// A strip of parallel orbits.
+    Strip(&'a Strip),
+    /// A family of an integrable shape.
+    Torus(TorusFamily),
+}
+
+/// A term with what it comes from.
+#[derive(Clone, Copy, Debug)]
+pub struct SourcedTerm<'a> {
+    /// The term.
+    pub term: Term,
+    /// What it belongs to.
+    pub source: TermSource<'a>,
+}
+
 /// All terms of a catalogue.
 #[must_use]
 pub fn terms(catalogue: &Catalogue, weights: &ClassWeights) -> Vec<Term> {
+    sourced_terms(catalogue, weights)
+        .into_iter()
+        .map(|sourced| sourced.term)
+        .collect()
+}
+
+/// All terms of a catalogue, each with what it comes from.
+#[must_use]
+pub fn sourced_terms<'a>(catalogue: &'a Catalogue, weights: &ClassWeights) -> Vec<SourcedTerm<'a>> {
+    let longest = catalogue.limits.max_length;
     let isolated = catalogue
         .orbits
         .iter()
-        .flat_map(|orbit| orbit_terms(orbit, weights));
-    let tori = torus_terms(catalogue, weights);
-    let strips = catalogue
-        .strips
-        .iter()
-        .flat_map(|strip| strip_terms(strip, weights, catalogue.limits.max_length));
+        .flat_map(|orbit| sourced(TermSource::Orbit(orbit), orbit_terms(orbit, weights)));
+    let strips = catalogue.strips.iter().flat_map(|strip| {
+        sourced(
+            TermSource::Strip(strip),
+            strip_terms(strip, weights, longest),
+        )
+    });
     isolated
         .chain(strips)
-        .chain(tori)
-        .filter(|term| term.coefficient.norm() > 0.0)
+        .chain(torus_terms(catalogue, weights))
+        .filter(|sourced| sourced.term.coefficient.norm() > 0.0)
         .collect()
+}
+
+fn sourced(source: TermSource<'_>, terms: Vec<Term>) -> impl Iterator<Item = SourcedTerm<'_>> {
+    terms
+        .into_iter()
+        .map(move |term| SourcedTerm { term, source })
 }
 
 /// Terms of the tori of an integrable shape. The odd and even class of a sector under reflection in its bisector are sectors
 /// of half the opening with a Dirichlet or Neumann wall there; for other classes see [`torus_classes_known`].
-fn torus_terms(catalogue: &Catalogue, weights: &ClassWeights) -> Vec<Term> {
-    match catalogue.integrable {
+fn torus_terms<'a>(catalogue: &Catalogue, weights: &ClassWeights) -> Vec<SourcedTerm<'a>> {
+    let sum = match catalogue.integrable {
         Some(Integrable::Sector {
             radius,
             opening,
@@ -95,10 +132,17 @@ fn torus_terms(catalogue: &Catalogue, weights: &ClassWeights) -> Vec<Term> {
                 arc,
                 radial: [radial[0], axis],
             };
-            super::tori::terms(&half, &catalogue.limits.for_tori()).terms
+            &super::tori::terms(&half, &catalogue.limits.for_tori())
         }
-        _ => catalogue.tori.terms.clone(),
-    }
+        _ => &catalogue.tori,
+    };
+    let pairs = sum.families.iter().zip(&sum.terms);
+    pairs
+        .map(|(family, term)| SourcedTerm {
+            term: *term,
+            source: TermSource::Torus(*family),
+        })
+        .collect()
 }
 
 /// Are the terms of single symmetry classes known for this shape? For an ellipse and a ring with classes they are not.

@@ -1,5 +1,5 @@
-//! Pictures, written as SVG: the shape, its orbits, density and staircase, levels and their
-//! statistics, waves.
+//! Pictures, written as SVG: the shape, its orbits, density and staircase, length spectra, levels
+//! and their statistics, waves.
 //!
 //! Plain data goes in, the text of a self-contained SVG document comes out; nothing here writes files. One unit of a
 //! picture is one point (1/72 inch), and every picture is 180 mm wide: the text width of a printed
@@ -12,6 +12,7 @@ mod axis;
 mod canvas;
 mod density;
 mod legend;
+mod lengths;
 mod levels;
 mod orbits;
 mod outline;
@@ -24,6 +25,7 @@ mod thinning;
 mod wave;
 
 pub use density::{DensityCurves, density_picture};
+pub use lengths::{LengthCurves, LengthMark, lengths_picture};
 pub use levels::{LevelCurves, levels_picture};
 pub use orbits::{LARGEST_GRID, OrbitDrawing, OrbitStroke, orbits_picture};
 pub use shape::shape_picture;

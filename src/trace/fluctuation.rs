@@ -1,6 +1,6 @@
 //! Expected fluctuation of the unsmoothed staircase about its smooth part.
 
-use super::term::{Amplitude, Term};
+use super::term::Term;
 use crate::baseline::saturation_fluctuation;
 use num_complex::Complex64;
 use serde::Serialize;
@@ -111,7 +111,7 @@ pub struct Wave {
 pub fn waves(terms: &[Term], k: f64) -> Vec<Wave> {
     let mut amplitudes: Vec<(f64, Complex64)> = terms
         .iter()
-        .map(|term| (term.length, amplitude(term, k)))
+        .map(|term| (term.length, term.amplitude_at(k)))
         .collect();
     amplitudes.sort_by(|a, b| a.0.total_cmp(&b.0));
     amplitudes
@@ -126,21 +126,9 @@ pub fn waves(terms: &[Term], k: f64) -> Vec<Wave> {
         .collect()
 }
 
-/// A with term = Re[A exp(i k l)] near k.
-fn amplitude(term: &Term, k: f64) -> Complex64 {
-    match term.amplitude {
-        Amplitude::Constant | Amplitude::CorrectedConstant { .. } => term.coefficient,
-        Amplitude::Torus { .. } => term.coefficient * k.sqrt(),
-        // k J1(k l) -> sqrt(2 k/(pi l)) cos(k l - 3 pi/4)
-        Amplitude::Strip => {
-            let size = (2.0 * k / (PI * term.length)).sqrt();
-            Complex64::from_polar(size, -0.75 * PI) * term.coefficient.re
-        }
-    }
-}
-
 #[cfg(test)]
 mod tests {
+    use super::super::term::Amplitude;
     use super::*;
 
     fn strip(length: f64, area: f64) -> Term {

@@ -1,6 +1,7 @@
 //! One oscillating contribution to the staircase.
 
 use num_complex::Complex64;
+use std::f64::consts::PI;
 
 /// One oscillating contribution to the staircase N(k), before any smoothing.
 ///
@@ -17,6 +18,22 @@ pub struct Term {
     pub amplitude: Amplitude,
     /// Repetition number r (1 for the primitive orbit).
     pub repetition: u32,
+}
+
+impl Term {
+    /// A with term = Re[A exp(i k l)] near k, to leading order in 1/k and without the slope of the phase.
+    #[must_use]
+    pub fn amplitude_at(&self, k: f64) -> Complex64 {
+        match self.amplitude {
+            Amplitude::Constant | Amplitude::CorrectedConstant { .. } => self.coefficient,
+            Amplitude::Torus { .. } => self.coefficient * k.sqrt(),
+            // k J1(k l) -> sqrt(2 k/(pi l)) cos(k l - 3 pi/4)
+            Amplitude::Strip => {
+                let size = (2.0 * k / (PI * self.length)).sqrt();
+                Complex64::from_polar(size, -0.75 * PI) * self.coefficient.re
+            }
+        }
+    }
 }
 
 /// How the amplitude of a [`Term`] depends on k; l is the term's length and c its coefficient.

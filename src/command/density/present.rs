@@ -33,6 +33,7 @@ pub(super) fn answer(findings: &Findings<'_>) -> Answer {
         shown: table.thinned(SHOWN_ROWS),
         metadata: metadata(findings, &completeness),
         pictures: vec![("density.svg".into(), picture(findings))],
+        more_tables: Vec::new(),
         obsolete: None,
         failure: findings
             .comparison

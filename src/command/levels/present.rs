@@ -33,6 +33,7 @@ pub(super) fn answer(findings: &Findings<'_>) -> Answer {
         notes: notes(findings, shown.rows.len()),
         metadata: metadata(findings),
         pictures: vec![("levels.svg".into(), picture(findings))],
+        more_tables: Vec::new(),
         obsolete: findings.task.journal.clone(),
         failure: findings.computed.failure(findings.subject),
         shown,

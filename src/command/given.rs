@@ -1,15 +1,15 @@
 //! The levels that a prediction is compared with, in k: from a list, or computed directly.
 
-use crate::command::direct::{self, Direct, Task};
-use crate::command::error::CommandError;
-use crate::command::limits::Plan;
-use crate::command::note::Note;
-use crate::command::options::Options;
-use crate::command::subject::{Subject, class_name};
+use super::direct::{self, Direct, Task};
+use super::error::CommandError;
+use super::limits::Plan;
+use super::note::Note;
+use super::options::Options;
+use super::subject::{Subject, class_name};
 use orbitsum::baseline::Weyl;
 use orbitsum::levels::{ListColumn, read};
 use orbitsum::solver::Window;
-use orbitsum::system::LevelUnit;
+use orbitsum::system::{LevelUnit, Units};
 use std::path::Path;
 
 /// Relative accuracy of levels that are computed for a comparison: a millionth of a level at the thousandth one, far below the
@@ -25,6 +25,14 @@ pub(super) struct GivenLevels {
     pub(super) k: Vec<f64>,
     /// The same levels in the unit of the system file.
     pub(super) values: Vec<f64>,
+    /// Uncertainty of each level in k, where the list states it or they were computed.
+    pub(super) errors: Option<Vec<f64>>,
+    /// Width of each level in k (a resonance's), where the list states it.
+    #[allow(
+        dead_code,
+        reason = "read by the commands that weigh levels by their widths"
+    )]
+    pub(super) widths: Option<Vec<f64>>,
     /// The k up to which nothing is missing.
     pub(super) end: f64,
     /// How they were found, where they were computed.
@@ -45,16 +53,15 @@ impl GivenLevels {
         let own = units.column();
         let mut notes: Vec<Note> = list.notes.into_iter().map(Note::List).collect();
         let column = list.column.map_or(own, ListColumn::name);
-        let k: Vec<f64> = match list.column {
-            None => list.values.iter().map(|&value| units.k(value)).collect(),
-            Some(column) if column.name() == own => {
-                list.values.iter().map(|&value| units.k(value)).collect()
-            }
-            Some(ListColumn::WaveNumber) => list.values,
+        let unit = match list.column {
+            None => *units,
+            Some(column) if column.name() == own => *units,
+            Some(ListColumn::WaveNumber) => Units::default(),
             // Files whose levels are wave numbers know no other energy than k^2.
-            Some(ListColumn::Energy) if units.level == LevelUnit::Wavenumber => {
-                list.values.iter().map(|value| value.sqrt()).collect()
-            }
+            Some(ListColumn::Energy) if units.level == LevelUnit::Wavenumber => Units {
+                level: LevelUnit::Energy,
+                ..Units::default()
+            },
             Some(column) => {
                 return Err(CommandError::ListUnit {
                     path: path.to_owned(),
@@ -63,6 +70,10 @@ impl GivenLevels {
                 });
             }
         };
+        let k: Vec<f64> = list.values.iter().map(|&value| unit.k(value)).collect();
+        let in_k = |spreads: &[f64]| spreads_in_k(&unit, &list.values, spreads);
+        let errors = list.errors.as_deref().map(in_k);
+        let widths = list.widths.as_deref().map(in_k);
         if column != own {
             notes.push(Note::Converted {
                 from: column,
@@ -79,6 +90,8 @@ impl GivenLevels {
             values: k.iter().map(|&k| units.value(k)).collect(),
             end: k.last().copied().unwrap_or(0.0),
             k,
+            errors,
+            widths,
             direct: None,
             notes,
         })
@@ -102,6 +115,9 @@ impl GivenLevels {
         let solver = direct::solver(subject, task.accuracy)?;
         let computed = direct::compute(subject, &solver, &task, options)?;
         let k = computed.repeated();
+        let errors = (computed.levels.levels.iter())
+            .flat_map(|level| std::iter::repeat_n(level.error, level.multiplicity))
+            .collect();
         let notes = (!computed.levels.complete).then(|| Note::NotComplete {
             found: computed.levels.found(),
             counted: computed.levels.counted,
@@ -109,6 +125,8 @@ impl GivenLevels {
         Ok(Self {
             values: k.iter().map(|&k| units.value(k)).collect(),
             k,
+            errors: Some(errors),
+            widths: None,
             end: task.window.to,
             direct: Some(computed),
             notes: notes.into_iter().collect(),
@@ -119,6 +137,22 @@ impl GivenLevels {
     pub(super) fn last(&self) -> f64 {
         self.values.last().copied().unwrap_or(0.0)
     }
+}
+
+/// Errors or widths of levels, converted to k like the levels themselves: |dv| times dk/dv. At a level of 0 an energy has no
+/// such slope; there it is the k of the spread itself.
+fn spreads_in_k(unit: &Units, values: &[f64], spreads: &[f64]) -> Vec<f64> {
+    values
+        .iter()
+        .zip(spreads)
+        .map(|(&value, &spread)| {
+            if value > 0.0 {
+                spread * unit.derivative(value)
+            } else {
+                unit.k(spread)
+            }
+        })
+        .collect()
 }
 
 /// A warning if levels are expected below the first one of the list.
