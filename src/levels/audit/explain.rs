@@ -12,7 +12,7 @@ use super::search::{Ban, Explanation, Scene, Step};
 use crate::dense::{Cholesky, Matrix};
 
 /// Factors of the expected variances that are tried, in descending order.
-const HEATS: [f64; 6] = [1e4, 1e3, 1e2, 1e1, 1.0, 0.1];
+const HEATS: [f64; 5] = [1e4, 1e3, 1e2, 1e1, 1.0];
 /// Rounds of learning the noise.
 const ROUNDS: usize = 6;
 /// Gain in evidence, in natural units, below which learning has settled.
