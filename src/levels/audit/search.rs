@@ -21,11 +21,15 @@ const NEWTON_STEPS: usize = 12;
 const PLACE_TOLERANCE: f64 = 1e-4;
 /// Improvement, in natural units of likelihood, below which an exchange is not worth making.
 const WORTH: f64 = 1e-6;
-/// Exchanges after which a search is given up: more than ten for each of a hundred faults.
-const MOST_EXCHANGES: usize = 400;
+/// Exchanges after which a search is given up, and those that look for an explanation without a fault.
+const MOST_EXCHANGES: usize = 80;
+const MOST_EXCHANGES_WITHOUT: usize = 12;
 /// Neighbourhoods in which steps are taken out together, in smoothing widths, and the most that are taken out.
 const REBUILT: [f64; 3] = [3.0, 7.0, 14.0];
 const MOST_REBUILT: usize = 3;
+/// Listed levels on either side for which a false one is exchanged, and the most promising exchanges that are followed up.
+const RELABELLED: usize = 5;
+const FOLLOWED: usize = 4;
 /// Every how many-th place is tried where sets of steps are.
 const COARSE: usize = 3;
 
@@ -238,7 +242,7 @@ impl<'a> Scene<'a> {
     }
 
     /// The explanation with the places of all missing levels moved to where they explain the record best.
-    fn settled(&self, steps: Vec<Step>, ban: Option<Ban>) -> Explanation {
+    pub(super) fn settled(&self, steps: Vec<Step>, ban: Option<Ban>) -> Explanation {
         let mut best = self.explained(steps);
         let mut damping = 0.0;
         for _ in 0..NEWTON_STEPS {
@@ -364,7 +368,7 @@ impl<'a> Scene<'a> {
     /// The best explanation that exchanges reach from some steps.
     pub(super) fn search(&self, start: Vec<Step>, ban: Option<Ban>) -> Explanation {
         let mut best = self.settled(start, ban);
-        let most = if ban.is_some() { 12 } else { MOST_EXCHANGES };
+        let most = if ban.is_some() { MOST_EXCHANGES_WITHOUT } else { MOST_EXCHANGES };
         for _ in 0..most {
             match self.improved(&best, ban) {
                 Some(better) => best = better,
@@ -406,7 +410,96 @@ impl<'a> Scene<'a> {
         {
             return Some(found);
         }
-        self.rebuilt(at, ban)
+        self.relabelled(at, ban).or_else(|| self.rebuilt(at, ban))
+    }
+
+    /// Exchanges one false level, or two at once, for listed levels nearby, while the missing levels move along: which level is false
+    /// and where others are missing can often be changed together at little cost, but not one after the other.
+    fn relabelled(&self, at: &Explanation, ban: Option<Ban>) -> Option<Explanation> {
+        let falses: Vec<(usize, usize)> = at
+            .steps
+            .iter()
+            .enumerate()
+            .filter_map(|(number, step)| match *step {
+                Step::False(index) => Some((number, index)),
+                Step::Missing(_) => None,
+            })
+            .collect();
+        let along = self.along_places(at);
+        let projected = |column: &[f64]| -> Vec<f64> {
+            let mut column = column.to_vec();
+            for slope in &along {
+                let part = -dot(slope, &column);
+                add(&mut column, slope, part);
+            }
+            column
+        };
+        let rest = projected(&at.rest);
+        // What each exchange changes in the rest, and the rest of the likelihood that it leaves.
+        let exchanges: Vec<Vec<(usize, Vec<f64>)>> = falses
+            .iter()
+            .map(|&(_, index)| {
+                let near = index.saturating_sub(RELABELLED)..(index + RELABELLED + 1).min(self.levels.len());
+                near.filter(|&other| {
+                    let step = Step::False(other);
+                    other != index && self.is_free(step, &at.steps) && !banned(ban, step, self.levels)
+                })
+                .map(|other| {
+                    let mut change = self.listed.matrix.col_as_slice(index).to_vec();
+                    add(&mut change, self.listed.matrix.col_as_slice(other), -1.0);
+                    (other, projected(&change))
+                })
+                .collect()
+            })
+            .collect();
+        let mut promising: Vec<(f64, Vec<(usize, usize)>)> = Vec::new();
+        for (i, &(first, _)) in falses.iter().enumerate() {
+            for (other, change) in &exchanges[i] {
+                let gain = -dot(change, &rest) - 0.5 * dot(change, change);
+                promising.push((gain, vec![(first, *other)]));
+                for (j, &(second, _)) in falses.iter().enumerate().take(i) {
+                    for (another, more) in &exchanges[j] {
+                        if another == other {
+                            continue;
+                        }
+                        let both = gain - dot(more, &rest) - 0.5 * dot(more, more) - dot(change, more);
+                        promising.push((both, vec![(first, *other), (second, *another)]));
+                    }
+                }
+            }
+        }
+        promising.sort_by(|a, b| b.0.total_cmp(&a.0));
+        for (_, exchange) in promising.into_iter().take(FOLLOWED) {
+            let mut steps = at.steps.clone();
+            for (number, index) in exchange {
+                steps[number] = Step::False(index);
+            }
+            let found = self.settled(steps, ban);
+            if found.value > at.value + WORTH {
+                return Some(found);
+            }
+        }
+        None
+    }
+
+    /// Orthonormal directions in which the record changes when missing levels move.
+    fn along_places(&self, at: &Explanation) -> Vec<Vec<f64>> {
+        let mut directions: Vec<Vec<f64>> = Vec::new();
+        for step in &at.steps {
+            let Step::Missing(x) = *step else { continue };
+            let mut slope = self.slope(x);
+            let before = dot(&slope, &slope);
+            for direction in &directions {
+                let part = -dot(direction, &slope);
+                add(&mut slope, direction, part);
+            }
+            let norm = dot(&slope, &slope);
+            if norm > 1e-6 * before {
+                slope.iter_mut().for_each(|value| *value /= norm.sqrt());
+                directions.push(slope);
+            }
+        }
+        directions
     }
 
     /// Takes out the steps of one neighbourhood after the other and puts in the best set of up to three.
