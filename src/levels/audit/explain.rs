@@ -57,6 +57,8 @@ pub(super) struct Explained {
     pub(super) level_error: f64,
     /// Logarithm of the probability of the record, up to a constant of the points.
     pub(super) evidence: f64,
+    /// Standard deviation of the place of a single missing level at the points.
+    pub(super) place_errors: Vec<f64>,
     pub(super) whitener: Cholesky,
 }
 
@@ -154,6 +156,7 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
                 odds,
             })
             .collect(),
+        place_errors: predicted.points.iter().map(|&k| scene.place_error(k)).collect(),
         whitener,
     })
 }

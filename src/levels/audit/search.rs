@@ -643,9 +643,10 @@ impl<'a> Scene<'a> {
         rest
     }
 
-    /// Whitened rest of an explanation.
-    pub(super) fn whitened_rest<'b>(&self, explanation: &'b Explanation) -> &'b [f64] {
-        &explanation.rest
+    /// Standard deviation of the place of a single missing level at x.
+    pub(super) fn place_error(&self, x: f64) -> f64 {
+        let slope = self.slope(x);
+        1.0 / dot(&slope, &slope).sqrt()
     }
 }
 
