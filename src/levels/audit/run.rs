@@ -43,6 +43,8 @@ const TOLERANCE: f64 = 0.03;
 const OPEN: f64 = 0.5;
 /// Rounds of improving a trend.
 const TREND_ROUNDS: usize = 3;
+/// A trend that simplifies the record by more than this, in natural units, needs no comparison with an explanation by faults alone.
+const CLEAR_TREND: f64 = 100.0;
 /// Evidence, in natural units, from which on a trend is told, and standard deviations.
 const TREND_ODDS: f64 = 10.0;
 const TREND_DEVIATIONS: f64 = 5.0;
@@ -62,6 +64,7 @@ pub fn audit(list: &Listed<'_>, prediction: &Prediction) -> Option<Findings> {
     }
     let start = Start::new(list, prediction);
     let (law, gained) = coarse(prediction, list.levels, &start.span(list, prediction), start.below);
+    if std::env::var("AV").is_ok() {eprintln!("coarse {law:?} gained {gained:.1}");}
     let plain = || Case::new(list, prediction, &start, PowerLaw::none(law.last));
     let case = if gained > 0.0 {
         let mut trended = Case::new(list, prediction, &start, law)?;
@@ -73,9 +76,14 @@ pub fn audit(list: &Listed<'_>, prediction: &Prediction) -> Option<Findings> {
             }
             trended = next;
         }
-        let plain = plain()?;
-        trended.odds = trended.explained.evidence - plain.explained.evidence;
-        if trended.odds > TREND_ODDS { trended } else { plain }
+        if gained > CLEAR_TREND {
+            trended.odds = gained;
+            trended
+        } else {
+            let plain = plain()?;
+            trended.odds = trended.explained.evidence - plain.explained.evidence;
+            if trended.odds > TREND_ODDS { trended } else { plain }
+        }
     } else {
         plain()?
     };

@@ -19,6 +19,9 @@ const NOISE: f64 = 0.12;
 const CHANGE: f64 = 6.0;
 /// Cost of a trend.
 const TREND: f64 = 12.0;
+/// Root mean square distance from whole numbers of a record without its trend, in levels: where there is more noise than this, whole
+/// numbers cannot be told (random numbers have 0.29).
+const QUIET: f64 = 0.15;
 /// Neighbouring points that say one thing.
 const DEPENDENT: f64 = 3.0;
 /// Mean spacings that the coarse record is smoothed over at least: single levels do not matter here.
@@ -80,15 +83,18 @@ pub(super) fn coarse(prediction: &Prediction, levels: &[f64], span: &Span, below
         ..*span
     };
     let record = CoarseRecord::new(prediction, wide, below);
-    let without = record.cost(levels, &none);
+    let (without, _) = record.cost(levels, &none);
     let mut best = (none, without - TREND);
     let steps = (MOST_SPACINGS / STEP_SPACINGS) as i32;
     for power in POWERS {
         for step in -steps..=steps {
             let factor = f64::from(step) * STEP_SPACINGS / (density * last);
             let law = PowerLaw { factor, power, last };
-            let cost = record.cost(levels, &law);
-            if step != 0 && cost < best.1 {
+            if step == 0 {
+                continue;
+            }
+            let (cost, distance) = record.cost(levels, &law);
+            if cost < best.1 && distance < QUIET {
                 best = (law, cost);
             }
         }
@@ -111,8 +117,9 @@ impl CoarseRecord {
         }
     }
 
-    /// Distance of the record from whole numbers, and their changes, in natural units of likelihood.
-    fn cost(&self, levels: &[f64], law: &PowerLaw) -> f64 {
+    /// Distance of the record from whole numbers, and their changes, in natural units of likelihood; and its root mean square
+    /// distance from whole numbers.
+    fn cost(&self, levels: &[f64], law: &PowerLaw) -> (f64, f64) {
         let truth: Vec<f64> = levels.iter().map(|&level| law.truth(level)).collect();
         let to = truth.last().copied().unwrap_or(0.0);
         let smoothing = self.predicted.span.smoothing;
@@ -128,6 +135,7 @@ impl CoarseRecord {
             changes += (whole - before).abs();
             before = whole;
         }
-        0.5 * distance / (NOISE * NOISE * DEPENDENT) + CHANGE * changes
+        let cost = 0.5 * distance / (NOISE * NOISE * DEPENDENT) + CHANGE * changes;
+        (cost, (distance / stairs.len().max(1) as f64).sqrt())
     }
 }
