@@ -8,7 +8,7 @@ use super::decode::decode;
 use super::noise::{Expected, Noise, Waves};
 use super::prediction::Prediction;
 use super::record::Predicted;
-use super::search::{Ban, Explanation, Scene, Step};
+use super::search::{Ban, Explanation, Scene, Step, Steps};
 use crate::dense::{Cholesky, Matrix};
 
 /// Factors of the expected variances that are tried, in descending order.
@@ -16,7 +16,7 @@ const HEATS: [f64; 5] = [1e4, 1e3, 1e2, 1e1, 1.0];
 /// Rounds of learning the noise.
 const ROUNDS: usize = 6;
 /// Rounds in which the faults are decoded anew besides being improved.
-const DECODED: usize = 3;
+const DECODED: usize = 2;
 /// Gain in evidence, in natural units, below which learning has settled.
 const SETTLED: f64 = 1.0;
 /// An explanation that is worse than another by more than this, in natural units of likelihood, is not worth a search.
@@ -79,8 +79,9 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
         middle: 0.5 * (span.from + span.to),
     };
     let single = shifts(predicted, levels, &density);
+    let all_steps = Steps::new(span, &predicted.points, levels);
     let scene = |whitener: &Cholesky| {
-        Scene::new(span, &predicted.points, record, levels, whitener, &density)
+        Scene::new(span, &predicted.points, &all_steps, record, levels, whitener, &density)
     };
     let max_length = setting.prediction.max_length;
     let mut noise = Noise::new(setting.waves, predicted, &expected, setting.fixed.clone(), single);

@@ -10,7 +10,7 @@ use crate::dense::{Cholesky, Matrix, dot};
 use std::f64::consts::PI;
 
 /// Places tried for missing levels, per smoothing width.
-const PLACES_PER_WIDTH: f64 = 5.0;
+const PLACES_PER_WIDTH: f64 = 4.0;
 /// Part of the levels that is expected to be missing, or false, before anything is known.
 const RATE: f64 = 0.01;
 /// Pairs of a missing and a false level are looked for up to this many mean spacings apart.
@@ -66,7 +66,7 @@ pub(super) struct Scene<'a> {
     pub(super) points: &'a [f64],
     pub(super) levels: &'a [f64],
     pub(super) white: Vec<f64>,
-    pub(super) places: Vec<f64>,
+    pub(super) places: &'a [f64],
     /// Whitened steps at the places; squared norms; logarithms of their priors.
     pub(super) missing: Columns,
     /// The same at the listed levels.
@@ -92,16 +92,15 @@ impl Columns {
     }
 }
 
-impl<'a> Scene<'a> {
-    /// Prepares the search in a record.
-    pub(super) fn new(
-        span: Span,
-        points: &'a [f64],
-        record: &[f64],
-        levels: &'a [f64],
-        whitener: &Cholesky,
-        density: &'a dyn Fn(f64) -> f64,
-    ) -> Self {
+/// Steps in a record, not whitened: missing levels at evenly spaced places, and the listed levels.
+pub(super) struct Steps {
+    places: Vec<f64>,
+    missing: Matrix,
+    listed: Matrix,
+}
+
+impl Steps {
+    pub(super) fn new(span: Span, points: &[f64], levels: &[f64]) -> Self {
         let count = ((span.to - span.from) / span.smoothing * PLACES_PER_WIDTH).ceil() as usize;
         let step = (span.to - span.from) / count as f64;
         let places: Vec<f64> = (0..count)
@@ -114,8 +113,30 @@ impl<'a> Scene<'a> {
                     *value = span.step(x, k);
                 }
             }
+            plain
+        };
+        Self {
+            missing: columns(&places),
+            listed: columns(levels),
+            places,
+        }
+    }
+}
+
+impl<'a> Scene<'a> {
+    /// Prepares the search in a record.
+    pub(super) fn new(
+        span: Span,
+        points: &'a [f64],
+        steps: &'a Steps,
+        record: &[f64],
+        levels: &'a [f64],
+        whitener: &Cholesky,
+        density: &'a dyn Fn(f64) -> f64,
+    ) -> Self {
+        let columns = |plain: &Matrix| {
             let matrix = whitener.whitened(plain.as_ref());
-            let squares = (0..at.len())
+            let squares = (0..matrix.ncols())
                 .map(|column| {
                     let step = matrix.col_as_slice(column);
                     dot(step, step)
@@ -127,7 +148,9 @@ impl<'a> Scene<'a> {
                 priors: Vec::new(),
             }
         };
-        let mut missing = columns(&places);
+        let places = steps.places.as_slice();
+        let count = places.len();
+        let mut missing = columns(&steps.missing);
         missing.priors = (0..count)
             .map(|place| {
                 let (a, b) = (place.saturating_sub(1), (place + 1).min(count - 1));
@@ -142,7 +165,7 @@ impl<'a> Scene<'a> {
                 prior_of_missing(1.0 / slope, density(places[place]))
             })
             .collect();
-        let mut listed = columns(levels);
+        let mut listed = columns(&steps.listed);
         listed.priors = vec![RATE.ln(); levels.len()];
         let pairs = levels
             .iter()
