@@ -92,7 +92,6 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
         let whitener = noise.whitener()?;
         let found = scene(&whitener).search(steps, None);
         let evidence = found.value - 0.5 * whitener.log_determinant();
-        if std::env::var("AV").is_ok() {eprintln!("heat {heat}: steps {} value {:.1} evidence {evidence:.1} {:?}", found.steps.len(), found.value, T0.with(|t| t.elapsed()));}
         steps = found.steps;
         if best.as_ref().is_some_and(|best| best.evidence >= evidence) {
             break;
@@ -115,7 +114,6 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
             found = with_decoded(&scene, found);
         }
         let evidence = found.value - 0.5 * whitener.log_determinant();
-        if std::env::var("AV").is_ok() {eprintln!("learn: steps {} value {:.1} evidence {evidence:.1} {:?}", found.steps.len(), found.value, T0.with(|t| t.elapsed()));}
         let rest = scene.rest_of(record, &found.steps);
         steps = found.steps;
         if evidence > best.evidence + SETTLED {
@@ -137,10 +135,8 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
     }
     let whitener = best.noise.whitener()?;
     let scene = scene(&whitener);
-    if std::env::var("AV").is_ok() {eprintln!("question {:?}", T0.with(|t| t.elapsed()));}
     let (found, odds) = questioned(&scene, scene.search(best.steps, None), &density);
     let errors = scene.errors(&found);
-    if std::env::var("AV").is_ok() {eprintln!("done {:?}", T0.with(|t| t.elapsed()));}
     Some(Explained {
         rest: scene.rest_of(record, &found.steps),
         noise: best.noise.deviations(),
@@ -150,11 +146,16 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
             .steps
             .iter()
             .zip(errors.iter().zip(odds))
-            .map(|(&step, (&error, odds))| Found {
-                step,
-                k: scene.place(step),
-                error,
-                odds,
+            .map(|(&step, (&error, odds))| {
+                let k = scene.place(step);
+                // A missing level would be as far from its predicted place as the listed ones are.
+                let own = best.noise.level_error() / density(k);
+                Found {
+                    step,
+                    k,
+                    error: error.hypot(own),
+                    odds,
+                }
             })
             .collect(),
         place_errors: predicted.points.iter().map(|&k| scene.place_error(k)).collect(),
@@ -224,4 +225,3 @@ pub(super) fn positive_density(density: f64, width: f64) -> f64 {
     density.max(1.0 / width)
 }
 
-thread_local! { static T0: std::time::Instant = std::time::Instant::now(); }

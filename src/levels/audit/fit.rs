@@ -7,7 +7,7 @@
 use super::least_squares;
 use super::prediction::Prediction;
 use super::record::{Predicted, Span};
-use super::run::{Case, FEWEST, Listed, Start};
+use super::run::{BEGINS_LATE, Case, FEWEST, Listed, Start};
 use super::trend::PowerLaw;
 use crate::baseline::Weyl;
 use crate::dense::{Cholesky, Matrix, dot};
@@ -17,6 +17,8 @@ use serde::Serialize;
 /// Iterations on the smooth count, and with orbits.
 const SMOOTH_STEPS: usize = 8;
 const STEPS: usize = 8;
+/// Steps for which derivatives are computed anew.
+const DERIVED: usize = 2;
 /// The iteration has ended where a step is below this part of the standard deviation.
 const ENOUGH: f64 = 0.05;
 /// Differences of parameters: with orbits such that the largest phase changes by this many radians at the end of the list.
@@ -78,14 +80,18 @@ pub fn fit<F: Family>(list: &Listed<'_>, family: &F, file: &[f64]) -> Result<Fit
     };
     let mut values = smooth.clone();
     let mut errors = vec![f64::INFINITY; file.len()];
-    for _ in 0..STEPS {
+    let mut columns = Vec::new();
+    for step in 0..STEPS {
         let prediction = family.whole(&values)?;
         let start = Start::new(list, &prediction);
         let last = PowerLaw::none(list.levels[list.levels.len() - 1]);
         let Some(case) = Case::new(list, &prediction, &start, last, 0.0) else {
             return Ok(None);
         };
-        let columns = derivatives(family, &values, &case.predicted)?;
+        // Once the values are close, derivatives no longer change.
+        if step < DERIVED {
+            columns = derivatives(family, &values, &case.predicted)?;
+        }
         let none = vec![0.0; file.len()];
         let Some(estimate) = least_squares::fit(&case.explained, &columns, &none) else {
             return Ok(None);
@@ -175,7 +181,7 @@ fn fit_smooth<F: Family>(
             .collect();
         // A list that begins in the middle lacks a whole number of levels.
         let below = -rest.iter().sum::<f64>() / rest.len() as f64;
-        if weyl.count(first, 0.0) > crate::levels::audit::run::BEGINS_LATE {
+        if weyl.count(first, 0.0) > BEGINS_LATE {
             rest.iter_mut().for_each(|value| *value += below.round());
         }
         let mut columns = Vec::new();

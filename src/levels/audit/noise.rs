@@ -35,11 +35,13 @@ const EXPECTED_WEIGHT: f64 = 2.0;
 const POINTS_PER_KNOT: usize = 20;
 const MOST_KNOTS: usize = 20;
 /// Standard deviation of single levels, in mean spacings, that is expected of a good list and a good prediction.
-const LEVEL_ERROR: f64 = 0.003;
+const LEVEL_ERROR: f64 = 0.001;
 /// The most that is taken for an error of single levels before the record is seen: more would hide levels that are shifted.
 const MOST_LEVEL_ERROR: f64 = 0.1;
+/// While the noise is enlarged by a factor, the variance of single levels is by this factor more.
+const LEVEL_HEAT: f64 = 9.0;
 /// Weight of that expectation, in levels.
-const LEVEL_WEIGHT: f64 = 20.0;
+const LEVEL_WEIGHT: f64 = 10.0;
 /// Weight of a constant gain, in points.
 const GAIN_WEIGHT: f64 = 12.0;
 
@@ -49,8 +51,8 @@ pub(super) struct Waves {
     spacing: f64,
     /// Cosine and sine of each length in turn, smoothed; a column each.
     columns: Matrix,
-    /// Number of points at each end that feel the cut.
-    at_end: usize,
+    /// Numbers of points at the beginning and at the end that feel the cut of the Gaussian, or have one of their own.
+    at_ends: [usize; 2],
     /// Cosines and sines of lengths beyond the last of `lengths` at the points of each end.
     beyond: [Matrix; 2],
     beyond_lengths: Vec<f64>,
@@ -70,12 +72,14 @@ impl Waves {
         let points = predicted.points.len();
         let near = |index: usize| {
             let k = predicted.points[index];
-            (k - span.from).min(span.to - k) < END * span.smoothing
+            let width = span.width(k);
+            (k - span.from).min(span.to - k) < END * width || width > span.smoothing
         };
-        let at_end = (0..points).take_while(|&index| near(index)).count().min(points / 2);
+        let at_begin = (0..points).take_while(|&index| near(index)).count();
+        let at_end = (at_begin..points).rev().take_while(|&index| near(index)).count();
         let middles = predicted.cells.middles();
         let wave = |length: f64, index: usize| -> (f64, f64) {
-            if index >= at_end && index + at_end < points {
+            if index >= at_begin && index + at_end < points {
                 let phase = length * predicted.points[index];
                 let damped = (-0.5 * (length * span.smoothing).powi(2)).exp();
                 return (damped * phase.cos(), damped * phase.sin());
@@ -96,12 +100,12 @@ impl Waves {
         Self {
             columns: fill(&lengths, 0, points),
             beyond: [
-                fill(&beyond_lengths, 0, at_end),
+                fill(&beyond_lengths, 0, at_begin),
                 fill(&beyond_lengths, points - at_end, at_end),
             ],
             lengths,
             spacing,
-            at_end,
+            at_ends: [at_begin, at_end],
             beyond_lengths,
         }
     }
@@ -241,9 +245,10 @@ impl<'a> Noise<'a> {
     fn add_beyond(&self, covariance: &mut Matrix) {
         let points = self.gain.len();
         for (end, columns) in self.waves.beyond.iter().enumerate() {
-            let first = if end == 0 { 0 } else { points - self.waves.at_end };
-            for i in 0..self.waves.at_end {
-                for j in 0..self.waves.at_end {
+            let count = self.waves.at_ends[end];
+            let first = if end == 0 { 0 } else { points - count };
+            for i in 0..count {
+                for j in 0..count {
                     let sum: f64 = self
                         .expected_beyond
                         .iter()
@@ -268,7 +273,7 @@ impl<'a> Noise<'a> {
 
     /// Sets the waves of orbits that are in the sum, and the shifts of single levels, to what is expected beforehand times a factor.
     pub(super) fn heat(&mut self, factor: f64, max_length: f64) {
-        self.single_variance = (factor * LEVEL_ERROR * LEVEL_ERROR).min(MOST_LEVEL_ERROR * MOST_LEVEL_ERROR);
+        self.single_variance = (LEVEL_HEAT * factor * LEVEL_ERROR * LEVEL_ERROR).min(MOST_LEVEL_ERROR * MOST_LEVEL_ERROR);
         for ((variance, expected), length) in self
             .variances
             .iter_mut()

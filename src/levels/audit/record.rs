@@ -17,6 +17,10 @@ const TAIL: f64 = 6.0;
 /// Where a Gaussian has ended, in standard deviations: what lies beyond is 1e-15.
 const ENDED: f64 = 8.0;
 
+/// Least smoothing in mean spacings. Near the beginning of a list a few orbits resolve single levels; a record that shows more than
+/// their mean positions gains nothing, and errors of levels would no longer be small against its widths.
+const RESOLUTION: f64 = 0.6;
+
 /// Where the list is taken to be complete, and how it is smoothed; all in k.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Span {
@@ -24,34 +28,49 @@ pub struct Span {
     pub from: f64,
     /// Last k at which it is known.
     pub to: f64,
-    /// Standard deviation of the Gaussian.
+    /// Standard deviation of the Gaussian, but for a few points at low k where [`Self::width`] is larger.
     pub smoothing: f64,
+    /// Density of levels by the area term, per k.
+    pub(super) density_per_k: f64,
 }
 
 impl Span {
     /// The span from..to with the smoothing that suits orbits up to `max_length`.
-    pub fn new(from: f64, to: f64, max_length: f64) -> Self {
+    pub fn new(from: f64, to: f64, prediction: &Prediction) -> Self {
         Self {
             from,
             to,
-            smoothing: REACH / max_length,
+            smoothing: REACH / prediction.max_length,
+            density_per_k: 2.0 * prediction.weyl.coefficient(2),
         }
+    }
+
+    /// Standard deviation of the Gaussian at k.
+    pub fn width(&self, k: f64) -> f64 {
+        self.smoothing.max(RESOLUTION / (self.density_per_k * k))
     }
 
     /// The points of the record.
     pub fn points(&self) -> Vec<f64> {
-        let count = ((self.to - self.from) / (POINT_STEP * self.smoothing)).floor() as usize + 1;
-        let step = (self.to - self.from) / count as f64;
-        (0..count)
-            .map(|index| self.from + step * (index as f64 + 0.5))
-            .collect()
+        let mut points = Vec::new();
+        let mut k = self.from;
+        loop {
+            // Half a step before and after each point.
+            let half = 0.5 * POINT_STEP * self.width(k);
+            let point = k + half;
+            k = point + half;
+            if point >= self.to {
+                return points;
+            }
+            points.push(point);
+        }
     }
 
     /// The step of a level at x as it stands in the record at k: the part of the Gaussian about k that lies
     /// above x, of the part that lies within the span.
     pub(super) fn step(&self, x: f64, k: f64) -> f64 {
         let x = x.clamp(self.from, self.to);
-        let reach = ENDED * self.smoothing;
+        let reach = ENDED * self.width(k);
         if (x - k).abs() > reach {
             return if x < k { 1.0 } else { 0.0 };
         }
@@ -61,18 +80,18 @@ impl Span {
 
     /// Derivative of [`Self::step`] with respect to x.
     pub(super) fn step_slope(&self, x: f64, k: f64) -> f64 {
-        let t = (x - k) / self.smoothing;
+        let t = (x - k) / self.width(k);
         if x < self.from || x > self.to || t.abs() > ENDED {
             return 0.0;
         }
         let (below, all) = self.within(k);
-        let gaussian = (-0.5 * t * t).exp() / (self.smoothing * (2.0 * PI).sqrt());
+        let gaussian = (-0.5 * t * t).exp() / (self.width(k) * (2.0 * PI).sqrt());
         -gaussian / (all - below)
     }
 
     /// Parts of the Gaussian about k that lie below the begin and below the end of the span.
     fn within(&self, k: f64) -> (f64, f64) {
-        let reach = ENDED * self.smoothing;
+        let reach = ENDED * self.width(k);
         let part = |end: f64, far: f64| {
             if (end - k).abs() > reach { far } else { self.share(end, k) }
         };
@@ -81,7 +100,7 @@ impl Span {
 
     /// Part of the Gaussian about k below `upto`.
     fn share(&self, upto: f64, k: f64) -> f64 {
-        0.5 * libm::erfc((k - upto) * FRAC_1_SQRT_2 / self.smoothing)
+        0.5 * libm::erfc((k - upto) * FRAC_1_SQRT_2 / self.width(k))
     }
 }
 
@@ -125,16 +144,17 @@ pub(super) struct Cells {
 
 impl Cells {
     pub(super) fn new(span: &Span, points: &[f64]) -> Self {
-        let width = span.to - span.from;
-        let count = (width / span.smoothing * CELLS_PER_WIDTH).ceil() as usize;
-        let step = width / count as f64;
+        let all = span.to - span.from;
+        let count = (all / span.smoothing * CELLS_PER_WIDTH).ceil() as usize;
+        let step = all / count as f64;
         let grid = UniformGrid {
             start: span.from + 0.5 * step,
             step,
             count,
         };
-        let reach = TAIL * span.smoothing;
         let weights = |&point: &f64| {
+            let width = span.width(point);
+            let reach = TAIL * width;
             let index = |k: f64| ((k - span.from) / step).clamp(0.0, count as f64);
             let (first, last) = (
                 index(point - reach).floor() as usize,
@@ -142,7 +162,7 @@ impl Cells {
             );
             let mut weights: Vec<f64> = (first..last)
                 .map(|cell| {
-                    let t = (grid.point(cell) - point) / span.smoothing;
+                    let t = (grid.point(cell) - point) / width;
                     (-0.5 * t * t).exp()
                 })
                 .collect();
@@ -215,10 +235,10 @@ impl Predicted {
 
     /// Smoothed staircase of `levels` (ascending, in k) at the points; `below` levels lie below the span.
     pub fn of_levels(&self, levels: &[f64], below: f64) -> Vec<f64> {
-        let reach = TAIL * self.span.smoothing;
         self.points
             .iter()
             .map(|&k| {
+                let reach = ENDED * self.span.width(k);
                 let whole = levels.partition_point(|&level| level < k - reach);
                 let near = &levels[whole..];
                 let near = &near[..near.partition_point(|&level| level <= k + reach)];

@@ -64,7 +64,6 @@ pub fn audit(list: &Listed<'_>, prediction: &Prediction) -> Option<Findings> {
     }
     let start = Start::new(list, prediction);
     let (law, gained) = coarse(prediction, list.levels, &start.span(list, prediction), start.below);
-    if std::env::var("AV").is_ok() {eprintln!("coarse {law:?} gained {gained:.1}");}
     let plain = || Case::new(list, prediction, &start, PowerLaw::none(law.last), TOLERANCE);
     let case = if gained > 0.0 {
         let mut trended = Case::new(list, prediction, &start, law, TOLERANCE)?;
@@ -111,7 +110,7 @@ impl Start {
         }
         // The first level is the first thing that is known of a list that begins in the middle.
         let last = list.levels[list.levels.len() - 1];
-        let span = Span::new(first, last, prediction.max_length);
+        let span = Span::new(first, last, prediction);
         let predicted = Predicted::new(prediction, span);
         let upto = first + FIRST_PART * (last - first);
         let stairs = predicted.of_levels(list.levels, 0.0);
@@ -132,7 +131,7 @@ impl Start {
     fn span(&self, list: &Listed<'_>, prediction: &Prediction) -> Span {
         let last = list.levels[list.levels.len() - 1];
         let to = list.to.unwrap_or(last).max(last);
-        Span::new(self.from, to, prediction.max_length)
+        Span::new(self.from, to, prediction)
     }
 }
 
@@ -414,7 +413,7 @@ fn fixed(
         if error == 0.0 {
             continue;
         }
-        let reach = 6.0 * predicted.span.smoothing;
+        let reach = 8.0 * predicted.span.width(level);
         let first = predicted.points.partition_point(|&k| k < level - reach);
         let last = predicted.points.partition_point(|&k| k <= level + reach);
         let slopes: Vec<f64> = predicted.points[first..last]

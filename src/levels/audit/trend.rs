@@ -6,7 +6,6 @@
 
 use super::prediction::Prediction;
 use super::record::{Predicted, Span};
-use crate::levels::staircase;
 
 /// Powers that are tried; 0 is a wrong scale. The error of finite elements of degree p goes as k^(2p).
 const POWERS: [f64; 6] = [0.0, 1.0, 2.0, 3.0, 4.0, 6.0];
@@ -126,10 +125,11 @@ impl CoarseRecord {
         let points = &self.predicted.points;
         // Near the end the cut of the Gaussian shows.
         let upto = points.partition_point(|&k| k < to - 2.0 * smoothing);
-        let stairs = staircase(&truth, &points[..upto], smoothing);
+        let stairs = self.predicted.of_levels(&truth, self.below);
+        let stairs = &stairs[..upto];
         let (mut distance, mut changes, mut before) = (0.0, 0.0, 0.0);
         for (stair, predicted) in stairs.iter().zip(&self.predicted.staircase) {
-            let value = stair + self.below - predicted;
+            let value = stair - predicted;
             let whole = value.round();
             distance += (value - whole).powi(2);
             changes += (whole - before).abs();
