@@ -89,7 +89,10 @@ pub fn fit<F: Family>(list: &Listed<'_>, family: &F, file: &[f64]) -> Result<Fit
             return Ok(None);
         };
         // Once the values are close, derivatives no longer change.
-        if step < DERIVED {
+        let fits = columns
+            .first()
+            .is_some_and(|column: &Vec<f64>| column.len() == case.predicted.points.len());
+        if step < DERIVED || !fits {
             columns = derivatives(family, &values, &case.predicted)?;
         }
         let none = vec![0.0; file.len()];
