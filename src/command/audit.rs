@@ -40,6 +40,7 @@ pub(super) fn run(typed: &Audit, options: &Options) -> Result<Answer, CommandErr
     let part = Part::new(&given, wishes.window, &subject);
     check::check(&subject, &given, &part, &typed.levels)?;
     let plan = plan(&subject, &wishes, &part)?;
+    check::check_resolution(&subject, &part, &plan)?;
     let (catalogue, prediction) = predict(&subject, plan.limits, options);
     let findings = progress::during(options, "auditing the list", || {
         audit(&part.listed(&subject), &prediction)

@@ -25,8 +25,13 @@ pub(crate) enum CommandError {
     Levels(#[from] ListError),
     /// The list's column cannot be turned into the file's unit.
     #[error(
-        "{}: the list has a column `{column}`, but the levels of the system file are {expected}: give a column \
-         `{expected}` or `k`", path.display()
+        "{}: the list has a column `{column}`, but the levels of the system file are {expected}: give a column {}",
+        path.display(),
+        if *expected == "k" {
+            "`k`, or put [units] into the system file".to_owned()
+        } else {
+            format!("`{expected}` or `k`")
+        }
     )]
     ListUnit {
         path: PathBuf,
@@ -193,6 +198,21 @@ pub(crate) enum CommandError {
         most: usize,
         option: &'static str,
     },
+    /// Longer orbits than an audit can use.
+    #[error(
+        "orbits up to {longest} would need a record of {points:.0} points, more than {limit:.0}: give a smaller --max-length or a narrower \
+         window"
+    )]
+    TooFine {
+        longest: String,
+        points: f64,
+        limit: f64,
+    },
+    /// Orbits too short for an audit of the window.
+    #[error(
+        "orbits up to {longest} resolve nothing in this window: give a --max-length of {needed} or more, or a wider window"
+    )]
+    TooCoarse { longest: String, needed: String },
     /// A list that the noise model cannot take.
     #[error("{}: the list cannot be compared with the prediction: its levels are too close to each other or to 0", path.display())]
     NotAudited { path: PathBuf },

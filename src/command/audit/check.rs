@@ -1,8 +1,9 @@
 //! Lists that no audit can say anything about: too short, too long, of another shape or in another unit.
 
-use super::{Part, unit};
+use super::{Part, REACH, unit};
 use crate::command::error::CommandError;
 use crate::command::given::GivenLevels;
+use crate::command::limits::Plan;
 use crate::command::subject::Subject;
 use crate::command::text::counted;
 use std::path::Path;
@@ -11,6 +12,11 @@ use std::path::Path;
 const FEWEST: usize = 10;
 /// Most levels: the noise of the record is a matrix of about as many rows, which takes a minute then.
 const MOST: usize = 4000;
+/// Most points of the record, for the same reason; a point is four fifths of the smoothing width.
+const MOST_POINTS: f64 = 6000.0;
+const POINTS_PER_WIDTH: f64 = 1.25;
+/// Fewest smoothing widths in a window: with fewer there is nothing to compare neighbouring places with.
+const FEWEST_WIDTHS: f64 = 8.0;
 /// A list with less or more than this part of the levels that are expected is another one.
 const COUNT: std::ops::RangeInclusive<f64> = 0.7..=1.3;
 /// Levels by which a staircase strays from the smooth count without any level missing.
@@ -53,6 +59,31 @@ pub(super) fn check(
             found,
             most: MOST,
             option: subject.system.units.window_option(),
+        });
+    }
+    Ok(())
+}
+
+/// Refuses longest orbits under which the record would be far too fine or too coarse.
+pub(super) fn check_resolution(
+    subject: &Subject,
+    part: &Part,
+    plan: &Plan,
+) -> Result<(), CommandError> {
+    let units = &subject.system.units;
+    let longest = plan.limits.max_length;
+    let widths = (units.k(part.window.to) - units.k(part.window.from)) * longest / REACH;
+    if widths * POINTS_PER_WIDTH > MOST_POINTS {
+        return Err(CommandError::TooFine {
+            longest: subject.length(longest, 3),
+            points: widths * POINTS_PER_WIDTH,
+            limit: MOST_POINTS,
+        });
+    }
+    if widths < FEWEST_WIDTHS {
+        return Err(CommandError::TooCoarse {
+            longest: subject.length(longest, 3),
+            needed: subject.length(longest * FEWEST_WIDTHS / widths, 3),
         });
     }
     Ok(())

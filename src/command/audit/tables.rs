@@ -5,7 +5,7 @@ use super::corrected::spread;
 use super::sentence::listed;
 use crate::command::table::Table;
 use crate::command::text::{significant, with_error};
-use orbitsum::levels::audit::{Fault, Part};
+use orbitsum::levels::audit::{Fault, FaultKind, Part};
 use serde_json::{Value, json};
 
 /// Digits of the ends of windows: a window is as wide as three errors, or a mean spacing.
@@ -67,10 +67,14 @@ pub(super) fn shown(audited: &Audited<'_>) -> Table {
         "search again",
     ]);
     for fault in &audited.findings.faults {
-        let place = with_error(
-            units.value(fault.k),
-            spread(subject, fault.k, fault.k_error),
-        );
+        let place = match fault.kind {
+            // A false level is where it is listed.
+            FaultKind::False => significant(units.value(fault.k), LISTED_DIGITS),
+            _ => with_error(
+                units.value(fault.k),
+                spread(subject, fault.k, fault.k_error),
+            ),
+        };
         let listed = listed(audited, fault).map(|(number, value)| {
             format!("{} (number {number})", significant(value, LISTED_DIGITS))
         });

@@ -12,6 +12,10 @@ use orbitsum::system::{LengthUnit, LevelUnit, Units};
 /// Root mean square of count less number that still fits: this many levels, and this part of all. The count of a list in another unit
 /// is off by a factor.
 const FIT: (f64, f64) = (3.0, 0.03);
+/// Misfits of readings by the same factor differ by rounding only.
+const SAME: f64 = 1e-6;
+/// Distinct levels of a list of copies that can be compared with anything.
+const FEWEST_DISTINCT: usize = 10;
 /// Range of sizes beside the one of the file that are worth naming: beyond, it is a unit or nothing.
 const SIZES: std::ops::RangeInclusive<f64> = 0.05..=20.0;
 /// Units of length with their size in metres, for lists of frequencies beside files without units.
@@ -36,27 +40,49 @@ struct Reading {
     like: Like,
 }
 
-/// The reading that fits a list best, if any does.
+/// What a list seems to be that fits as something else, if it does.
 pub(super) fn recognise(subject: &Subject, given: &GivenLevels) -> Option<Like> {
     let own = subject.weyl();
     let numbers: Vec<f64> = given.k.iter().map(|&k| given.unit.value(k)).collect();
-    repeated(&own, &given.k)
-        .or_else(|| {
-            let read = |reading: &Reading| -> Vec<f64> {
-                numbers
-                    .iter()
-                    .map(|number| reading.factor * number.powf(reading.power))
-                    .collect()
-            };
-            readings(&given.unit, &subject.system.units)
-                .into_iter()
-                .map(|reading| (late_misfit(&own, &read(&reading)), reading.like))
-                .filter(|(misfit, _)| fits(*misfit, numbers.len()))
-                .min_by(|a, b| a.0.total_cmp(&b.0))
-                .map(|(_, like)| like)
-        })
+    row_numbers(&numbers)
+        .or_else(|| repeated(&own, &given.k))
+        .or_else(|| in_another_unit(subject, given, &numbers))
         .or_else(|| of_class(subject, &given.k))
         .or_else(|| of_size(&own, &given.k))
+}
+
+/// The first of the readings that fit best.
+fn in_another_unit(subject: &Subject, given: &GivenLevels, numbers: &[f64]) -> Option<Like> {
+    let own = subject.weyl();
+    let fitting: Vec<(f64, Reading)> = readings(&given.unit, &subject.system.units)
+        .into_iter()
+        .map(|reading| {
+            let k: Vec<f64> = numbers
+                .iter()
+                .map(|number| reading.factor * number.powf(reading.power))
+                .collect();
+            (late_misfit(&own, &k), reading)
+        })
+        .filter(|(misfit, _)| fits(*misfit, numbers.len()))
+        .collect();
+    let best = fitting
+        .iter()
+        .map(|(misfit, _)| *misfit)
+        .fold(f64::INFINITY, f64::min);
+    fitting
+        .into_iter()
+        .find(|(misfit, _)| *misfit <= best * (1.0 + SAME))
+        .map(|(_, reading)| reading.like)
+}
+
+/// The numbers of rows instead of levels.
+fn row_numbers(numbers: &[f64]) -> Option<Like> {
+    let consecutive = numbers.windows(2).all(|pair| pair[1] - pair[0] == 1.0);
+    let whole = numbers.first().is_some_and(|first| first.fract() == 0.0);
+    (consecutive && whole).then(|| Like {
+        what: "the numbers of rows".into(),
+        cure: "give the levels, or name their column `k`, `energy` or `frequency`".into(),
+    })
 }
 
 /// Root mean square of smooth count less number of the level.
@@ -96,7 +122,9 @@ fn repeated(weyl: &Weyl, k: &[f64]) -> Option<Like> {
     let chunks: Vec<&[f64]> = k.chunk_by(|a, b| a == b).collect();
     let times = chunks.first()?.len();
     let single: Vec<f64> = chunks.iter().map(|chunk| chunk[0]).collect();
-    let alike = times > 1 && chunks.iter().all(|chunk| chunk.len() == times);
+    let alike = times > 1
+        && single.len() >= FEWEST_DISTINCT
+        && chunks.iter().all(|chunk| chunk.len() == times);
     (alike && fits(misfit(weyl, &single), single.len())).then(|| Like {
         what: format!("a list in which every level stands {times} times"),
         cure: "remove the copies".into(),
@@ -132,28 +160,48 @@ fn readings(unit: &Units, own: &Units) -> Vec<Reading> {
         };
         add(1.0, 0.5, "energies k^2".into(), cure.into());
     }
+    if unit.level != own.level && own.level != LevelUnit::Wavenumber {
+        add(
+            own.k(1.0),
+            power_of(own),
+            format!("levels in {}", own.level_label()),
+            format!("name the column `{}`", own.column()),
+        );
+    }
     for (name, times) in other_units(unit.level) {
         // Levels are read by their own unit, with the numbers brought to it.
-        let one = unit.k(times);
-        let power = if unit.k(4.0 * times) < 3.0 * one {
-            0.5
-        } else {
-            1.0
-        };
         let by = if times < 1.0 {
             format!("divide them by {}", significant(times.recip(), 4))
         } else {
             format!("multiply them by {}", significant(times, 4))
         };
         add(
-            one,
-            power,
+            unit.k(times),
+            power_of(unit),
             format!("levels in {name} where {} is expected", unit.level_label()),
             by,
         );
     }
+    if unit.level != LevelUnit::Wavenumber {
+        for (name, ratio) in other_lengths(own) {
+            add(
+                ratio,
+                1.0,
+                format!("wave numbers in 1/{name}"),
+                format!(
+                    "multiply them by {} and name the column `k`",
+                    significant(ratio, 4)
+                ),
+            );
+        }
+    }
     lengths(unit, own, &mut add);
     readings
+}
+
+/// The power of a level that its wave number goes with: 1/2 for energies.
+fn power_of(unit: &Units) -> f64 {
+    (unit.k(4.0) / unit.k(1.0)).log2() / 2.0
 }
 
 /// Other units of the same kind: name, and their size in the unit that was expected.
@@ -168,16 +216,21 @@ fn other_units(level: LevelUnit) -> Vec<(&'static str, f64)> {
     }
 }
 
+/// Units of length beside the file's own, with what wave numbers in 1/name are multiplied by to be in the file's unit.
+fn other_lengths(own: &Units) -> Vec<(&'static str, f64)> {
+    own.length.map_or_else(Vec::new, |length| {
+        LENGTHS
+            .iter()
+            .filter(|(name, _)| *name != length.name)
+            .map(|(name, metres)| (*name, length.metres / metres))
+            .collect()
+    })
+}
+
 /// Readings in which a length is in another unit than the file says, and frequencies where the file knows no units.
 fn lengths(unit: &Units, own: &Units, add: &mut dyn FnMut(f64, f64, String, String)) {
-    let power = if unit.k(4.0) < 3.0 * unit.k(1.0) {
-        0.5
-    } else {
-        1.0
-    };
     if let Some(length) = own.length {
-        for (name, metres) in LENGTHS.iter().filter(|(name, _)| *name != length.name) {
-            let ratio = length.metres / metres;
+        for (name, ratio) in other_lengths(own) {
             let (factor, what, cure) = if unit.level == LevelUnit::Wavenumber {
                 (
                     ratio,
@@ -198,7 +251,7 @@ fn lengths(unit: &Units, own: &Units, add: &mut dyn FnMut(f64, f64, String, Stri
                     format!("look at `length` in [units]: \"{name}\" would fit"),
                 )
             };
-            add(factor, power, what, cure);
+            add(factor, power_of(unit), what, cure);
         }
     } else if unit.level == LevelUnit::Wavenumber {
         for (name, metres) in LENGTHS {
@@ -252,13 +305,17 @@ fn of_class(subject: &Subject, k: &[f64]) -> Option<Like> {
 
 /// A list of the same shape in another size, or of a shape with the same area.
 fn of_size(weyl: &Weyl, k: &[f64]) -> Option<Like> {
-    let last = *k.last()?;
-    let size = weyl.k_at_count(k.len() as f64 - 0.5) / last;
+    // The upper half, where fluctuations of the staircase count least.
+    let first = k.len() / 2;
+    let ratios: f64 = (first..k.len())
+        .map(|index| weyl.k_at_count(index as f64 + 0.5) / k[index])
+        .sum();
+    let size = ratios / (k.len() - first) as f64;
     let read: Vec<f64> = k.iter().map(|k| size * k).collect();
     (SIZES.contains(&size) && fits(misfit(weyl, &read), k.len())).then(|| Like {
         what: format!(
             "a list of a shape like this with all lengths {} times as long, or of another one of about that area",
-            significant(size, 4)
+            significant(size, 3)
         ),
         cure: "compare shape, size and unit of the file with what the list comes from".into(),
     })
