@@ -268,6 +268,18 @@ impl Cholesky {
         result
     }
 
+    /// Standard deviation of a sum with these weights of variables of covariance C.
+    pub(crate) fn deviation(&self, weights: &[f64]) -> f64 {
+        let size = self.lower.nrows();
+        let square: f64 = (0..size)
+            .map(|column| {
+                let sum = dot(&self.lower.col_as_slice(column)[column..], &weights[column..]);
+                sum * sum
+            })
+            .sum();
+        square.sqrt()
+    }
+
     /// ln det C.
     pub(crate) fn log_determinant(&self) -> f64 {
         (0..self.lower.nrows())

@@ -8,15 +8,19 @@ use super::decode::decode;
 use super::noise::{Expected, Noise, Waves};
 use super::prediction::Prediction;
 use super::record::Predicted;
-use super::search::{Ban, Explanation, Scene, Step};
+use super::search::{Ban, Explanation, Scene, Step, Steps};
 use crate::dense::{Cholesky, Matrix};
 
 /// Factors of the expected variances that are tried, in descending order.
 const HEATS: [f64; 5] = [1e4, 1e3, 1e2, 1e1, 1.0];
 /// Rounds of learning the noise.
 const ROUNDS: usize = 6;
+/// Rounds in which the faults are decoded anew besides being improved.
+const DECODED: usize = 2;
 /// Gain in evidence, in natural units, below which learning has settled.
 const SETTLED: f64 = 1.0;
+/// An explanation that is worse than another by more than this, in natural units of likelihood, is not worth a search.
+const PROMISING: f64 = 30.0;
 /// Rounds of questioning single faults, each of which may turn up a better explanation.
 const QUESTIONS: usize = 8;
 /// Mean spacings about a fault within which another of its kind is taken for the same one.
@@ -53,6 +57,8 @@ pub(super) struct Explained {
     pub(super) level_error: f64,
     /// Logarithm of the probability of the record, up to a constant of the points.
     pub(super) evidence: f64,
+    /// Standard deviation of the place of a single missing level at the points.
+    pub(super) place_errors: Vec<f64>,
     pub(super) whitener: Cholesky,
 }
 
@@ -73,8 +79,9 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
         middle: 0.5 * (span.from + span.to),
     };
     let single = shifts(predicted, levels, &density);
+    let all_steps = Steps::new(span, &predicted.points, levels);
     let scene = |whitener: &Cholesky| {
-        Scene::new(span, &predicted.points, record, levels, whitener, &density)
+        Scene::new(span, &predicted.points, &all_steps, record, levels, whitener, &density)
     };
     let max_length = setting.prediction.max_length;
     let mut noise = Noise::new(setting.waves, predicted, &expected, setting.fixed.clone(), single);
@@ -85,6 +92,7 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
         let whitener = noise.whitener()?;
         let found = scene(&whitener).search(steps, None);
         let evidence = found.value - 0.5 * whitener.log_determinant();
+        if std::env::var("AV").is_ok() {eprintln!("heat {heat}: steps {} value {:.1} evidence {evidence:.1} {:?}", found.steps.len(), found.value, T0.with(|t| t.elapsed()));}
         steps = found.steps;
         if best.as_ref().is_some_and(|best| best.evidence >= evidence) {
             break;
@@ -98,29 +106,41 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
     let mut best = best?;
     noise = best.noise.clone();
     steps = best.steps.clone();
-    for _ in 0..ROUNDS {
+    let mut in_vain = 0;
+    for round in 0..ROUNDS {
         let whitener = noise.whitener()?;
         let scene = scene(&whitener);
-        let found = better(scene.search(steps, None), scene.search(decode(&scene), None));
+        let mut found = scene.search(steps, None);
+        if round < DECODED {
+            found = with_decoded(&scene, found);
+        }
         let evidence = found.value - 0.5 * whitener.log_determinant();
+        if std::env::var("AV").is_ok() {eprintln!("learn: steps {} value {:.1} evidence {evidence:.1} {:?}", found.steps.len(), found.value, T0.with(|t| t.elapsed()));}
         let rest = scene.rest_of(record, &found.steps);
         steps = found.steps;
-        let gained = evidence - best.evidence;
-        if gained > 0.0 {
+        if evidence > best.evidence + SETTLED {
+            in_vain = 0;
+        } else {
+            in_vain += usize::from(round > 0);
+        }
+        if evidence > best.evidence {
             best = Best {
                 steps: steps.clone(),
                 evidence,
                 noise: noise.clone(),
             };
-        } else if gained < -SETTLED {
+        }
+        if in_vain == 2 {
             break;
         }
         noise.learn(&whitener, &rest);
     }
     let whitener = best.noise.whitener()?;
     let scene = scene(&whitener);
+    if std::env::var("AV").is_ok() {eprintln!("question {:?}", T0.with(|t| t.elapsed()));}
     let (found, odds) = questioned(&scene, scene.search(best.steps, None), &density);
     let errors = scene.errors(&found);
+    if std::env::var("AV").is_ok() {eprintln!("done {:?}", T0.with(|t| t.elapsed()));}
     Some(Explained {
         rest: scene.rest_of(record, &found.steps),
         noise: best.noise.deviations(),
@@ -137,12 +157,20 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
                 odds,
             })
             .collect(),
+        place_errors: predicted.points.iter().map(|&k| scene.place_error(k)).collect(),
         whitener,
     })
 }
 
-fn better(a: Explanation, b: Explanation) -> Explanation {
-    if b.value > a.value { b } else { a }
+/// The better one of an explanation and of what decoding leads to. Decoding tries places on a grid; where the noise is so small that
+/// the grid shows, it explains the record far worse, and is not followed up.
+fn with_decoded(scene: &Scene<'_>, found: Explanation) -> Explanation {
+    let decoded = scene.settled(decode(scene), None);
+    if decoded.value < found.value - PROMISING {
+        return found;
+    }
+    let decoded = scene.search(decoded.steps, None);
+    if decoded.value > found.value { decoded } else { found }
 }
 
 /// Looks for the best explanation without each fault in turn; one that turns out better than the explanation replaces it.
@@ -195,3 +223,5 @@ fn shifts(predicted: &Predicted, levels: &[f64], density: &dyn Fn(f64) -> f64) -
 pub(super) fn positive_density(density: f64, width: f64) -> f64 {
     density.max(1.0 / width)
 }
+
+thread_local! { static T0: std::time::Instant = std::time::Instant::now(); }

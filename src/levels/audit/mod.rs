@@ -7,15 +7,20 @@
 mod decode;
 mod explain;
 mod findings;
+mod least_squares;
 mod noise;
 mod prediction;
 mod record;
+mod run;
 mod search;
-mod summary;
+mod told;
+mod trend;
+mod turing;
 
 pub use findings::{
     Corrected, Fault, FaultKind, Findings, Measured, Measures, Part, Trend, TrendKind, Verdict,
 };
 pub use prediction::{LeftOut, Prediction};
 pub use record::{Predicted, Span};
-pub use summary::{FINDING, Listed, audit};
+pub use run::{FEWEST, Listed, audit};
+pub use told::FINDING;

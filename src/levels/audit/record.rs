@@ -12,8 +12,10 @@ const REACH: f64 = 2.5;
 const POINT_STEP: f64 = 0.8;
 /// Cells of the integration per smoothing width. The midpoint rule is exact to rounding inside, to 5e-4 of a level at the ends.
 const CELLS_PER_WIDTH: f64 = 8.0;
-/// Where a Gaussian has ended, in standard deviations.
+/// Where the sum over cells ends, in standard deviations.
 const TAIL: f64 = 6.0;
+/// Where a Gaussian has ended, in standard deviations: what lies beyond is 1e-15.
+const ENDED: f64 = 8.0;
 
 /// Where the list is taken to be complete, and how it is smoothed; all in k.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -48,20 +50,38 @@ impl Span {
     /// The step of a level at x as it stands in the record at k: the part of the Gaussian about k that lies
     /// above x, of the part that lies within the span.
     pub(super) fn step(&self, x: f64, k: f64) -> f64 {
-        let share = |upto: f64| 0.5 * libm::erfc((k - upto) * FRAC_1_SQRT_2 / self.smoothing);
-        let (below, all) = (share(self.from), share(self.to));
-        ((all - share(x.clamp(self.from, self.to))) / (all - below)).clamp(0.0, 1.0)
+        let x = x.clamp(self.from, self.to);
+        let reach = ENDED * self.smoothing;
+        if (x - k).abs() > reach {
+            return if x < k { 1.0 } else { 0.0 };
+        }
+        let (below, all) = self.within(k);
+        ((all - self.share(x, k)) / (all - below)).clamp(0.0, 1.0)
     }
 
     /// Derivative of [`Self::step`] with respect to x.
     pub(super) fn step_slope(&self, x: f64, k: f64) -> f64 {
-        if x < self.from || x > self.to {
+        let t = (x - k) / self.smoothing;
+        if x < self.from || x > self.to || t.abs() > ENDED {
             return 0.0;
         }
-        let share = |upto: f64| 0.5 * libm::erfc((k - upto) * FRAC_1_SQRT_2 / self.smoothing);
-        let t = (x - k) / self.smoothing;
+        let (below, all) = self.within(k);
         let gaussian = (-0.5 * t * t).exp() / (self.smoothing * (2.0 * PI).sqrt());
-        -gaussian / (share(self.to) - share(self.from))
+        -gaussian / (all - below)
+    }
+
+    /// Parts of the Gaussian about k that lie below the begin and below the end of the span.
+    fn within(&self, k: f64) -> (f64, f64) {
+        let reach = ENDED * self.smoothing;
+        let part = |end: f64, far: f64| {
+            if (end - k).abs() > reach { far } else { self.share(end, k) }
+        };
+        (part(self.from, 0.0), part(self.to, 1.0))
+    }
+
+    /// Part of the Gaussian about k below `upto`.
+    fn share(&self, upto: f64, k: f64) -> f64 {
+        0.5 * libm::erfc((k - upto) * FRAC_1_SQRT_2 / self.smoothing)
     }
 }
 

@@ -10,7 +10,7 @@ use crate::dense::{Cholesky, Matrix, dot};
 use std::f64::consts::PI;
 
 /// Places tried for missing levels, per smoothing width.
-const PLACES_PER_WIDTH: f64 = 5.0;
+const PLACES_PER_WIDTH: f64 = 4.0;
 /// Part of the levels that is expected to be missing, or false, before anything is known.
 const RATE: f64 = 0.01;
 /// Pairs of a missing and a false level are looked for up to this many mean spacings apart.
@@ -21,11 +21,15 @@ const NEWTON_STEPS: usize = 12;
 const PLACE_TOLERANCE: f64 = 1e-4;
 /// Improvement, in natural units of likelihood, below which an exchange is not worth making.
 const WORTH: f64 = 1e-6;
-/// Exchanges after which a search is given up: more than ten for each of a hundred faults.
-const MOST_EXCHANGES: usize = 400;
+/// Exchanges after which a search is given up, and those that look for an explanation without a fault.
+const MOST_EXCHANGES: usize = 80;
+const MOST_EXCHANGES_WITHOUT: usize = 12;
 /// Neighbourhoods in which steps are taken out together, in smoothing widths, and the most that are taken out.
 const REBUILT: [f64; 3] = [3.0, 7.0, 14.0];
 const MOST_REBUILT: usize = 3;
+/// Listed levels on either side for which a false one is exchanged, and the most promising exchanges that are followed up.
+const RELABELLED: usize = 5;
+const FOLLOWED: usize = 4;
 /// Every how many-th place is tried where sets of steps are.
 const COARSE: usize = 3;
 
@@ -62,7 +66,7 @@ pub(super) struct Scene<'a> {
     pub(super) points: &'a [f64],
     pub(super) levels: &'a [f64],
     pub(super) white: Vec<f64>,
-    pub(super) places: Vec<f64>,
+    pub(super) places: &'a [f64],
     /// Whitened steps at the places; squared norms; logarithms of their priors.
     pub(super) missing: Columns,
     /// The same at the listed levels.
@@ -88,16 +92,15 @@ impl Columns {
     }
 }
 
-impl<'a> Scene<'a> {
-    /// Prepares the search in a record.
-    pub(super) fn new(
-        span: Span,
-        points: &'a [f64],
-        record: &[f64],
-        levels: &'a [f64],
-        whitener: &Cholesky,
-        density: &'a dyn Fn(f64) -> f64,
-    ) -> Self {
+/// Steps in a record, not whitened: missing levels at evenly spaced places, and the listed levels.
+pub(super) struct Steps {
+    places: Vec<f64>,
+    missing: Matrix,
+    listed: Matrix,
+}
+
+impl Steps {
+    pub(super) fn new(span: Span, points: &[f64], levels: &[f64]) -> Self {
         let count = ((span.to - span.from) / span.smoothing * PLACES_PER_WIDTH).ceil() as usize;
         let step = (span.to - span.from) / count as f64;
         let places: Vec<f64> = (0..count)
@@ -110,8 +113,30 @@ impl<'a> Scene<'a> {
                     *value = span.step(x, k);
                 }
             }
+            plain
+        };
+        Self {
+            missing: columns(&places),
+            listed: columns(levels),
+            places,
+        }
+    }
+}
+
+impl<'a> Scene<'a> {
+    /// Prepares the search in a record.
+    pub(super) fn new(
+        span: Span,
+        points: &'a [f64],
+        steps: &'a Steps,
+        record: &[f64],
+        levels: &'a [f64],
+        whitener: &Cholesky,
+        density: &'a dyn Fn(f64) -> f64,
+    ) -> Self {
+        let columns = |plain: &Matrix| {
             let matrix = whitener.whitened(plain.as_ref());
-            let squares = (0..at.len())
+            let squares = (0..matrix.ncols())
                 .map(|column| {
                     let step = matrix.col_as_slice(column);
                     dot(step, step)
@@ -123,7 +148,9 @@ impl<'a> Scene<'a> {
                 priors: Vec::new(),
             }
         };
-        let mut missing = columns(&places);
+        let places = steps.places.as_slice();
+        let count = places.len();
+        let mut missing = columns(&steps.missing);
         missing.priors = (0..count)
             .map(|place| {
                 let (a, b) = (place.saturating_sub(1), (place + 1).min(count - 1));
@@ -138,7 +165,7 @@ impl<'a> Scene<'a> {
                 prior_of_missing(1.0 / slope, density(places[place]))
             })
             .collect();
-        let mut listed = columns(levels);
+        let mut listed = columns(&steps.listed);
         listed.priors = vec![RATE.ln(); levels.len()];
         let pairs = levels
             .iter()
@@ -238,7 +265,7 @@ impl<'a> Scene<'a> {
     }
 
     /// The explanation with the places of all missing levels moved to where they explain the record best.
-    fn settled(&self, steps: Vec<Step>, ban: Option<Ban>) -> Explanation {
+    pub(super) fn settled(&self, steps: Vec<Step>, ban: Option<Ban>) -> Explanation {
         let mut best = self.explained(steps);
         let mut damping = 0.0;
         for _ in 0..NEWTON_STEPS {
@@ -364,7 +391,7 @@ impl<'a> Scene<'a> {
     /// The best explanation that exchanges reach from some steps.
     pub(super) fn search(&self, start: Vec<Step>, ban: Option<Ban>) -> Explanation {
         let mut best = self.settled(start, ban);
-        let most = if ban.is_some() { 12 } else { MOST_EXCHANGES };
+        let most = if ban.is_some() { MOST_EXCHANGES_WITHOUT } else { MOST_EXCHANGES };
         for _ in 0..most {
             match self.improved(&best, ban) {
                 Some(better) => best = better,
@@ -406,7 +433,96 @@ impl<'a> Scene<'a> {
         {
             return Some(found);
         }
-        self.rebuilt(at, ban)
+        self.relabelled(at, ban).or_else(|| self.rebuilt(at, ban))
+    }
+
+    /// Exchanges one false level, or two at once, for listed levels nearby, while the missing levels move along: which level is false
+    /// and where others are missing can often be changed together at little cost, but not one after the other.
+    fn relabelled(&self, at: &Explanation, ban: Option<Ban>) -> Option<Explanation> {
+        let falses: Vec<(usize, usize)> = at
+            .steps
+            .iter()
+            .enumerate()
+            .filter_map(|(number, step)| match *step {
+                Step::False(index) => Some((number, index)),
+                Step::Missing(_) => None,
+            })
+            .collect();
+        let along = self.along_places(at);
+        let projected = |column: &[f64]| -> Vec<f64> {
+            let mut column = column.to_vec();
+            for slope in &along {
+                let part = -dot(slope, &column);
+                add(&mut column, slope, part);
+            }
+            column
+        };
+        let rest = projected(&at.rest);
+        // What each exchange changes in the rest, and the rest of the likelihood that it leaves.
+        let exchanges: Vec<Vec<(usize, Vec<f64>)>> = falses
+            .iter()
+            .map(|&(_, index)| {
+                let near = index.saturating_sub(RELABELLED)..(index + RELABELLED + 1).min(self.levels.len());
+                near.filter(|&other| {
+                    let step = Step::False(other);
+                    other != index && self.is_free(step, &at.steps) && !banned(ban, step, self.levels)
+                })
+                .map(|other| {
+                    let mut change = self.listed.matrix.col_as_slice(index).to_vec();
+                    add(&mut change, self.listed.matrix.col_as_slice(other), -1.0);
+                    (other, projected(&change))
+                })
+                .collect()
+            })
+            .collect();
+        let mut promising: Vec<(f64, Vec<(usize, usize)>)> = Vec::new();
+        for (i, &(first, _)) in falses.iter().enumerate() {
+            for (other, change) in &exchanges[i] {
+                let gain = -dot(change, &rest) - 0.5 * dot(change, change);
+                promising.push((gain, vec![(first, *other)]));
+                for (j, &(second, _)) in falses.iter().enumerate().take(i) {
+                    for (another, more) in &exchanges[j] {
+                        if another == other {
+                            continue;
+                        }
+                        let both = gain - dot(more, &rest) - 0.5 * dot(more, more) - dot(change, more);
+                        promising.push((both, vec![(first, *other), (second, *another)]));
+                    }
+                }
+            }
+        }
+        promising.sort_by(|a, b| b.0.total_cmp(&a.0));
+        for (_, exchange) in promising.into_iter().take(FOLLOWED) {
+            let mut steps = at.steps.clone();
+            for (number, index) in exchange {
+                steps[number] = Step::False(index);
+            }
+            let found = self.settled(steps, ban);
+            if found.value > at.value + WORTH {
+                return Some(found);
+            }
+        }
+        None
+    }
+
+    /// Orthonormal directions in which the record changes when missing levels move.
+    fn along_places(&self, at: &Explanation) -> Vec<Vec<f64>> {
+        let mut directions: Vec<Vec<f64>> = Vec::new();
+        for step in &at.steps {
+            let Step::Missing(x) = *step else { continue };
+            let mut slope = self.slope(x);
+            let before = dot(&slope, &slope);
+            for direction in &directions {
+                let part = -dot(direction, &slope);
+                add(&mut slope, direction, part);
+            }
+            let norm = dot(&slope, &slope);
+            if norm > 1e-6 * before {
+                slope.iter_mut().for_each(|value| *value /= norm.sqrt());
+                directions.push(slope);
+            }
+        }
+        directions
     }
 
     /// Takes out the steps of one neighbourhood after the other and puts in the best set of up to three.
@@ -550,9 +666,10 @@ impl<'a> Scene<'a> {
         rest
     }
 
-    /// Whitened rest of an explanation.
-    pub(super) fn whitened_rest<'b>(&self, explanation: &'b Explanation) -> &'b [f64] {
-        &explanation.rest
+    /// Standard deviation of the place of a single missing level at x.
+    pub(super) fn place_error(&self, x: f64) -> f64 {
+        let slope = self.slope(x);
+        1.0 / dot(&slope, &slope).sqrt()
     }
 }
 

@@ -1,101 +1,89 @@
-//! From a list and a prediction to findings.
+//! Faults as they are told to people.
 
-use super::explain::{Explained, Found, SAME, Setting, explain, positive_density};
-use super::findings::{
-    Corrected, Fault, FaultKind, Findings, Trend, TrendKind, Verdict,
-};
-use super::noise::Waves;
-use super::prediction::Prediction;
-use super::record::{Predicted, Span};
+use super::explain::{Found, SAME};
+use super::findings::{Corrected, Fault, FaultKind};
+use super::run::Listed;
 use super::search::Step;
-use crate::dense::Matrix;
-
-/// A list to be audited, all in k.
-#[derive(Clone, Copy, Debug)]
-pub struct Listed<'a> {
-    /// Levels, ascending, each as often as it is listed.
-    pub levels: &'a [f64],
-    /// Standard deviations of the levels, where they are known.
-    pub errors: Option<&'a [f64]>,
-    /// Widths (full, at half height) of measured resonances, where they are known.
-    pub widths: Option<&'a [f64]>,
-    /// Last k up to which the list claims to be complete; its last level where nothing is claimed.
-    pub to: Option<f64>,
-}
+use super::trend::PowerLaw;
 
 /// Confidence from which on a suspicion is a finding.
 pub const FINDING: f64 = 0.9;
-/// The record begins where the smooth count reaches this: below, it means nothing.
-const FIRST_COUNT: f64 = 0.5;
 /// Weight of the tails in the likelihood of the noise: as a t distribution with this many degrees of freedom.
 const FREEDOM: f64 = 30.0;
 
-/// Audits a list. None if there are not enough levels (two) or no noise model (numbers that are not finite).
-#[must_use]
-pub fn audit(list: &Listed<'_>, prediction: &Prediction) -> Option<Findings> {
-    let weyl = &prediction.weyl;
-    let (first, last) = (*list.levels.first()?, *list.levels.last()?);
-    let from = 0.8 * weyl.k_at_count(FIRST_COUNT);
-    let to = list.to.unwrap_or(last).max(last);
-    let _ = first;
-    let span = Span::new(from, to, prediction.max_length);
-    let predicted = Predicted::new(prediction, span);
-    let waves = Waves::new(&predicted, prediction.max_length);
-    let record: Vec<f64> = predicted
-        .of_levels(list.levels, 0.0)
-        .iter()
-        .zip(&predicted.staircase)
-        .map(|(levels, predicted)| levels - predicted)
-        .collect();
-    let points = record.len();
-    let setting = Setting {
-        prediction,
-        predicted: &predicted,
-        waves: &waves,
-        fixed: Matrix::zeros(points, points),
-    };
-    let explained = explain(&setting, list.levels, &record)?;
-    Some(findings(list, prediction, &predicted, record, explained))
+/// Missing levels closer than this many mean spacings are told as one place with a count.
+const ONE_PLACE: f64 = 0.1;
+/// A window in which to search again reaches this many standard deviations of the place to either side, and a mean spacing at least.
+const WINDOW: f64 = 3.0;
+
+/// Findings and suspicions, each in ascending order of k.
+pub(super) struct Told {
+    pub(super) faults: Vec<Fault>,
+    pub(super) doubts: Vec<Fault>,
 }
 
-fn findings(
+/// Tells the faults that were found.
+pub(super) fn told(
+    found: &[Found],
     list: &Listed<'_>,
-    prediction: &Prediction,
-    predicted: &Predicted,
-    record: Vec<f64>,
-    explained: Explained,
-) -> Findings {
-    let span = predicted.span;
-    let density = |k: f64| positive_density(prediction.weyl.density(k, 0.0), span.to - span.from);
-    let mut faults: Vec<Fault> = merged(&explained.found, list, &density);
+    law: &PowerLaw,
+    density: &dyn Fn(f64) -> f64,
+) -> Told {
+    let mut faults = merged(found, density);
     faults.sort_by(|a, b| a.k.total_cmp(&b.k));
-    let (faults, doubts): (Vec<Fault>, Vec<Fault>) =
-        faults.into_iter().partition(|fault| fault.confidence >= FINDING);
-    let corrected = corrected(list, &faults);
-    Findings {
-        span: [span.from, span.to],
-        smoothing: span.smoothing,
-        below: 0,
-        verdict: Verdict::Audited,
-        trend: Trend {
-            kind: TrendKind::None,
-            odds: 0.0,
-            factor: 0.0,
-            factor_error: 0.0,
-            power: 0.0,
-            noticed_from: None,
-            at_end: 0.0,
-        },
-        measures: None,
-        level_error: explained.level_error,
-        parts: Vec::new(),
-        points: predicted.points.clone(),
-        before: record,
-        after: explained.rest,
-        noise: explained.noise,
-        corrected,
-        faults,
-        doubts,
+    faults = counted(faults, density);
+    for fault in &mut faults {
+        place_in_list(fault, list, law);
+    }
+    let (faults, doubts) = faults.into_iter().partition(|fault| fault.confidence >= FINDING);
+    Told { faults, doubts }
+}
+
+/// Neighbouring missing levels at one place as one fault with a count.
+fn counted(faults: Vec<Fault>, density: &dyn Fn(f64) -> f64) -> Vec<Fault> {
+    let mut told: Vec<Fault> = Vec::new();
+    for fault in faults {
+        let joins = told.last().is_some_and(|before| {
+            before.kind == FaultKind::Missing
+                && fault.kind == FaultKind::Missing
+                && (fault.k - before.k) * density(fault.k) < ONE_PLACE
+        });
+        match told.last_mut() {
+            Some(before) if joins => {
+                let (a, b) = (before.count as f64, fault.count as f64);
+                before.k = (a * before.k + b * fault.k) / (a + b);
+                before.count += fault.count;
+                before.confidence = before.confidence.min(fault.confidence);
+                before.window[1] = fault.window[1];
+            }
+            _ => told.push(fault),
+        }
+    }
+    told
+}
+
+/// Windows are given on the scale of the list as well, where that has a trend; a missing level within the width of a listed one is
+/// not resolved from it.
+fn place_in_list(fault: &mut Fault, list: &Listed<'_>, law: &PowerLaw) {
+    let [from, to] = fault.window;
+    fault.window = [from.min(law.listed(from)), to.max(law.listed(to))];
+    if let Some(index) = fault.listed {
+        if fault.kind == FaultKind::False {
+            fault.k = list.levels[index - 1];
+        }
+        return;
+    }
+    let Some(widths) = list.widths else { return };
+    let place = law.listed(fault.k);
+    let nearest = (0..list.levels.len()).min_by(|&a, &b| {
+        (list.levels[a] - place).abs().total_cmp(&(list.levels[b] - place).abs())
+    });
+    if let Some(index) = nearest
+        && (list.levels[index] - place).abs() < widths[index].max(fault.k_error)
+        && widths[index] > 0.0
+    {
+        fault.kind = FaultKind::Unresolved;
+        fault.listed = Some(index + 1);
     }
 }
 
@@ -106,7 +94,7 @@ fn probability(odds: f64) -> f64 {
 }
 
 /// Faults as told to people: a missing level beside a false one is a shifted one.
-fn merged(found: &[Found], list: &Listed<'_>, density: &dyn Fn(f64) -> f64) -> Vec<Fault> {
+fn merged(found: &[Found], density: &dyn Fn(f64) -> f64) -> Vec<Fault> {
     let mut used = vec![false; found.len()];
     let mut faults = Vec::new();
     let mut pairs: Vec<(f64, usize, usize)> = Vec::new();
@@ -145,7 +133,6 @@ fn merged(found: &[Found], list: &Listed<'_>, density: &dyn Fn(f64) -> f64) -> V
             Step::False(listed) => fault(FaultKind::False, single, single.odds, Some(listed), density),
         });
     }
-    let _ = list;
     faults
 }
 
@@ -163,7 +150,7 @@ fn fault(
         FaultKind::False => 1.0,
         _ => 1.0 - libm::erfc(SAME / (spread * std::f64::consts::SQRT_2)),
     };
-    let reach = (3.0 * found.error).max(spacing);
+    let reach = (WINDOW * found.error).max(spacing);
     Fault {
         kind,
         k: found.k,
@@ -177,7 +164,7 @@ fn fault(
 }
 
 /// The list without false levels, with missing ones put in and shifted ones moved.
-fn corrected(list: &Listed<'_>, faults: &[Fault]) -> Vec<Corrected> {
+pub(super) fn corrected(list: &Listed<'_>, faults: &[Fault]) -> Vec<Corrected> {
     let dropped = |index: usize| {
         faults.iter().any(|fault| {
             matches!(fault.kind, FaultKind::False | FaultKind::Shifted)
