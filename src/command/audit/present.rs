@@ -1,12 +1,13 @@
 //! Summary, files and picture of an audit.
 
+use super::corrected::spread;
 use super::sentence::{KINDS, and, found, of_kind, sentence, suspicion, total};
 use super::{Audited, corrected, tables};
 use crate::command::answer::Answer;
 use crate::command::completeness;
 use crate::command::error::CommandError;
 use crate::command::note::Note;
-use crate::command::text::{listed, significant};
+use crate::command::text::{listed, significant, to_error};
 use orbitsum::levels::audit::{FINDING, Fault, FaultKind, Measured, Verdict};
 use orbitsum::report::{AuditCurves, AuditMark, AuditMarkKind, audit_picture};
 use serde_json::{Map, Value, json};
@@ -16,7 +17,7 @@ const DIGITS: usize = 3;
 /// Digits of the ends of ranges.
 const RANGE_DIGITS: usize = 4;
 /// Digits of places in the picture.
-const LABEL_DIGITS: usize = 6;
+const LABEL_DIGITS: usize = 7;
 /// Suspicions that are named; the file has all.
 const NAMED: usize = 5;
 
@@ -239,13 +240,20 @@ fn in_units(audited: &Audited<'_>) -> Vec<f64> {
 fn picture(audited: &Audited<'_>, sentence: &str) -> String {
     let (subject, findings) = (audited.subject, audited.findings);
     let units = &subject.system.units;
+    let place = |fault: &Fault| match fault.kind {
+        FaultKind::False => units.value(fault.k),
+        _ => to_error(
+            units.value(fault.k),
+            spread(subject, fault.k, fault.k_error),
+        ),
+    };
     let marks: Vec<AuditMark> = findings
         .faults
         .iter()
         .map(|fault| AuditMark {
             kind: mark_kind(fault.kind),
             at: units.value(fault.k),
-            label: significant(units.value(fault.k), LABEL_DIGITS),
+            label: significant(place(fault), LABEL_DIGITS),
         })
         .collect();
     let unit = units.level_label();

@@ -10,7 +10,7 @@ const NAMED: usize = 6;
 /// Digits of listed levels.
 const LISTED_DIGITS: usize = 9;
 /// Standard deviations within which a measure agrees.
-const AGREES: f64 = 2.0;
+const AGREES: f64 = 3.0;
 /// Smallest part by which measures are said to agree or not: finer is below the error of any Weyl expansion.
 const LEAST_PART: f64 = 1e-6;
 
@@ -151,22 +151,21 @@ fn near(audited: &Audited<'_>) -> String {
 
 fn place(audited: &Audited<'_>, fault: &Fault) -> String {
     let units = &audited.subject.system.units;
-    let at = with_error(
-        units.value(fault.k),
-        spread(audited.subject, fault.k, fault.k_error),
-    );
+    let error = spread(audited.subject, fault.k, fault.k_error);
+    let at = label(audited, with_error(units.value(fault.k), error));
+    let value_of = |value: f64| label(audited, significant(value, LISTED_DIGITS));
     match (fault.kind, listed(audited, fault)) {
         (FaultKind::False, Some((number, value))) => {
-            format!("{} (number {number})", significant(value, LISTED_DIGITS))
+            format!("{} (number {number})", value_of(value))
         }
         (FaultKind::Shifted, Some((number, value))) => format!(
             "{} (number {number}), which belongs {}{at}",
-            significant(value, LISTED_DIGITS),
+            value_of(value),
             near(audited),
         ),
         (FaultKind::Unresolved, Some((number, value))) => format!(
             "{} (number {number}) stands for two",
-            significant(value, LISTED_DIGITS)
+            value_of(value)
         ),
         _ => {
             let times = match fault.count {
@@ -175,6 +174,14 @@ fn place(audited: &Audited<'_>, fault: &Fault) -> String {
             };
             format!("{}{at}{times}", near(audited))
         }
+    }
+}
+
+/// A number with the unit of levels.
+fn label(audited: &Audited<'_>, number: String) -> String {
+    match audited.subject.system.units.level_label() {
+        unit if unit.is_empty() => number,
+        unit => format!("{number} {unit}"),
     }
 }
 
@@ -248,6 +255,6 @@ fn compared(name: &str, measured: &Measured) -> String {
     format!(
         "{name} {} by the list and {} by the file",
         with_error(measured.list, measured.error),
-        significant(to_error(measured.file, 0.01 * measured.error), 8)
+        significant(to_error(measured.file, 0.1 * measured.error), 8)
     )
 }
