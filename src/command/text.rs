@@ -74,11 +74,16 @@ fn decimals_of(error: f64) -> Option<i32> {
 
 /// With that many decimals; whole tens where they are negative.
 fn fixed(value: f64, decimals: i32) -> String {
-    if decimals >= 0 {
-        return format!("{value:.*}", decimals as usize);
+    let text = if decimals >= 0 {
+        format!("{value:.*}", decimals as usize)
+    } else {
+        let unit = 10f64.powi(-decimals);
+        format!("{:.0}", (value / unit).round() * unit)
+    };
+    match text.strip_prefix('-') {
+        Some(zero) if zero.chars().all(|c| matches!(c, '0' | '.')) => zero.to_owned(),
+        _ => text,
     }
-    let unit = 10f64.powi(-decimals);
-    format!("{:.0}", (value / unit).round() * unit)
 }
 
 /// A number with its unit, if it has one.
@@ -123,6 +128,7 @@ mod tests {
             (1234.5, 33.0, "1230 +- 30"),
             (8.0, 1.0, "8.0 +- 1.0"),
             (-0.5, 0.04, "-0.50 +- 0.04"),
+            (-0.3, 5.0, "0 +- 5"),
             (2.5, 0.0, "2.5"),
             (2.5, f64::NAN, "2.5"),
             (f64::NAN, 0.1, "-"),

@@ -163,10 +163,9 @@ fn place(audited: &Audited<'_>, fault: &Fault) -> String {
             value_of(value),
             near(audited),
         ),
-        (FaultKind::Unresolved, Some((number, value))) => format!(
-            "{} (number {number}) stands for two",
-            value_of(value)
-        ),
+        (FaultKind::Unresolved, Some((number, value))) => {
+            format!("{} (number {number}) stands for two", value_of(value))
+        }
         _ => {
             let times = match fault.count {
                 1 => String::new(),

@@ -4,7 +4,7 @@ use super::statistics_picture;
 use crate::command::fluctuation::{classes, statistics};
 use crate::command::note::Note;
 use crate::command::subject::Subject;
-use crate::command::text::with_error;
+use crate::command::text::{significant, with_error};
 use orbitsum::levels::audit::Prediction;
 use orbitsum::levels::statistics::{
     Fit, LevelStatistics, MissingEstimates, MissingFraction, Orbits, Place, Reference, Spacings,
@@ -15,6 +15,8 @@ use orbitsum::levels::statistics::{
 const PLACES: usize = 9;
 /// Estimates that differ by more than this many standard deviations rest on wrong assumptions.
 const DISAGREEMENT: f64 = 3.0;
+/// A fraction with a smaller error than this stands at an end of its range, where all parts of the list give the same.
+const LEAST_ERROR: f64 = 1e-4;
 
 /// The statistics, or why there are none.
 pub(super) struct Measured(Result<LevelStatistics, String>);
@@ -118,9 +120,11 @@ fn missing_words(missing: &MissingFraction) -> String {
 }
 
 fn estimate_words(estimates: &MissingEstimates) -> String {
-    let percent = |fit: &Fit| {
-        let error = fit.error.map_or(f64::NAN, |error| 100.0 * error);
-        format!("{} %", with_error(100.0 * fit.value, error))
+    let percent = |fit: &Fit| match fit.error {
+        Some(error) if error >= LEAST_ERROR => {
+            format!("{} %", with_error(100.0 * fit.value, 100.0 * error))
+        }
+        _ => format!("about {} %", significant(100.0 * fit.value, 2)),
     };
     let trust = if estimates.disagreement > DISAGREEMENT {
         "; they disagree, do not trust them"
