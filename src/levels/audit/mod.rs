@@ -7,6 +7,7 @@
 mod decode;
 mod explain;
 mod findings;
+mod fit;
 mod least_squares;
 mod noise;
 mod prediction;
@@ -20,6 +21,7 @@ mod turing;
 pub use findings::{
     Corrected, Fault, FaultKind, Findings, Measured, Measures, Part, Trend, TrendKind, Verdict,
 };
+pub use fit::{Family, Fit, Fitted, fit};
 pub use prediction::{LeftOut, Prediction};
 pub use record::{Predicted, Span};
 pub use run::{FEWEST, Listed, audit};

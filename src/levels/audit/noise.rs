@@ -36,6 +36,8 @@ const POINTS_PER_KNOT: usize = 20;
 const MOST_KNOTS: usize = 20;
 /// Standard deviation of single levels, in mean spacings, that is expected of a good list and a good prediction.
 const LEVEL_ERROR: f64 = 0.003;
+/// The most that is taken for an error of single levels before the record is seen: more would hide levels that are shifted.
+const MOST_LEVEL_ERROR: f64 = 0.1;
 /// Weight of that expectation, in levels.
 const LEVEL_WEIGHT: f64 = 20.0;
 /// Weight of a constant gain, in points.
@@ -264,8 +266,9 @@ impl<'a> Noise<'a> {
         Cholesky::new(self.covariance().as_ref())
     }
 
-    /// Sets the waves to what is expected beforehand times a factor, for orbits that are in the sum.
+    /// Sets the waves of orbits that are in the sum, and the shifts of single levels, to what is expected beforehand times a factor.
     pub(super) fn heat(&mut self, factor: f64, max_length: f64) {
+        self.single_variance = (factor * LEVEL_ERROR * LEVEL_ERROR).min(MOST_LEVEL_ERROR * MOST_LEVEL_ERROR);
         for ((variance, expected), length) in self
             .variances
             .iter_mut()

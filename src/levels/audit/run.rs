@@ -33,7 +33,7 @@ pub const FEWEST: usize = 10;
 const FIRST_COUNT: f64 = 0.5;
 const BEFORE_FIRST: f64 = 0.8;
 /// A list whose first level should be at least this many levels up by the smooth count begins somewhere in the middle.
-const BEGINS_LATE: f64 = 4.5;
+pub(super) const BEGINS_LATE: f64 = 4.5;
 /// Part of a list that begins in the middle from which the number of levels below is taken.
 const FIRST_PART: f64 = 0.2;
 /// Standard deviation, in levels at the end of the list, with which area and perimeter may differ from those of the file without
@@ -65,12 +65,12 @@ pub fn audit(list: &Listed<'_>, prediction: &Prediction) -> Option<Findings> {
     let start = Start::new(list, prediction);
     let (law, gained) = coarse(prediction, list.levels, &start.span(list, prediction), start.below);
     if std::env::var("AV").is_ok() {eprintln!("coarse {law:?} gained {gained:.1}");}
-    let plain = || Case::new(list, prediction, &start, PowerLaw::none(law.last));
+    let plain = || Case::new(list, prediction, &start, PowerLaw::none(law.last), TOLERANCE);
     let case = if gained > 0.0 {
-        let mut trended = Case::new(list, prediction, &start, law)?;
+        let mut trended = Case::new(list, prediction, &start, law, TOLERANCE)?;
         for _ in 0..TREND_ROUNDS {
             let better = trended.improved_law(prediction)?;
-            let next = Case::new(list, prediction, &start, better)?;
+            let next = Case::new(list, prediction, &start, better, TOLERANCE)?;
             if next.explained.evidence <= trended.explained.evidence {
                 break;
             }
@@ -91,14 +91,14 @@ pub fn audit(list: &Listed<'_>, prediction: &Prediction) -> Option<Findings> {
 }
 
 /// Where a list begins.
-struct Start {
+pub(super) struct Start {
     from: f64,
     /// Levels below.
     below: f64,
 }
 
 impl Start {
-    fn new(list: &Listed<'_>, prediction: &Prediction) -> Self {
+    pub(super) fn new(list: &Listed<'_>, prediction: &Prediction) -> Self {
         let weyl = &prediction.weyl;
         let first = list.levels[0];
         if first <= 0.0 || weyl.count(first, 0.0) < BEGINS_LATE {
@@ -137,22 +137,28 @@ impl Start {
 }
 
 /// A list that has been explained, with a trend taken out.
-struct Case {
+pub(super) struct Case {
     law: PowerLaw,
     odds: f64,
     below: f64,
     /// The levels without the trend.
     levels: Vec<f64>,
-    predicted: Predicted,
+    pub(super) predicted: Predicted,
     record: Vec<f64>,
-    explained: Explained,
+    pub(super) explained: Explained,
     /// Columns of area, perimeter and trend, and the variances with which they are part of the noise.
     columns: Vec<Vec<f64>>,
     allowed: Vec<f64>,
 }
 
 impl Case {
-    fn new(list: &Listed<'_>, prediction: &Prediction, start: &Start, law: PowerLaw) -> Option<Self> {
+    pub(super) fn new(
+        list: &Listed<'_>,
+        prediction: &Prediction,
+        start: &Start,
+        law: PowerLaw,
+        tolerance: f64,
+    ) -> Option<Self> {
         let levels: Vec<f64> = list.levels.iter().map(|&level| law.truth(level)).collect();
         let span = start.span(list, prediction);
         let span = Span {
@@ -168,7 +174,7 @@ impl Case {
             .zip(&predicted.staircase)
             .map(|(levels, predicted)| levels - predicted)
             .collect();
-        let (columns, allowed) = trends(&predicted, prediction, &law);
+        let (columns, allowed) = trends(&predicted, prediction, &law, tolerance);
         let fixed = fixed(&predicted, list, &levels, &columns, &allowed);
         let setting = Setting {
             prediction,
@@ -365,7 +371,12 @@ impl Case {
 
 /// Columns of area, perimeter and a power law in the record (each one level, or one mean spacing, at the end), and the variances
 /// with which they are part of the noise.
-fn trends(predicted: &Predicted, prediction: &Prediction, law: &PowerLaw) -> (Vec<Vec<f64>>, Vec<f64>) {
+fn trends(
+    predicted: &Predicted,
+    prediction: &Prediction,
+    law: &PowerLaw,
+    tolerance: f64,
+) -> (Vec<Vec<f64>>, Vec<f64>) {
     let last = predicted.span.to;
     let weyl = &prediction.weyl;
     let end = weyl.density(last, 0.0);
@@ -376,7 +387,7 @@ fn trends(predicted: &Predicted, prediction: &Prediction, law: &PowerLaw) -> (Ve
         column(&|k| weyl.density(k, 0.0).max(0.0) / end * (k / last).powf(1.0 + law.power)),
     ];
     let open = if law.factor == 0.0 { 0.0 } else { OPEN * OPEN };
-    (columns, vec![TOLERANCE * TOLERANCE, TOLERANCE * TOLERANCE, open])
+    (columns, vec![tolerance * tolerance, tolerance * tolerance, open])
 }
 
 /// Covariance of the record that is known beforehand: trends and stated errors of levels.
