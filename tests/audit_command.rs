@@ -221,17 +221,22 @@ fn frequencies_are_told_as_frequencies() {
     ));
 }
 
-/// Levels of a rectangle of 200 by 120 nm with an effective mass of 0.067: (hbar pi)^2/(2 m) (i^2/a^2 + j^2/b^2), hbar^2/(2 m_e) =
-/// 38.0998212 meV nm^2 (CODATA 2018).
-#[test]
-fn a_level_of_a_rectangle_is_missed_in_energy() {
+/// The lowest 80 levels (meV) of a rectangle of `a` by 120 nm with an effective mass of 0.067: (hbar pi)^2/(2 m) (i^2/a^2 + j^2/b^2),
+/// hbar^2/(2 m_e) = 38.0998212 meV nm^2 (CODATA 2018).
+fn rectangle(a: f64) -> Vec<f64> {
     let pi = std::f64::consts::PI;
     let mut levels: Vec<f64> = (1..30)
-        .flat_map(|i| (1..30).map(move |j| (f64::from(i) / 200.0, f64::from(j) / 120.0)))
+        .flat_map(|i| (1..30).map(move |j| (f64::from(i) / a, f64::from(j) / 120.0)))
         .map(|(x, y)| 38.099_821_2 / 0.067 * pi * pi * (x * x + y * y))
         .collect();
     levels.sort_by(f64::total_cmp);
     levels.truncate(80);
+    levels
+}
+
+#[test]
+fn a_level_of_a_rectangle_is_missed_in_energy() {
+    let mut levels = rectangle(200.0);
     let gone = levels.remove(40);
     let run = Run::new(&text("energy", &levels));
     let found = run.json(DOT);
@@ -245,6 +250,27 @@ fn a_level_of_a_rectangle_is_missed_in_energy() {
     assert!((place - gone).abs() < 5.0 * error && error < 0.1 * (levels[41] - levels[38]));
     // Levels of regular motion say nothing by themselves about what is missing.
     assert_eq!(found["statistics"]["missing"]["unknown"], "uncorrelated");
+}
+
+/// The list is that of a rectangle 0.5 % longer than in the file.
+#[test]
+fn a_side_is_fitted() {
+    let run = Run::new(&text("energy", &rectangle(201.0)));
+    let options = ["--fit", "a", "--format", "json", "--quiet"];
+    let found: Value = serde_json::from_str(&run.answer(DOT, &options)).expect("json");
+    let fit = &list(&found["fit"])[0];
+    assert_eq!(fit["name"], "a");
+    assert_eq!(fit["file"], 200.0);
+    let (value, error) = (number(&fit["value"]), number(&fit["error"]));
+    assert!((value - 201.0).abs() < 5.0 * error && error < 0.02, "{fit}");
+    // The orbits add digits to what the smooth count says.
+    assert!(number(&fit["smooth_error"]) > 2.0 * error, "{fit}");
+    assert!(list(&found["faults"]).is_empty());
+    assert!((number(&found["parameters"]["a"]) - value).abs() < 1e-9);
+    let strict = run.call(DOT, &["--fit", "a", "--strict", "--quiet"]);
+    assert_eq!(strict.status.code(), Some(3));
+    let words = string(&strict.stderr);
+    assert!(words.contains("another value of a"), "{words}");
 }
 
 #[test]

@@ -540,6 +540,14 @@ const WRONG: &[(&[&str], &str)] = &[
         "--max-bounces: `0` is not a whole number",
     ),
     (
+        &["audit", QUARTER, "--levels", LIST, "--fit", "b"],
+        "--fit: `b` is not a parameter: the system file has R, a",
+    ),
+    (
+        &["audit", QUARTER, "--levels", LIST, "--fit", ""],
+        "--fit: `` is not a parameter",
+    ),
+    (
         &["audit", QUARTER, "--levels", LIST, "--class", "odd"],
         "it has no symmetry",
     ),

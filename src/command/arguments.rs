@@ -217,6 +217,9 @@ pub(crate) struct Audit {
     pub(crate) window: WindowOptions,
     #[command(flatten)]
     pub(crate) limits: OrbitLimits,
+    /// Fit a parameter of the system file to the list, and audit with the value that fits best; may be repeated
+    #[arg(long, value_name = "NAME")]
+    pub(crate) fit: Vec<String>,
     /// Exit with 3 if anything is found
     #[arg(long)]
     pub(crate) strict: bool,

@@ -2,6 +2,7 @@
 
 mod check;
 mod corrected;
+mod fit;
 mod present;
 mod sentence;
 mod statistics;
@@ -20,6 +21,7 @@ use super::orbits;
 use super::progress;
 use super::subject::Subject;
 use super::window::Window;
+use fit::Parameter;
 use orbitsum::levels::audit::{Findings, LeftOut, Listed, Prediction, audit};
 use orbitsum::orbit::{Catalogue, ClassWeights, Limits, terms};
 use statistics::Measured;
@@ -35,13 +37,17 @@ const DIGITS: usize = 3;
 pub(super) fn run(typed: &Audit, options: &Options) -> Result<Answer, CommandError> {
     let subject = Subject::load(&typed.system, options)?;
     let wishes = Wishes::of_audit(typed, &subject)?;
+    let names = fit::names(&typed.fit, &subject)?;
     subject.check_class_of_orbits()?;
     let given = GivenLevels::read(&typed.levels, &subject)?;
     let part = Part::new(&given, wishes.window, &subject);
     check::check(&subject, &given, &part, &typed.levels)?;
     let plan = plan(&subject, &wishes, &part)?;
     check::check_resolution(&subject, &part, &plan)?;
-    let (catalogue, prediction) = predict(&subject, plan.limits, options);
+    let (subject, fitted) =
+        fit::fitted(&typed.system, subject, &names, &part, plan.limits, options)?;
+    let catalogue = orbits::find(&subject, plan.limits, options);
+    let prediction = prediction(&subject, &catalogue, plan.limits);
     let findings = progress::during(options, "auditing the list", || {
         audit(&part.listed(&subject), &prediction)
     })
@@ -57,6 +63,7 @@ pub(super) fn run(typed: &Audit, options: &Options) -> Result<Answer, CommandErr
         catalogue: &catalogue,
         findings: &findings,
         measured: &measured,
+        fitted: &fitted,
         strict: typed.strict,
     }))
 }
@@ -70,6 +77,8 @@ struct Audited<'a> {
     catalogue: &'a Catalogue,
     findings: &'a Findings,
     measured: &'a Measured,
+    /// Parameters that were fitted; the subject has these values.
+    fitted: &'a [Parameter],
     /// Does anything that is found end the command with its own exit code?
     strict: bool,
 }
@@ -164,13 +173,12 @@ fn plan(subject: &Subject, wishes: &Wishes, part: &Part) -> Result<Plan, Command
     Ok(plan)
 }
 
-/// Finds the orbits, and makes of them and of the smooth count what an audit compares with.
-fn predict(subject: &Subject, limits: Limits, options: &Options) -> (Catalogue, Prediction) {
-    let catalogue = orbits::find(subject, limits, options);
+/// What an audit compares with: smooth count, orbit sum, and what this leaves out.
+fn prediction(subject: &Subject, catalogue: &Catalogue, limits: Limits) -> Prediction {
     let weights = ClassWeights::new(&subject.symmetry, subject.class.as_ref());
-    let prediction = Prediction {
+    Prediction {
         weyl: subject.weyl(),
-        terms: terms(&catalogue, &weights),
+        terms: terms(catalogue, &weights),
         max_length: limits.max_length,
         left_out: catalogue
             .omissions
@@ -183,6 +191,5 @@ fn predict(subject: &Subject, limits: Limits, options: &Options) -> (Catalogue, 
                 power: omission.power,
             })
             .collect(),
-    };
-    (catalogue, prediction)
+    }
 }

@@ -213,6 +213,14 @@ pub(crate) enum CommandError {
         "orbits up to {longest} resolve nothing in this window: give a --max-length of {needed} or more, or a wider window"
     )]
     TooCoarse { longest: String, needed: String },
+    /// A parameter to be fitted that the file does not have.
+    #[error("--fit: `{name}` is not a parameter: {known}")]
+    UnknownParameter { name: String, known: String },
+    /// Parameters that the list does not determine.
+    #[error(
+        "--fit: the list does not determine {names}: fit fewer parameters, or give a longer list"
+    )]
+    NotFitted { names: String },
     /// A list that the noise model cannot take.
     #[error("{}: the list cannot be compared with the prediction: its levels are too close to each other or to 0", path.display())]
     NotAudited { path: PathBuf },
@@ -313,6 +321,7 @@ impl CommandError {
             | Self::Threads { .. }
             | Self::Incomplete { .. }
             | Self::NotAudited { .. }
+            | Self::NotFitted { .. }
             | Self::Solver(SolverError::Mesh(_)) => FAILED,
             Self::AuditFound { .. } => FOUND,
             _ => WRONG_INPUT,

@@ -1,6 +1,7 @@
 //! Summary, files and picture of an audit.
 
 use super::corrected::spread;
+use super::fit::Parameter;
 use super::sentence::{KINDS, and, found, of_kind, sentence, suspicion, total};
 use super::{Audited, corrected, tables};
 use crate::command::answer::Answer;
@@ -216,6 +217,8 @@ fn metadata(audited: &Audited<'_>, sentence: &str, completeness: &str) -> Map<St
             })
         }),
     );
+    let fitted = audited.fitted.iter().map(Parameter::json);
+    map.insert("fit".into(), fitted.collect());
     map.insert("parts".into(), tables::parts_json(audited));
     map.insert("statistics".into(), audited.measured.json());
     map.insert(

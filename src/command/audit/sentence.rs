@@ -2,6 +2,7 @@
 
 use super::Audited;
 use super::corrected::spread;
+use super::fit::Parameter;
 use crate::command::text::{counted, significant, to_error, with_error};
 use orbitsum::levels::audit::{Fault, FaultKind, Measured, Measures, Trend, TrendKind, Verdict};
 
@@ -17,16 +18,17 @@ const LEAST_PART: f64 = 1e-6;
 /// The whole sentence: `2 of 312 levels are missing: near k = 31.42 +- 0.03 and 40.17 +- 0.02; 1 is false: 44.7121 (number 301); ...`.
 pub(super) fn sentence(audited: &Audited<'_>) -> String {
     let findings = audited.findings;
-    let mut parts: Vec<String> = Vec::new();
+    let mut parts: Vec<String> = audited.fitted.iter().map(Parameter::words).collect();
     if findings.verdict == Verdict::Foreign {
         parts.push("the list is not one of this shape".to_owned());
     }
     parts.extend(fault_parts(audited));
     if findings.faults.is_empty() && findings.verdict == Verdict::Audited {
-        parts.push(format!(
-            "nothing is wrong with the {}",
-            counted(audited.part.levels.len(), "level", "levels")
-        ));
+        let levels = counted(audited.part.levels.len(), "level", "levels");
+        parts.push(match findings.trend.kind {
+            TrendKind::None => format!("nothing is wrong with the {levels}"),
+            _ => format!("none of the {levels} is false, and none is missing"),
+        });
     }
     if findings.below > 0 {
         parts.push(format!(
@@ -55,6 +57,7 @@ pub(super) fn found(audited: &Audited<'_>) -> Option<String> {
             ));
         }
     }
+    parts.extend(audited.fitted.iter().filter_map(Parameter::difference));
     match findings.trend.kind {
         TrendKind::None => {}
         TrendKind::Drift => parts.push("a drift".to_owned()),
