@@ -493,6 +493,69 @@ const WRONG: &[(&[&str], &str)] = &[
         &["lengths", QUARTER, "--levels", LIST, "--set", "R=3"],
         "it belongs to another shape, size, class or unit",
     ),
+    // Audits; wrong lists have a file of tests of their own.
+    (&["audit", QUARTER], "required arguments were not provided"),
+    (
+        &["audit", "--levels", LIST],
+        "required arguments were not provided",
+    ),
+    (
+        &["audit", QUARTER, "--levels", "nowhere.csv"],
+        "cannot read the level list nowhere.csv",
+    ),
+    (
+        &["audit", QUARTER, "--levels", "tests/cli/one-level.csv"],
+        "the list holds 1 level: an audit needs at least 10",
+    ),
+    (
+        &["audit", QUARTER, "--levels", "data/example-cavity.csv"],
+        "give a column `k`, or put [units] into the system file",
+    ),
+    (
+        &["audit", CAVITY, "--levels", "tests/cli/energies.csv"],
+        "give a column `frequency` or `k`",
+    ),
+    (
+        &["audit", QUARTER, "--levels", LIST, "--direct"],
+        "unexpected argument '--direct'",
+    ),
+    (
+        &["audit", QUARTER, "--levels", LIST, "--k", "42:8"],
+        "the window 42:8 is reversed",
+    ),
+    (
+        &["audit", QUARTER, "--levels", LIST, "--energy", "0:42"],
+        "give the window with --k FROM:TO",
+    ),
+    (
+        &["audit", QUARTER, "--levels", LIST, "--max-length", "1e9"],
+        "give a smaller --max-length or a narrower window",
+    ),
+    (
+        &["audit", QUARTER, "--levels", LIST, "--max-length", "0.01"],
+        "orbits up to 0.01 resolve nothing in this window",
+    ),
+    (
+        &["audit", QUARTER, "--levels", LIST, "--max-bounces", "0"],
+        "--max-bounces: `0` is not a whole number",
+    ),
+    (
+        &["audit", QUARTER, "--levels", LIST, "--fit", "b"],
+        "--fit: `b` is not a parameter: the system file has R, a",
+    ),
+    (
+        &["audit", QUARTER, "--levels", LIST, "--fit", ""],
+        "--fit: `` is not a parameter",
+    ),
+    (
+        &["audit", QUARTER, "--levels", LIST, "--class", "odd"],
+        "it has no symmetry",
+    ),
+    (
+        &["audit", ELLIPSE, "--levels", LIST, "--class", "odd,odd"],
+        "leave --class out",
+    ),
+    (&["audit", STADIUM, "--levels", LIST], "give --class A2"),
     // The output folder.
     (
         &["show", QUARTER, "--out", "Cargo.toml"],
@@ -891,7 +954,9 @@ fn a_full_disk_is_a_failure() {
 #[test]
 fn help_lists_what_works_and_succeeds() {
     let help = answer(&["--help"]);
-    for command in ["show", "weyl", "orbits", "density", "levels", "lengths"] {
+    for command in [
+        "show", "weyl", "orbits", "density", "levels", "lengths", "audit",
+    ] {
         assert!(help.contains(command));
         assert!(answer(&[command, "--help"]).contains("SYSTEM.toml"));
     }

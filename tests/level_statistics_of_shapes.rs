@@ -16,7 +16,7 @@ use std::path::Path;
 
 #[path = "common/random_levels.rs"]
 mod random_levels;
-#[path = "common/statistics_picture.rs"]
+#[path = "../src/command/audit/statistics_picture.rs"]
 mod statistics_picture;
 
 use random_levels::{Random, thinned};
@@ -210,7 +210,7 @@ fn the_quarter_stadium_is_as_its_orbits_say() {
         found.iter().all(|value| (value - 0.1).abs() < 0.05),
         "{found:?}"
     );
-    let picture = statistics_picture::picture("quarter stadium", &statistics);
+    let picture = statistics_picture::picture("quarter stadium", &statistics, &[]);
     assert!(picture.contains("from the orbits") && !picture.contains("NaN"));
     if let Some(folder) = std::env::var_os("PICTURES") {
         let path = Path::new(&folder).join("statistics-quarter-stadium.svg");

@@ -39,6 +39,11 @@ pub(crate) enum Command {
     /// It shows which orbits a list knows of, what a search of orbits left out and what a measurement did. Without a window: from
     /// about the 5th level to the end of the list.
     Lengths(Lengths),
+    /// Find the levels that a list lacks and those that are false, with their places and how sure that is
+    ///
+    /// The list is compared with the smooth count and the periodic orbits alone. The window is the range in which it claims to be
+    /// complete; without one: from its first level to its last.
+    Audit(Audit),
 }
 
 /// Options of every command.
@@ -198,4 +203,24 @@ pub(crate) struct Lengths {
     pub(crate) levels: PathBuf,
     #[command(flatten)]
     pub(crate) limits: OrbitLimits,
+}
+
+#[derive(Debug, Args)]
+pub(crate) struct Audit {
+    /// System file
+    #[arg(value_name = "SYSTEM.toml")]
+    pub(crate) system: PathBuf,
+    /// Levels: one a line, or csv with a column k, energy or frequency, and perhaps error or width
+    #[arg(long, value_name = "FILE")]
+    pub(crate) levels: PathBuf,
+    #[command(flatten)]
+    pub(crate) window: WindowOptions,
+    #[command(flatten)]
+    pub(crate) limits: OrbitLimits,
+    /// Fit a parameter of the system file to the list, and audit with the value that fits best; may be repeated
+    #[arg(long, value_name = "NAME")]
+    pub(crate) fit: Vec<String>,
+    /// Exit with 3 if anything is found
+    #[arg(long)]
+    pub(crate) strict: bool,
 }

@@ -11,6 +11,8 @@ use thiserror::Error;
 const FAILED: u8 = 1;
 /// The input or the call is wrong.
 const WRONG_INPUT: u8 = 2;
+/// A strict audit found something.
+const FOUND: u8 = 3;
 
 /// Why a command did not answer.
 #[derive(Debug, Error)]
@@ -23,8 +25,13 @@ pub(crate) enum CommandError {
     Levels(#[from] ListError),
     /// The list's column cannot be turned into the file's unit.
     #[error(
-        "{}: the list has a column `{column}`, but the levels of the system file are {expected}: give a column \
-         `{expected}` or `k`", path.display()
+        "{}: the list has a column `{column}`, but the levels of the system file are {expected}: give a column {}",
+        path.display(),
+        if *expected == "k" {
+            "`k`, or put [units] into the system file".to_owned()
+        } else {
+            format!("`{expected}` or `k`")
+        }
     )]
     ListUnit {
         path: PathBuf,
@@ -164,6 +171,65 @@ pub(crate) enum CommandError {
         expected: f64,
         system: String,
     },
+    /// A list that seems to be something else.
+    #[error(
+        "{}: as it stands the list does not fit the shape, but it looks like {what}: {cure}", path.display()
+    )]
+    ListLooksLike {
+        path: PathBuf,
+        what: String,
+        cure: String,
+    },
+    /// Too few levels for an audit.
+    #[error("{place} holds {found}: an audit needs at least {least} to tell a fault from noise")]
+    TooFewToAudit {
+        /// `the list`, or the window in words.
+        place: String,
+        /// Such as `1 level`.
+        found: String,
+        least: usize,
+    },
+    /// More levels than an audit takes.
+    #[error(
+        "{found} levels are more than the {most} that are audited at once: take a part of the list with --{option} FROM:TO"
+    )]
+    TooManyLevels {
+        found: usize,
+        most: usize,
+        option: &'static str,
+    },
+    /// Longer orbits than an audit can use.
+    #[error(
+        "orbits up to {longest} would need a record of {points:.0} points, more than {limit:.0}: give a smaller --max-length or a narrower \
+         window"
+    )]
+    TooFine {
+        longest: String,
+        points: f64,
+        limit: f64,
+    },
+    /// Orbits too short for an audit of the window.
+    #[error(
+        "orbits up to {longest} resolve nothing in this window: give a --max-length of {needed} or more, or a wider window"
+    )]
+    TooCoarse { longest: String, needed: String },
+    /// A parameter to be fitted that the file does not have.
+    #[error("--fit: `{name}` is not a parameter: {known}")]
+    UnknownParameter { name: String, known: String },
+    /// Parameters that the list does not determine.
+    #[error(
+        "--fit: the list does not determine {names}: fit fewer parameters, or give a longer list"
+    )]
+    NotFitted { names: String },
+    /// A list that the noise model cannot take.
+    #[error("{}: the list cannot be compared with the prediction: its levels are too close to each other or to 0", path.display())]
+    NotAudited { path: PathBuf },
+    /// A strict audit found something.
+    #[error("{found}")]
+    AuditFound {
+        /// In words.
+        found: String,
+    },
     /// A window that tells no orbit from the smooth part.
     #[error(
         "in this window lengths below {resolved} cannot be told from the smooth part, and a comparison takes orbits up to {needed}, \
@@ -241,18 +307,23 @@ impl CommandError {
         match self {
             // This one has its heading already.
             Self::System(_) => self.to_string(),
+            // Nothing went wrong.
+            Self::AuditFound { .. } => format!("strict: {self}"),
             _ => format!("error: {self}"),
         }
     }
 
-    /// 2 where the input or the call is wrong, 1 where the computation failed.
+    /// 2 where the input or the call is wrong, 1 where the computation failed, 3 where a strict audit found something.
     pub(crate) fn exit_code(&self) -> ExitCode {
         ExitCode::from(match self {
             Self::Write { .. }
             | Self::StandardOutput(_)
             | Self::Threads { .. }
             | Self::Incomplete { .. }
+            | Self::NotAudited { .. }
+            | Self::NotFitted { .. }
             | Self::Solver(SolverError::Mesh(_)) => FAILED,
+            Self::AuditFound { .. } => FOUND,
             _ => WRONG_INPUT,
         })
     }

@@ -25,11 +25,6 @@ impl<'a> Fluctuation<'a> {
     pub(super) fn new(subject: &'a Subject, options: &Options) -> Self {
         let domain = &subject.system.domain;
         let max_length = CHORDS * PI * domain.area / domain.perimeter;
-        let statistics = if is_integrable(subject) {
-            Statistics::Uncorrelated
-        } else {
-            Statistics::Orthogonal
-        };
         let terms = if subject.check_class_of_orbits().is_ok() {
             let catalogue = orbits::find(subject, Limits::up_to(max_length, domain), options);
             terms(
@@ -43,7 +38,7 @@ impl<'a> Fluctuation<'a> {
             subject,
             terms,
             max_length,
-            statistics,
+            statistics: statistics(subject),
         }
     }
 
@@ -59,7 +54,7 @@ impl<'a> Fluctuation<'a> {
                 &self.terms,
                 k,
                 self.max_length,
-                &self.classes(k),
+                &classes(self.subject, k),
                 self.statistics,
             )
         })
@@ -72,32 +67,10 @@ impl<'a> Fluctuation<'a> {
                 &self.terms,
                 [from, to],
                 self.max_length,
-                &self.classes(0.5 * (from + to)),
+                &classes(self.subject, 0.5 * (from + to)),
                 self.statistics,
             )
         })
-    }
-
-    /// The classes among the levels, with their densities near k.
-    fn classes(&self, k: f64) -> Vec<ClassDensity> {
-        let subject = self.subject;
-        let density =
-            |class| weyl(&subject.system.domain, &subject.symmetry, Some(class)).density(k, 0.0);
-        subject
-            .symmetry
-            .irreps
-            .iter()
-            .filter(|irrep| {
-                subject
-                    .class
-                    .as_ref()
-                    .is_none_or(|class| class.name == irrep.name)
-            })
-            .map(|irrep| ClassDensity {
-                density: density(irrep),
-                dimension: irrep.dimension,
-            })
-            .collect()
     }
 
     /// Where the estimate comes from, for people.
@@ -111,6 +84,36 @@ impl<'a> Fluctuation<'a> {
              beyond",
             self.subject.length(self.max_length, 3)
         )
+    }
+}
+
+/// The classes among the levels, with their densities near k.
+pub(super) fn classes(subject: &Subject, k: f64) -> Vec<ClassDensity> {
+    let density =
+        |class| weyl(&subject.system.domain, &subject.symmetry, Some(class)).density(k, 0.0);
+    subject
+        .symmetry
+        .irreps
+        .iter()
+        .filter(|irrep| {
+            subject
+                .class
+                .as_ref()
+                .is_none_or(|class| class.name == irrep.name)
+        })
+        .map(|irrep| ClassDensity {
+            density: density(irrep),
+            dimension: irrep.dimension,
+        })
+        .collect()
+}
+
+/// How the levels of one class are spread.
+pub(super) fn statistics(subject: &Subject) -> Statistics {
+    if is_integrable(subject) {
+        Statistics::Uncorrelated
+    } else {
+        Statistics::Orthogonal
     }
 }
 

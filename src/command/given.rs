@@ -28,11 +28,9 @@ pub(super) struct GivenLevels {
     /// Uncertainty of each level in k, where the list states it or they were computed.
     pub(super) errors: Option<Vec<f64>>,
     /// Width of each level in k (a resonance's), where the list states it.
-    #[allow(
-        dead_code,
-        reason = "read by the commands that weigh levels by their widths"
-    )]
     pub(super) widths: Option<Vec<f64>>,
+    /// The unit that the numbers of the list were read in.
+    pub(super) unit: Units,
     /// The k up to which nothing is missing.
     pub(super) end: f64,
     /// How they were found, where they were computed.
@@ -92,6 +90,7 @@ impl GivenLevels {
             k,
             errors,
             widths,
+            unit,
             direct: None,
             notes,
         })
@@ -127,6 +126,7 @@ impl GivenLevels {
             k,
             errors: Some(errors),
             widths: None,
+            unit: *units,
             end: task.window.to,
             direct: Some(computed),
             notes: notes.into_iter().collect(),

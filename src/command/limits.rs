@@ -1,6 +1,6 @@
 //! Window, smoothing and orbit limits: what was asked for, and what is chosen where nothing was.
 
-use super::arguments::{Density, Lengths, OrbitLimits};
+use super::arguments::{Audit, Density, Lengths, OrbitLimits};
 use super::error::CommandError;
 use super::note::Note;
 use super::subject::Subject;
@@ -79,6 +79,14 @@ impl Wishes {
     pub(super) fn of_lengths(typed: &Lengths, subject: &Subject) -> Result<Self, CommandError> {
         Ok(Self {
             window: window::asked(&typed.window, subject, Begin::AboveZero)?,
+            ..Self::of_limits(&typed.limits)?
+        })
+    }
+
+    /// Numbers of the command `audit`, whose window may begin at zero.
+    pub(super) fn of_audit(typed: &Audit, subject: &Subject) -> Result<Self, CommandError> {
+        Ok(Self {
+            window: window::asked(&typed.window, subject, Begin::AtZero)?,
             ..Self::of_limits(&typed.limits)?
         })
     }

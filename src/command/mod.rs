@@ -7,6 +7,7 @@
 
 mod answer;
 mod arguments;
+mod audit;
 mod completeness;
 mod density;
 mod direct;
@@ -46,6 +47,7 @@ pub(crate) fn run(arguments: Arguments) -> Result<(), CommandError> {
         Command::Density(typed) => density::run(typed, &options),
         Command::Levels(typed) => levels::run(typed, &options),
         Command::Lengths(typed) => lengths::run(typed, &options),
+        Command::Audit(typed) => audit::run(typed, &options),
     }?;
     answer.deliver(&options)
 }

@@ -25,6 +25,14 @@ pub(super) enum Note {
     NothingExplained,
     /// There is no room below the shortest orbit in which the noise could be measured.
     NoiseUnmeasured { shortest: String, needed: String },
+    /// What might be wrong with a list, and is not certain enough to be a finding.
+    Suspicions { words: String },
+    /// Parts of a list in which single missing levels would not be seen.
+    NotAuditable { ranges: String },
+    /// A list that is not one of the shape.
+    Foreign,
+    /// There are no statistics of a list.
+    NoStatistics { reason: String },
     /// The list ends inside the window.
     ListEnds { end: String, used_to: String },
     /// The list ends before the window begins.
@@ -97,6 +105,8 @@ impl Note {
                 | Self::NotSettled { .. }
                 | Self::OffSmoothCount { .. }
                 | Self::NotComplete { .. }
+                | Self::NotAuditable { .. }
+                | Self::Foreign
         ) || matches!(self, Self::LeftOut { size, .. } if *size >= UNUSABLE)
     }
 
@@ -142,6 +152,17 @@ impl fmt::Display for Note {
                 "the noise of the list could not be measured below the shortest orbit ({shortest}), which takes a length of {needed}: \
                  it is taken from the lower quartile of the difference, and some of what is listed may be noise; a wider window helps"
             ),
+            Self::Suspicions { words } => {
+                write!(f, "not certain enough to be told as findings: {words}")
+            }
+            Self::NotAuditable { ranges } => write!(
+                f,
+                "the list cannot be audited at this resolution {ranges}: what the orbit sum leaves out there hides single levels"
+            ),
+            Self::Foreign => f.write_str(
+                "the list does not follow the prediction at all: it belongs to another shape, size, class or unit, and nothing that is                  said about single levels means anything",
+            ),
+            Self::NoStatistics { reason } => write!(f, "no statistics of the list: {reason}"),
             Self::ListEnds { end, used_to } => write!(
                 f,
                 "the level list ends at {end}: the comparison ends five smoothing widths before, at {used_to}"

@@ -28,11 +28,18 @@ pub(super) struct Subject {
 impl Subject {
     /// Reads the system and looks up the class.
     pub(super) fn load(path: &Path, options: &Options) -> Result<Self, CommandError> {
-        let system = load(path, &options.settings)?;
+        Self::with_settings(path, &options.settings, options.class.as_deref())
+    }
+
+    /// The same with the given parameters and class.
+    pub(super) fn with_settings(
+        path: &Path,
+        settings: &[(String, String)],
+        class_name: Option<&str>,
+    ) -> Result<Self, CommandError> {
+        let system = load(path, settings)?;
         let symmetry = symmetry(&system)?;
-        let class = options
-            .class
-            .as_deref()
+        let class = class_name
             .map(|name| class(&system, &symmetry, name))
             .transpose()?;
         Ok(Self {

@@ -36,6 +36,56 @@ fn trimmed(text: &str) -> &str {
     }
 }
 
+/// A value with its standard deviation, `31.42 +- 0.03`: the deviation to one digit, to two where the first is a one.
+pub(super) fn with_error(value: f64, error: f64) -> String {
+    let decimals = decimals_of(error);
+    match decimals {
+        Some(decimals) if value.is_finite() => {
+            let (value, error) = (fixed(value, decimals), fixed(error, decimals));
+            format!("{value} +- {error}")
+        }
+        _ => significant(value, DIGITS_WITHOUT_ERROR),
+    }
+}
+
+/// A value to as many decimals as its standard deviation allows.
+pub(super) fn to_error(value: f64, error: f64) -> f64 {
+    decimals_of(error)
+        .and_then(|decimals| fixed(value, decimals).parse().ok())
+        .unwrap_or(value)
+}
+
+/// Digits of a value whose error is not known.
+const DIGITS_WITHOUT_ERROR: usize = 7;
+
+/// Decimals of one digit of an error, of two where the first is a one; negative for tens.
+fn decimals_of(error: f64) -> Option<i32> {
+    if !(error > 0.0 && error.is_finite()) {
+        return None;
+    }
+    let power = error.log10().floor();
+    let digits = if error / 10f64.powf(power) < 1.95 {
+        2
+    } else {
+        1
+    };
+    Some(digits - 1 - power as i32)
+}
+
+/// With that many decimals; whole tens where they are negative.
+fn fixed(value: f64, decimals: i32) -> String {
+    let text = if decimals >= 0 {
+        format!("{value:.*}", decimals as usize)
+    } else {
+        let unit = 10f64.powi(-decimals);
+        format!("{:.0}", (value / unit).round() * unit)
+    };
+    match text.strip_prefix('-') {
+        Some(zero) if zero.chars().all(|c| matches!(c, '0' | '.')) => zero.to_owned(),
+        _ => text,
+    }
+}
+
 /// A number with its unit, if it has one.
 pub(super) fn with_unit(value: f64, digits: usize, unit: &str) -> String {
     let number = significant(value, digits);
@@ -67,6 +117,27 @@ pub(super) fn listed(pairs: &[(String, String)]) -> String {
 #[cfg(test)]
 mod tests {
     use super::*;
+
+    #[test]
+    fn errors_have_one_or_two_digits() {
+        for (value, error, text) in [
+            (31.4187, 0.0312, "31.42 +- 0.03"),
+            (31.4187, 0.0128, "31.419 +- 0.013"),
+            (31.4187, 0.0098, "31.419 +- 0.010"),
+            (0.000_312_4, 2e-6, "0.000312 +- 0.000002"),
+            (1234.5, 33.0, "1230 +- 30"),
+            (8.0, 1.0, "8.0 +- 1.0"),
+            (-0.5, 0.04, "-0.50 +- 0.04"),
+            (-0.3, 5.0, "0 +- 5"),
+            (2.5, 0.0, "2.5"),
+            (2.5, f64::NAN, "2.5"),
+            (f64::NAN, 0.1, "-"),
+        ] {
+            assert_eq!(with_error(value, error), text);
+        }
+        assert_eq!(to_error(31.4187, 0.0312), 31.42);
+        assert_eq!(to_error(31.4187, f64::INFINITY), 31.4187);
+    }
 
     #[test]
     fn numbers_are_short_and_right() {

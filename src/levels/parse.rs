@@ -2,7 +2,7 @@
 //!
 //! The file is csv (comma or semicolon) or white-space text, with comment lines that begin with `#`. It holds one column, or
 //! several with their names in the first line: `k`, `energy` or `frequency` for the levels, `error`, `width` and
-//! `multiplicity` beside it; `n` is skipped.
+//! `multiplicity` beside it; `n` and `estimated` (marks of an audit) are skipped.
 
 use std::fs::File;
 use std::io::Read;
@@ -221,7 +221,7 @@ impl Header<'_> {
             ignored,
         }));
         let known = |name: &str| {
-            ["error", "width", "n", "multiplicity"].contains(&name)
+            ["error", "width", "n", "multiplicity", "estimated"].contains(&name)
                 || ListColumn::ALL.iter().any(|kind| kind.name() == name)
         };
         let unknown = names

@@ -1,5 +1,4 @@
-//! The picture of measured statistics.
-#![allow(dead_code)]
+//! The picture of measured statistics. It knows the library only: tests draw with it too.
 
 use orbitsum::levels::statistics::{FormFactorBin, LevelStatistics, SpacingCurves, WindowPoint};
 use orbitsum::report::{
@@ -7,7 +6,7 @@ use orbitsum::report::{
 };
 
 /// Draws all of it.
-pub(crate) fn picture(title: &str, statistics: &LevelStatistics) -> String {
+pub(crate) fn picture(title: &str, statistics: &LevelStatistics, captions: &[String]) -> String {
     let spacings = &statistics.spacings;
     let mut edges: Vec<f64> = spacings.histogram.iter().map(|bin| bin.from).collect();
     edges.extend(spacings.histogram.last().map(|bin| bin.to));
@@ -66,7 +65,7 @@ pub(crate) fn picture(title: &str, statistics: &LevelStatistics) -> String {
             curves: &time_lines,
             saturation: None,
         },
-        captions: &[],
+        captions,
     })
 }
 
