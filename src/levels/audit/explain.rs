@@ -83,7 +83,13 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
         Scene::new(span, &predicted.points, record, levels, whitener, &density)
     };
     let max_length = setting.prediction.max_length;
-    let mut noise = Noise::new(setting.waves, predicted, &expected, setting.fixed.clone(), single);
+    let mut noise = Noise::new(
+        setting.waves,
+        predicted,
+        &expected,
+        setting.fixed.clone(),
+        single,
+    );
     let mut best: Option<Best> = None;
     let mut steps = Vec::new();
     for heat in HEATS {
@@ -91,7 +97,14 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
         let whitener = noise.whitener()?;
         let found = scene(&whitener).search(steps, None);
         let evidence = found.value - 0.5 * whitener.log_determinant();
-        if std::env::var("AV").is_ok() {eprintln!("heat {heat}: steps {} value {:.1} evidence {evidence:.1} {:?}", found.steps.len(), found.value, T0.with(|t| t.elapsed()));}
+        if std::env::var("AV").is_ok() {
+            eprintln!(
+                "heat {heat}: steps {} value {:.1} evidence {evidence:.1} {:?}",
+                found.steps.len(),
+                found.value,
+                T0.with(|t| t.elapsed())
+            );
+        }
         steps = found.steps;
         if best.as_ref().is_some_and(|best| best.evidence >= evidence) {
             break;
@@ -114,7 +127,14 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
             found = with_decoded(&scene, found);
         }
         let evidence = found.value - 0.5 * whitener.log_determinant();
-        if std::env::var("AV").is_ok() {eprintln!("learn: steps {} value {:.1} evidence {evidence:.1} {:?}", found.steps.len(), found.value, T0.with(|t| t.elapsed()));}
+        if std::env::var("AV").is_ok() {
+            eprintln!(
+                "learn: steps {} value {:.1} evidence {evidence:.1} {:?}",
+                found.steps.len(),
+                found.value,
+                T0.with(|t| t.elapsed())
+            );
+        }
         let rest = scene.rest_of(record, &found.steps);
         steps = found.steps;
         if evidence > best.evidence + SETTLED {
@@ -136,10 +156,14 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
     }
     let whitener = best.noise.whitener()?;
     let scene = scene(&whitener);
-    if std::env::var("AV").is_ok() {eprintln!("question {:?}", T0.with(|t| t.elapsed()));}
+    if std::env::var("AV").is_ok() {
+        eprintln!("question {:?}", T0.with(|t| t.elapsed()));
+    }
     let (found, odds) = questioned(&scene, scene.search(best.steps, None), &density);
     let errors = scene.errors(&found);
-    if std::env::var("AV").is_ok() {eprintln!("done {:?}", T0.with(|t| t.elapsed()));}
+    if std::env::var("AV").is_ok() {
+        eprintln!("done {:?}", T0.with(|t| t.elapsed()));
+    }
     Some(Explained {
         rest: scene.rest_of(record, &found.steps),
         noise: best.noise.deviations(),
@@ -156,7 +180,11 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
                 odds,
             })
             .collect(),
-        place_errors: predicted.points.iter().map(|&k| scene.place_error(k)).collect(),
+        place_errors: predicted
+            .points
+            .iter()
+            .map(|&k| scene.place_error(k))
+            .collect(),
         whitener,
     })
 }
@@ -169,7 +197,11 @@ fn with_decoded(scene: &Scene<'_>, found: Explanation) -> Explanation {
         return found;
     }
     let decoded = scene.search(decoded.steps, None);
-    if decoded.value > found.value { decoded } else { found }
+    if decoded.value > found.value {
+        decoded
+    } else {
+        found
+    }
 }
 
 /// Looks for the best explanation without each fault in turn; one that turns out better than the explanation replaces it.

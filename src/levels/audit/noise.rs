@@ -60,7 +60,9 @@ impl Waves {
         let spacing = PI / (span.to - span.from);
         let nodes = |from: f64, to: f64| -> Vec<f64> {
             let (first, last) = ((from / spacing) as usize, (to / spacing) as usize);
-            (first..last).map(|node| (node as f64 + 0.5) * spacing).collect()
+            (first..last)
+                .map(|node| (node as f64 + 0.5) * spacing)
+                .collect()
         };
         let inside = LONGEST_INSIDE * max_length;
         let lengths = nodes(0.0, inside);
@@ -70,7 +72,10 @@ impl Waves {
             let k = predicted.points[index];
             (k - span.from).min(span.to - k) < END * span.smoothing
         };
-        let at_end = (0..points).take_while(|&index| near(index)).count().min(points / 2);
+        let at_end = (0..points)
+            .take_while(|&index| near(index))
+            .count()
+            .min(points / 2);
         let middles = predicted.cells.middles();
         let wave = |length: f64, index: usize| -> (f64, f64) {
             if index >= at_end && index + at_end < points {
@@ -118,7 +123,11 @@ impl Expected<'_> {
         let max_length = self.prediction.max_length;
         if length > max_length {
             // sigma^2 = (1/(2 pi^2)) integral of K(tau)/tau^2 dtau with tau = length/(2 pi density) and K = 1, an upper bound.
-            let density = self.prediction.weyl.density(self.middle, 0.0).max(f64::MIN_POSITIVE);
+            let density = self
+                .prediction
+                .weyl
+                .density(self.middle, 0.0)
+                .max(f64::MIN_POSITIVE);
             let tau = length / (2.0 * PI * density);
             let form_factor = (2.0 * tau).min(1.0);
             return density * form_factor / (PI * length * length) * spacing;
@@ -239,7 +248,11 @@ impl<'a> Noise<'a> {
     fn add_beyond(&self, covariance: &mut Matrix) {
         let points = self.gain.len();
         for (end, columns) in self.waves.beyond.iter().enumerate() {
-            let first = if end == 0 { 0 } else { points - self.waves.at_end };
+            let first = if end == 0 {
+                0
+            } else {
+                points - self.waves.at_end
+            };
             for i in 0..self.waves.at_end {
                 for j in 0..self.waves.at_end {
                     let sum: f64 = self
@@ -272,7 +285,11 @@ impl<'a> Noise<'a> {
             .zip(&self.expected)
             .zip(&self.waves.lengths)
         {
-            *variance = if *length <= max_length { factor * expected } else { *expected };
+            *variance = if *length <= max_length {
+                factor * expected
+            } else {
+                *expected
+            };
         }
     }
 
@@ -299,7 +316,8 @@ impl<'a> Noise<'a> {
         }
         let single = whitener.whitened(self.single.as_ref());
         let (power, freedom) = seen(&single, 0..single.ncols(), &white, self.single_variance);
-        self.single_variance = (LEVEL_WEIGHT * LEVEL_ERROR * LEVEL_ERROR + power) / (LEVEL_WEIGHT + freedom);
+        self.single_variance =
+            (LEVEL_WEIGHT * LEVEL_ERROR * LEVEL_ERROR + power) / (LEVEL_WEIGHT + freedom);
         self.learn_gain(&white);
     }
 
@@ -328,7 +346,9 @@ impl<'a> Noise<'a> {
         let middles: Vec<f64> = (0..knots).map(middle).collect();
         for (index, gain) in self.gain.iter_mut().enumerate() {
             let place = index as f64 + 0.5;
-            let right = middles.partition_point(|&at| at < place).clamp(1, knots - 1);
+            let right = middles
+                .partition_point(|&at| at < place)
+                .clamp(1, knots - 1);
             let (a, b) = (middles[right - 1], middles[right]);
             let t = ((place - a) / (b - a)).clamp(0.0, 1.0);
             let log = logs[right - 1] * (1.0 - t) + logs[right] * t - mean;

@@ -86,13 +86,13 @@ impl Weights {
 impl Weights {
     /// Smoothed cosine and sine of `length` times k.
     pub(super) fn wave(&self, length: f64, middles: &[f64]) -> (f64, f64) {
-        self.weights
-            .iter()
-            .zip(&middles[self.first..])
-            .fold((0.0, 0.0), |(cosine, sine), (weight, k)| {
+        self.weights.iter().zip(&middles[self.first..]).fold(
+            (0.0, 0.0),
+            |(cosine, sine), (weight, k)| {
                 let (s, c) = (length * k).sin_cos();
                 (cosine + weight * c, sine + weight * s)
-            })
+            },
+        )
     }
 }
 

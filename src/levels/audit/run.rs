@@ -61,7 +61,12 @@ pub fn audit(list: &Listed<'_>, prediction: &Prediction) -> Option<Findings> {
         return None;
     }
     let start = Start::new(list, prediction);
-    let (law, gained) = coarse(prediction, list.levels, &start.span(list, prediction), start.below);
+    let (law, gained) = coarse(
+        prediction,
+        list.levels,
+        &start.span(list, prediction),
+        start.below,
+    );
     let plain = || Case::new(list, prediction, &start, PowerLaw::none(law.last));
     let case = if gained > 0.0 {
         let mut trended = Case::new(list, prediction, &start, law)?;
@@ -75,7 +80,11 @@ pub fn audit(list: &Listed<'_>, prediction: &Prediction) -> Option<Findings> {
         }
         let plain = plain()?;
         trended.odds = trended.explained.evidence - plain.explained.evidence;
-        if trended.odds > TREND_ODDS { trended } else { plain }
+        if trended.odds > TREND_ODDS {
+            trended
+        } else {
+            plain
+        }
     } else {
         plain()?
     };
@@ -144,7 +153,12 @@ struct Case {
 }
 
 impl Case {
-    fn new(list: &Listed<'_>, prediction: &Prediction, start: &Start, law: PowerLaw) -> Option<Self> {
+    fn new(
+        list: &Listed<'_>,
+        prediction: &Prediction,
+        start: &Start,
+        law: PowerLaw,
+    ) -> Option<Self> {
         let levels: Vec<f64> = list.levels.iter().map(|&level| law.truth(level)).collect();
         let span = start.span(list, prediction);
         let span = Span {
@@ -204,8 +218,18 @@ impl Case {
                 && fault.kind == super::findings::FaultKind::Missing
                 && (fault.k - span.from) * density(fault.k) < 1.0
         };
-        let before = told.faults.iter().filter(|fault| at_start(fault)).map(|fault| fault.count).sum::<usize>();
-        let faults: Vec<_> = told.faults.iter().filter(|fault| !at_start(fault)).cloned().collect();
+        let before = told
+            .faults
+            .iter()
+            .filter(|fault| at_start(fault))
+            .map(|fault| fault.count)
+            .sum::<usize>();
+        let faults: Vec<_> = told
+            .faults
+            .iter()
+            .filter(|fault| !at_start(fault))
+            .cloned()
+            .collect();
         let verdict = self.verdict(&density, faults.len() + told.doubts.len());
         let measures = self.measures(prediction);
         let real: Vec<f64> = {
@@ -260,7 +284,12 @@ impl Case {
         }
         let mut ranges: Vec<[f64; 2]> = Vec::new();
         let mut open = false;
-        for (&k, &error) in self.predicted.points.iter().zip(&self.explained.place_errors) {
+        for (&k, &error) in self
+            .predicted
+            .points
+            .iter()
+            .zip(&self.explained.place_errors)
+        {
             let unseen = error * density(k) > UNSEEN;
             match ranges.last_mut() {
                 Some(range) if unseen && open => range[1] = k,
@@ -357,7 +386,11 @@ impl Case {
 
 /// Columns of area, perimeter and a power law in the record (each one level, or one mean spacing, at the end), and the variances
 /// with which they are part of the noise.
-fn trends(predicted: &Predicted, prediction: &Prediction, law: &PowerLaw) -> (Vec<Vec<f64>>, Vec<f64>) {
+fn trends(
+    predicted: &Predicted,
+    prediction: &Prediction,
+    law: &PowerLaw,
+) -> (Vec<Vec<f64>>, Vec<f64>) {
     let last = predicted.span.to;
     let weyl = &prediction.weyl;
     let end = weyl.density(last, 0.0);
@@ -368,7 +401,10 @@ fn trends(predicted: &Predicted, prediction: &Prediction, law: &PowerLaw) -> (Ve
         column(&|k| weyl.density(k, 0.0).max(0.0) / end * (k / last).powf(1.0 + law.power)),
     ];
     let open = if law.factor == 0.0 { 0.0 } else { OPEN * OPEN };
-    (columns, vec![TOLERANCE * TOLERANCE, TOLERANCE * TOLERANCE, open])
+    (
+        columns,
+        vec![TOLERANCE * TOLERANCE, TOLERANCE * TOLERANCE, open],
+    )
 }
 
 /// Covariance of the record that is known beforehand: trends and stated errors of levels.

@@ -68,7 +68,12 @@ impl PowerLaw {
 }
 
 /// The power law without which the record is simplest, with how much less it costs than none at all.
-pub(super) fn coarse(prediction: &Prediction, levels: &[f64], span: &Span, below: f64) -> (PowerLaw, f64) {
+pub(super) fn coarse(
+    prediction: &Prediction,
+    levels: &[f64],
+    span: &Span,
+    below: f64,
+) -> (PowerLaw, f64) {
     let last = levels.last().copied().unwrap_or(span.to);
     let density = prediction.weyl.density(last, 0.0);
     let none = PowerLaw::none(last);
@@ -86,7 +91,11 @@ pub(super) fn coarse(prediction: &Prediction, levels: &[f64], span: &Span, below
     for power in POWERS {
         for step in -steps..=steps {
             let factor = f64::from(step) * STEP_SPACINGS / (density * last);
-            let law = PowerLaw { factor, power, last };
+            let law = PowerLaw {
+                factor,
+                power,
+                last,
+            };
             let cost = record.cost(levels, &law);
             if step != 0 && cost < best.1 {
                 best = (law, cost);

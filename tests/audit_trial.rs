@@ -1,0 +1,1 @@
+//! A part of the trial of the audit: faults planted in the first five lists of each shape.
