@@ -33,7 +33,7 @@ const LEVELS: usize = 300;
 /// orbit: finer smoothing places levels better and needs a number of orbits that grows exponentially in chaotic shapes.
 const SPACINGS: f64 = 1.5;
 const REACH: f64 = 2.5;
-/// Longest orbit of a polygon in mean chords: the strips grow in number as a power of the length.
+/// Longest orbit of a polygon in mean chords of one symmetry copy of it: the strips grow in number as a power of the length.
 const POLYGON_CHORDS: f64 = 40.0;
 
 /// The group of a shape, 1 to 3.
@@ -66,7 +66,17 @@ impl Subject {
         truth.truncate(count);
         Self {
             name: name.to_owned(),
-            prediction: prediction(name, truth[truth.len() - 1]),
+            prediction: prediction(name, &[], truth[truth.len() - 1]),
+            truth,
+        }
+    }
+
+    /// The same shape with another size: with these parameters its levels are those of the shape times `factor`.
+    pub(crate) fn scaled(&self, settings: &[(&str, f64)], factor: f64) -> Self {
+        let truth: Vec<f64> = self.truth.iter().map(|k| k * factor).collect();
+        Self {
+            name: self.name.clone(),
+            prediction: prediction(&self.name, settings, truth[truth.len() - 1]),
             truth,
         }
     }
@@ -89,14 +99,18 @@ impl Subject {
     }
 }
 
-/// Smooth count and orbit sum of a shape, for a list that ends at this k. Orbits as the program chooses them by cost.
-pub(crate) fn prediction(name: &str, end: f64) -> Prediction {
+/// Smooth count and orbit sum of a shape with some parameters set, for a list that ends at this k.
+fn prediction(name: &str, settings: &[(&str, f64)], end: f64) -> Prediction {
     let (file, class) = match name.strip_suffix("-odd") {
         Some(file) => (file, Some("odd")),
         None => (name, None),
     };
     let path = Path::new(env!("CARGO_MANIFEST_DIR")).join(format!("billiards/{file}.toml"));
-    let system = match load(&path, &[]) {
+    let settings: Vec<(String, String)> = settings
+        .iter()
+        .map(|&(name, value)| (name.to_owned(), value.to_string()))
+        .collect();
+    let system = match load(&path, &settings) {
         Ok(system) => system,
         Err(error) => panic!("{}", error.render()),
     };
@@ -121,16 +135,24 @@ pub(crate) fn prediction(name: &str, end: f64) -> Prediction {
     }
 }
 
-/// Longest orbits worth their cost.
+/// Longest orbits worth their cost, as the program chooses them.
 fn longest(domain: &Domain, symmetry: &Symmetry, weyl: &Weyl, end: f64) -> f64 {
     let wanted = REACH * weyl.density(end, 0.0) / SPACINGS;
     if tori::recognise(domain).is_some() {
         return wanted;
     }
     if domain.walls.iter().all(|wall| wall.is_straight()) {
-        return wanted.min(POLYGON_CHORDS * PI * domain.area / domain.perimeter);
+        return wanted.min(POLYGON_CHORDS * copy_chord(domain, symmetry));
     }
     Limits::up_to(wanted, domain)
         .affordable(domain, symmetry)
         .max_length
+}
+
+/// Mean chord of one symmetry copy of a domain, pi area/perimeter, with the pieces of axes that bound it.
+fn copy_chord(domain: &Domain, symmetry: &Symmetry) -> f64 {
+    let copy = weyl(domain, symmetry, Some(&symmetry.irreps[0]));
+    let walls = copy.terms.iter().filter(|term| term.power == 1);
+    let perimeter: f64 = walls.map(|term| term.coefficient.abs()).sum();
+    PI * copy.coefficient(2) / perimeter
 }
