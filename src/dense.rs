@@ -9,7 +9,8 @@ use faer::linalg::cholesky::lblt::factor::{self, LbltParams, PivotingStrategy};
 use faer::linalg::cholesky::lblt::solve;
 use faer::linalg::solvers::{Llt, SelfAdjointEigen};
 use faer::linalg::triangular_solve::{
-    solve_lower_triangular_in_place, solve_upper_triangular_in_place, solve_unit_lower_triangular_in_place, solve_unit_upper_triangular_in_place,
+    solve_lower_triangular_in_place, solve_unit_lower_triangular_in_place,
+    solve_unit_upper_triangular_in_place, solve_upper_triangular_in_place,
 };
 use faer::perm::PermRef;
 use faer::{Accum, Auto, MatMut, MatRef, Par, Side, Spec};
@@ -273,7 +274,10 @@ impl Cholesky {
         let size = self.lower.nrows();
         let square: f64 = (0..size)
             .map(|column| {
-                let sum = dot(&self.lower.col_as_slice(column)[column..], &weights[column..]);
+                let sum = dot(
+                    &self.lower.col_as_slice(column)[column..],
+                    &weights[column..],
+                );
                 sum * sum
             })
             .sum();

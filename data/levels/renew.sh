@@ -25,6 +25,7 @@ oval            -    36.5
 pentagon        -    49.5
 quarter-stadium -    48.5
 quarter-stadium -    46    data/quarter-stadium.csv
+quarter-stadium -    86    data/levels/quarter-stadium-1000.csv
 rectangle       -    57
 right-isosceles -    92
 sinai           -    73.5

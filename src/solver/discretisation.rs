@@ -1,7 +1,6 @@
 //! One mesh with the unknowns of every symmetry class on it, good up to some k.
 
 use super::Sector;
-use crate::dense::Matrix;
 use super::dissection::Dissection;
 use super::estimate::Estimator;
 use super::factor::{Factor, count_below};
@@ -11,6 +10,7 @@ use super::mesh::{Cell, Mesh, MeshError, Triangle};
 use super::space::Space;
 use super::waves::Spot;
 use crate::billiard::cross;
+use crate::dense::Matrix;
 
 /// Polynomial degree that is tried first: with straight triangles of many shapes, degrees of 12 to 20 cost about the same per
 /// level, lower and higher ones more.

@@ -4,10 +4,10 @@
 //! lower the level by is the energy of the correction that they allow (hierarchical error estimate: Bank & Smith, SIAM J. Numer.
 //! Anal. 30 (1993) 921), here with the interior functions solved for exactly and the edge functions one by one.
 
-use crate::dense::{self, Matrix, Symmetric};
 use super::fields::Fields;
 use super::mesh::{Cell, Mesh};
 use super::space::{Leaf, Space};
+use crate::dense::{self, Matrix, Symmetric};
 use faer::MatRef;
 use rayon::prelude::*;
 

@@ -1,8 +1,8 @@
 //! Factorisation of stiffness - shift x mass along the dissection tree, its inertia, and solutions.
 
-use crate::dense::{self, Into, Matrix, Symmetric};
 use super::dissection::{Below, Dissection, Node};
 use super::space::Space;
+use crate::dense::{self, Into, Matrix, Symmetric};
 use faer::MatRef;
 
 /// What is kept for solutions: with A the matrix on eliminated unknowns e and rim r, the inverse of A_ee and A_ee^-1 A_er.

@@ -3,9 +3,9 @@
 //! Ericsson & Ruhe, Math. Comp. 35 (1980) 1251; the block form finds levels of any multiplicity up to its width, and blocks
 //! are kept orthogonal to all earlier ones.
 
-use crate::dense::{self, Into, Matrix};
 use super::factor::Factor;
 use super::space::Space;
+use crate::dense::{self, Into, Matrix};
 
 /// Vectors per block: wider than any degeneracy that symmetry forces, and a full vector register.
 const WIDTH: usize = 8;

@@ -1,9 +1,9 @@
 //! The unknowns: which functions of which triangles are one and the same, and which vanish on the boundary.
 
-use crate::dense::Matrix;
 use super::elements::{ElementMatrices, Function, Reference, Selection};
 use super::fields::{Direction, Fields};
 use super::mesh::{Cell, Mesh, Side, Triangle, same_length};
+use crate::dense::Matrix;
 use rayon::prelude::*;
 use std::collections::BTreeMap;
 use std::ops::Range;

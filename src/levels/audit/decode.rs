@@ -68,11 +68,19 @@ pub(super) fn decode(scene: &Scene<'_>) -> Vec<Step> {
         }
         next = last;
         for (value, candidate) in row.iter_mut().zip(&candidates).take(last) {
-            let columns = if candidate.is_missing { &scene.missing } else { &scene.listed };
+            let columns = if candidate.is_missing {
+                &scene.missing
+            } else {
+                &scene.listed
+            };
             *value = candidate.sign * columns.matrix[(point, candidate.column)];
         }
         for hypothesis in &mut hypotheses {
-            let steps: f64 = hypothesis.faults.iter().map(|&fault| row[fault as usize]).sum();
+            let steps: f64 = hypothesis
+                .faults
+                .iter()
+                .map(|&fault| row[fault as usize])
+                .sum();
             let rest = scene.white[point] + steps;
             hypothesis.cost += 0.5 * rest * rest;
         }
@@ -81,7 +89,10 @@ pub(super) fn decode(scene: &Scene<'_>) -> Vec<Step> {
         prune(&mut hypotheses, KEPT);
     }
     hypotheses.first().map_or_else(Vec::new, |best| {
-        best.faults.iter().map(|&fault| candidates[fault as usize].step).collect()
+        best.faults
+            .iter()
+            .map(|&fault| candidates[fault as usize].step)
+            .collect()
     })
 }
 
@@ -99,14 +110,18 @@ fn candidates(scene: &Scene<'_>) -> Vec<Candidate> {
             column: place,
             is_missing: true,
         });
-    let listed = scene.levels.iter().enumerate().map(|(index, &level)| Candidate {
-        step: Step::False(index),
-        place: level,
-        sign: -1.0,
-        prior: scene.listed.priors[index],
-        column: index,
-        is_missing: false,
-    });
+    let listed = scene
+        .levels
+        .iter()
+        .enumerate()
+        .map(|(index, &level)| Candidate {
+            step: Step::False(index),
+            place: level,
+            sign: -1.0,
+            prior: scene.listed.priors[index],
+            column: index,
+            is_missing: false,
+        });
     let mut candidates: Vec<Candidate> = missing.chain(listed).collect();
     candidates.sort_by(|a, b| a.place.total_cmp(&b.place));
     candidates
@@ -114,10 +129,15 @@ fn candidates(scene: &Scene<'_>) -> Vec<Candidate> {
 
 /// Keeps the best hypotheses, best first. Ties are broken by the faults, so that the result is always the same.
 fn prune(hypotheses: &mut Vec<Hypothesis>, most: usize) {
-    let best = hypotheses.iter().map(|hypothesis| hypothesis.cost).fold(f64::INFINITY, f64::min);
+    let best = hypotheses
+        .iter()
+        .map(|hypothesis| hypothesis.cost)
+        .fold(f64::INFINITY, f64::min);
     hypotheses.retain(|hypothesis| hypothesis.cost <= best + HOPELESS);
     let order = |a: &Hypothesis, b: &Hypothesis| {
-        a.cost.total_cmp(&b.cost).then_with(|| a.faults.cmp(&b.faults))
+        a.cost
+            .total_cmp(&b.cost)
+            .then_with(|| a.faults.cmp(&b.faults))
     };
     if hypotheses.len() > most {
         hypotheses.select_nth_unstable_by(most, order);

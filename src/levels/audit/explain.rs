@@ -81,10 +81,24 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
     let single = shifts(predicted, levels, &density);
     let all_steps = Steps::new(span, &predicted.points, levels);
     let scene = |whitener: &Cholesky| {
-        Scene::new(span, &predicted.points, &all_steps, record, levels, whitener, &density)
+        Scene::new(
+            span,
+            &predicted.points,
+            &all_steps,
+            record,
+            levels,
+            whitener,
+            &density,
+        )
     };
     let max_length = setting.prediction.max_length;
-    let mut noise = Noise::new(setting.waves, predicted, &expected, setting.fixed.clone(), single);
+    let mut noise = Noise::new(
+        setting.waves,
+        predicted,
+        &expected,
+        setting.fixed.clone(),
+        single,
+    );
     let mut best: Option<Best> = None;
     let mut steps = Vec::new();
     for heat in HEATS {
@@ -158,7 +172,11 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
                 }
             })
             .collect(),
-        place_errors: predicted.points.iter().map(|&k| scene.place_error(k)).collect(),
+        place_errors: predicted
+            .points
+            .iter()
+            .map(|&k| scene.place_error(k))
+            .collect(),
         whitener,
     })
 }
@@ -171,7 +189,11 @@ fn with_decoded(scene: &Scene<'_>, found: Explanation) -> Explanation {
         return found;
     }
     let decoded = scene.search(decoded.steps, None);
-    if decoded.value > found.value { decoded } else { found }
+    if decoded.value > found.value {
+        decoded
+    } else {
+        found
+    }
 }
 
 /// Looks for the best explanation without each fault in turn; one that turns out better than the explanation replaces it.
@@ -224,4 +246,3 @@ fn shifts(predicted: &Predicted, levels: &[f64], density: &dyn Fn(f64) -> f64) -
 pub(super) fn positive_density(density: f64, width: f64) -> f64 {
     density.max(1.0 / width)
 }
-

@@ -133,7 +133,8 @@ fn derivatives<F: Family>(
     (0..values.len())
         .map(|index| {
             // A length changes by no more than about itself when a parameter does.
-            let difference = PHASE / (span.to * longest(span)) * values[index].abs().max(f64::MIN_POSITIVE);
+            let difference =
+                PHASE / (span.to * longest(span)) * values[index].abs().max(f64::MIN_POSITIVE);
             let at = |sign: f64| -> Result<Vec<f64>, F::Error> {
                 let mut moved = values.to_vec();
                 moved[index] += sign * difference;
@@ -199,7 +200,9 @@ fn fit_smooth<F: Family>(
             columns.push(
                 points
                     .iter()
-                    .map(|&k| (up.count(k, smoothing) - down.count(k, smoothing)) / (2.0 * difference))
+                    .map(|&k| {
+                        (up.count(k, smoothing) - down.count(k, smoothing)) / (2.0 * difference)
+                    })
                     .collect::<Vec<f64>>(),
             );
         }

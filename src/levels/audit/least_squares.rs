@@ -12,7 +12,11 @@ pub(super) struct Estimate {
 
 /// Fits columns to the rest of a record. `allowed` is the prior variance with which each column is already part of the noise; it does
 /// not change the estimates and is taken out of their errors (0 where the column is not part of it).
-pub(super) fn fit(explained: &Explained, columns: &[Vec<f64>], allowed: &[f64]) -> Option<Estimate> {
+pub(super) fn fit(
+    explained: &Explained,
+    columns: &[Vec<f64>],
+    allowed: &[f64],
+) -> Option<Estimate> {
     let whitener = &explained.whitener;
     let rest = whitener.whitened_column(&explained.rest);
     let white: Vec<Vec<f64>> = columns

@@ -64,7 +64,9 @@ impl Waves {
         let spacing = PI / (span.to - span.from);
         let nodes = |from: f64, to: f64| -> Vec<f64> {
             let (first, last) = ((from / spacing) as usize, (to / spacing) as usize);
-            (first..last).map(|node| (node as f64 + 0.5) * spacing).collect()
+            (first..last)
+                .map(|node| (node as f64 + 0.5) * spacing)
+                .collect()
         };
         let inside = LONGEST_INSIDE * max_length;
         let lengths = nodes(0.0, inside);
@@ -76,7 +78,10 @@ impl Waves {
             (k - span.from).min(span.to - k) < END * width || width > span.smoothing
         };
         let at_begin = (0..points).take_while(|&index| near(index)).count();
-        let at_end = (at_begin..points).rev().take_while(|&index| near(index)).count();
+        let at_end = (at_begin..points)
+            .rev()
+            .take_while(|&index| near(index))
+            .count();
         let middles = predicted.cells.middles();
         let wave = |length: f64, index: usize| -> (f64, f64) {
             if index >= at_begin && index + at_end < points {
@@ -124,7 +129,11 @@ impl Expected<'_> {
         let max_length = self.prediction.max_length;
         if length > max_length {
             // sigma^2 = (1/(2 pi^2)) integral of K(tau)/tau^2 dtau with tau = length/(2 pi density) and K = 1, an upper bound.
-            let density = self.prediction.weyl.density(self.middle, 0.0).max(f64::MIN_POSITIVE);
+            let density = self
+                .prediction
+                .weyl
+                .density(self.middle, 0.0)
+                .max(f64::MIN_POSITIVE);
             let tau = length / (2.0 * PI * density);
             let form_factor = (2.0 * tau).min(1.0);
             return density * form_factor / (PI * length * length) * spacing;
@@ -273,14 +282,19 @@ impl<'a> Noise<'a> {
 
     /// Sets the waves of orbits that are in the sum, and the shifts of single levels, to what is expected beforehand times a factor.
     pub(super) fn heat(&mut self, factor: f64, max_length: f64) {
-        self.single_variance = (LEVEL_HEAT * factor * LEVEL_ERROR * LEVEL_ERROR).min(MOST_LEVEL_ERROR * MOST_LEVEL_ERROR);
+        self.single_variance = (LEVEL_HEAT * factor * LEVEL_ERROR * LEVEL_ERROR)
+            .min(MOST_LEVEL_ERROR * MOST_LEVEL_ERROR);
         for ((variance, expected), length) in self
             .variances
             .iter_mut()
             .zip(&self.expected)
             .zip(&self.waves.lengths)
         {
-            *variance = if *length <= max_length { factor * expected } else { *expected };
+            *variance = if *length <= max_length {
+                factor * expected
+            } else {
+                *expected
+            };
         }
     }
 
@@ -307,7 +321,8 @@ impl<'a> Noise<'a> {
         }
         let single = whitener.whitened(self.single.as_ref());
         let (power, freedom) = seen(&single, 0..single.ncols(), &white, self.single_variance);
-        self.single_variance = (LEVEL_WEIGHT * LEVEL_ERROR * LEVEL_ERROR + power) / (LEVEL_WEIGHT + freedom);
+        self.single_variance =
+            (LEVEL_WEIGHT * LEVEL_ERROR * LEVEL_ERROR + power) / (LEVEL_WEIGHT + freedom);
         self.learn_gain(&white);
     }
 
@@ -336,7 +351,9 @@ impl<'a> Noise<'a> {
         let middles: Vec<f64> = (0..knots).map(middle).collect();
         for (index, gain) in self.gain.iter_mut().enumerate() {
             let place = index as f64 + 0.5;
-            let right = middles.partition_point(|&at| at < place).clamp(1, knots - 1);
+            let right = middles
+                .partition_point(|&at| at < place)
+                .clamp(1, knots - 1);
             let (a, b) = (middles[right - 1], middles[right]);
             let t = ((place - a) / (b - a)).clamp(0.0, 1.0);
             let log = logs[right - 1] * (1.0 - t) + logs[right] * t - mean;

@@ -93,7 +93,11 @@ impl Span {
     fn within(&self, k: f64) -> (f64, f64) {
         let reach = ENDED * self.width(k);
         let part = |end: f64, far: f64| {
-            if (end - k).abs() > reach { far } else { self.share(end, k) }
+            if (end - k).abs() > reach {
+                far
+            } else {
+                self.share(end, k)
+            }
         };
         (part(self.from, 0.0), part(self.to, 1.0))
     }
@@ -125,13 +129,13 @@ impl Weights {
 impl Weights {
     /// Smoothed cosine and sine of `length` times k.
     pub(super) fn wave(&self, length: f64, middles: &[f64]) -> (f64, f64) {
-        self.weights
-            .iter()
-            .zip(&middles[self.first..])
-            .fold((0.0, 0.0), |(cosine, sine), (weight, k)| {
+        self.weights.iter().zip(&middles[self.first..]).fold(
+            (0.0, 0.0),
+            |(cosine, sine), (weight, k)| {
                 let (s, c) = (length * k).sin_cos();
                 (cosine + weight * c, sine + weight * s)
-            })
+            },
+        )
     }
 }
 

@@ -63,8 +63,21 @@ pub fn audit(list: &Listed<'_>, prediction: &Prediction) -> Option<Findings> {
         return None;
     }
     let start = Start::new(list, prediction);
-    let (law, gained) = coarse(prediction, list.levels, &start.span(list, prediction), start.below);
-    let plain = || Case::new(list, prediction, &start, PowerLaw::none(law.last), TOLERANCE);
+    let (law, gained) = coarse(
+        prediction,
+        list.levels,
+        &start.span(list, prediction),
+        start.below,
+    );
+    let plain = || {
+        Case::new(
+            list,
+            prediction,
+            &start,
+            PowerLaw::none(law.last),
+            TOLERANCE,
+        )
+    };
     let case = if gained > 0.0 {
         let mut trended = Case::new(list, prediction, &start, law, TOLERANCE)?;
         for _ in 0..TREND_ROUNDS {
@@ -81,7 +94,11 @@ pub fn audit(list: &Listed<'_>, prediction: &Prediction) -> Option<Findings> {
         } else {
             let plain = plain()?;
             trended.odds = trended.explained.evidence - plain.explained.evidence;
-            if trended.odds > TREND_ODDS { trended } else { plain }
+            if trended.odds > TREND_ODDS {
+                trended
+            } else {
+                plain
+            }
         }
     } else {
         plain()?
@@ -217,8 +234,18 @@ impl Case {
                 && fault.kind == super::findings::FaultKind::Missing
                 && (fault.k - span.from) * density(fault.k) < 1.0
         };
-        let before = told.faults.iter().filter(|fault| at_start(fault)).map(|fault| fault.count).sum::<usize>();
-        let faults: Vec<_> = told.faults.iter().filter(|fault| !at_start(fault)).cloned().collect();
+        let before = told
+            .faults
+            .iter()
+            .filter(|fault| at_start(fault))
+            .map(|fault| fault.count)
+            .sum::<usize>();
+        let faults: Vec<_> = told
+            .faults
+            .iter()
+            .filter(|fault| !at_start(fault))
+            .cloned()
+            .collect();
         let verdict = self.verdict(&density, faults.len() + told.doubts.len());
         let measures = self.measures(prediction);
         let real: Vec<f64> = {
@@ -273,7 +300,12 @@ impl Case {
         }
         let mut ranges: Vec<[f64; 2]> = Vec::new();
         let mut open = false;
-        for (&k, &error) in self.predicted.points.iter().zip(&self.explained.place_errors) {
+        for (&k, &error) in self
+            .predicted
+            .points
+            .iter()
+            .zip(&self.explained.place_errors)
+        {
             let unseen = error * density(k) > UNSEEN;
             match ranges.last_mut() {
                 Some(range) if unseen && open => range[1] = k,
@@ -386,7 +418,10 @@ fn trends(
         column(&|k| weyl.density(k, 0.0).max(0.0) / end * (k / last).powf(1.0 + law.power)),
     ];
     let open = if law.factor == 0.0 { 0.0 } else { OPEN * OPEN };
-    (columns, vec![tolerance * tolerance, tolerance * tolerance, open])
+    (
+        columns,
+        vec![tolerance * tolerance, tolerance * tolerance, open],
+    )
 }
 
 /// Covariance of the record that is known beforehand: trends and stated errors of levels.

@@ -205,7 +205,11 @@ impl<'a> Scene<'a> {
     fn combined(&self, first: usize, weights: [f64; 4]) -> Vec<f64> {
         let mut sum = vec![0.0; self.points.len()];
         for (column, weight) in weights.into_iter().enumerate() {
-            add(&mut sum, self.missing.matrix.col_as_slice(first + column), weight);
+            add(
+                &mut sum,
+                self.missing.matrix.col_as_slice(first + column),
+                weight,
+            );
         }
         sum
     }
@@ -319,7 +323,8 @@ impl<'a> Scene<'a> {
         let mut largest = 0.0_f64;
         for (&(index, x), row) in movable.iter().zip(0..count) {
             let limit = self.span.smoothing;
-            let moved = (x + change[(row, 0)].clamp(-limit, limit)).clamp(self.span.from, self.span.to);
+            let moved =
+                (x + change[(row, 0)].clamp(-limit, limit)).clamp(self.span.from, self.span.to);
             if !banned(ban, Step::Missing(moved), self.levels) {
                 largest = largest.max((moved - x).abs());
                 steps[index] = Step::Missing(moved);
@@ -391,7 +396,11 @@ impl<'a> Scene<'a> {
     /// The best explanation that exchanges reach from some steps.
     pub(super) fn search(&self, start: Vec<Step>, ban: Option<Ban>) -> Explanation {
         let mut best = self.settled(start, ban);
-        let most = if ban.is_some() { MOST_EXCHANGES_WITHOUT } else { MOST_EXCHANGES };
+        let most = if ban.is_some() {
+            MOST_EXCHANGES_WITHOUT
+        } else {
+            MOST_EXCHANGES
+        };
         for _ in 0..most {
             match self.improved(&best, ban) {
                 Some(better) => best = better,
@@ -462,10 +471,13 @@ impl<'a> Scene<'a> {
         let exchanges: Vec<Vec<(usize, Vec<f64>)>> = falses
             .iter()
             .map(|&(_, index)| {
-                let near = index.saturating_sub(RELABELLED)..(index + RELABELLED + 1).min(self.levels.len());
+                let near = index.saturating_sub(RELABELLED)
+                    ..(index + RELABELLED + 1).min(self.levels.len());
                 near.filter(|&other| {
                     let step = Step::False(other);
-                    other != index && self.is_free(step, &at.steps) && !banned(ban, step, self.levels)
+                    other != index
+                        && self.is_free(step, &at.steps)
+                        && !banned(ban, step, self.levels)
                 })
                 .map(|other| {
                     let mut change = self.listed.matrix.col_as_slice(index).to_vec();
@@ -485,7 +497,8 @@ impl<'a> Scene<'a> {
                         if another == other {
                             continue;
                         }
-                        let both = gain - dot(more, &rest) - 0.5 * dot(more, more) - dot(change, more);
+                        let both =
+                            gain - dot(more, &rest) - 0.5 * dot(more, more) - dot(change, more);
                         promising.push((both, vec![(first, *other), (second, *another)]));
                     }
                 }
@@ -537,7 +550,13 @@ impl<'a> Scene<'a> {
         None
     }
 
-    fn rebuilt_about(&self, at: &Explanation, x: f64, reach: f64, ban: Option<Ban>) -> Option<Explanation> {
+    fn rebuilt_about(
+        &self,
+        at: &Explanation,
+        x: f64,
+        reach: f64,
+        ban: Option<Ban>,
+    ) -> Option<Explanation> {
         let reach = reach * self.span.smoothing;
         let mut nearest: Vec<usize> = (0..at.steps.len())
             .filter(|&index| (self.place(at.steps[index]) - x).abs() <= reach)
@@ -574,7 +593,11 @@ impl<'a> Scene<'a> {
             .chain(listed)
             .filter(|(step, ..)| self.is_free(*step, &at.steps) && !banned(ban, *step, self.levels))
             .map(|(step, columns, index)| {
-                let sign = if matches!(step, Step::Missing(_)) { -1.0 } else { 1.0 };
+                let sign = if matches!(step, Step::Missing(_)) {
+                    -1.0
+                } else {
+                    1.0
+                };
                 let column = columns.matrix.col_as_slice(index);
                 let gain = sign * dot(column, &at.rest) - 0.5 * columns.squares[index]
                     + columns.priors[index];
@@ -603,15 +626,16 @@ impl<'a> Scene<'a> {
                 let two = candidates[i].2 + candidates[j].2 + products[i * count + j];
                 keep(two, &[i, j]);
                 for k in 0..j {
-                    let three = two
-                        + candidates[k].2
-                        + products[i * count + k]
-                        + products[j * count + k];
+                    let three =
+                        two + candidates[k].2 + products[i * count + k] + products[j * count + k];
                     keep(three, &[i, j, k]);
                 }
             }
         }
-        best.1.into_iter().map(|index| candidates[index].0).collect()
+        best.1
+            .into_iter()
+            .map(|index| candidates[index].0)
+            .collect()
     }
 
     /// Where a step is.

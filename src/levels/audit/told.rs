@@ -35,7 +35,9 @@ pub(super) fn told(
     for fault in &mut faults {
         place_in_list(fault, list, law);
     }
-    let (faults, doubts) = faults.into_iter().partition(|fault| fault.confidence >= FINDING);
+    let (faults, doubts) = faults
+        .into_iter()
+        .partition(|fault| fault.confidence >= FINDING);
     Told { faults, doubts }
 }
 
@@ -76,7 +78,9 @@ fn place_in_list(fault: &mut Fault, list: &Listed<'_>, law: &PowerLaw) {
     let Some(widths) = list.widths else { return };
     let place = law.listed(fault.k);
     let nearest = (0..list.levels.len()).min_by(|&a, &b| {
-        (list.levels[a] - place).abs().total_cmp(&(list.levels[b] - place).abs())
+        (list.levels[a] - place)
+            .abs()
+            .total_cmp(&(list.levels[b] - place).abs())
     });
     if let Some(index) = nearest
         && (list.levels[index] - place).abs() < widths[index].max(fault.k_error)
@@ -100,7 +104,10 @@ fn merged(found: &[Found], density: &dyn Fn(f64) -> f64) -> Vec<Fault> {
     let mut pairs: Vec<(f64, usize, usize)> = Vec::new();
     for (a, missing) in found.iter().enumerate() {
         for (b, wrong) in found.iter().enumerate() {
-            if matches!((missing.step, wrong.step), (Step::Missing(_), Step::False(_))) {
+            if matches!(
+                (missing.step, wrong.step),
+                (Step::Missing(_), Step::False(_))
+            ) {
                 let apart = (missing.k - wrong.k).abs() * density(wrong.k);
                 if apart < SAME {
                     pairs.push((apart, a, b));
@@ -115,7 +122,9 @@ fn merged(found: &[Found], density: &dyn Fn(f64) -> f64) -> Vec<Fault> {
         }
         used[a] = true;
         used[b] = true;
-        let Step::False(index) = found[b].step else { continue };
+        let Step::False(index) = found[b].step else {
+            continue;
+        };
         faults.push(fault(
             FaultKind::Shifted,
             &found[a],
@@ -130,7 +139,9 @@ fn merged(found: &[Found], density: &dyn Fn(f64) -> f64) -> Vec<Fault> {
         }
         faults.push(match single.step {
             Step::Missing(_) => fault(FaultKind::Missing, single, single.odds, None, density),
-            Step::False(listed) => fault(FaultKind::False, single, single.odds, Some(listed), density),
+            Step::False(listed) => {
+                fault(FaultKind::False, single, single.odds, Some(listed), density)
+            }
         });
     }
     faults
@@ -171,13 +182,16 @@ pub(super) fn corrected(list: &Listed<'_>, faults: &[Fault]) -> Vec<Corrected> {
                 && fault.listed == Some(index + 1)
         })
     };
-    let kept = list.levels.iter().enumerate().filter(|(index, _)| !dropped(*index)).map(
-        |(index, &k)| Corrected {
+    let kept = list
+        .levels
+        .iter()
+        .enumerate()
+        .filter(|(index, _)| !dropped(*index))
+        .map(|(index, &k)| Corrected {
             k,
             error: list.errors.map(|errors| errors[index]),
             estimated: false,
-        },
-    );
+        });
     let added = faults
         .iter()
         .filter(|fault| fault.kind != FaultKind::False)

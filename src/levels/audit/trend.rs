@@ -70,7 +70,12 @@ impl PowerLaw {
 }
 
 /// The power law without which the record is simplest, with how much less it costs than none at all.
-pub(super) fn coarse(prediction: &Prediction, levels: &[f64], span: &Span, below: f64) -> (PowerLaw, f64) {
+pub(super) fn coarse(
+    prediction: &Prediction,
+    levels: &[f64],
+    span: &Span,
+    below: f64,
+) -> (PowerLaw, f64) {
     let last = levels.last().copied().unwrap_or(span.to);
     let density = prediction.weyl.density(last, 0.0);
     let none = PowerLaw::none(last);
@@ -88,7 +93,11 @@ pub(super) fn coarse(prediction: &Prediction, levels: &[f64], span: &Span, below
     for power in POWERS {
         for step in -steps..=steps {
             let factor = f64::from(step) * STEP_SPACINGS / (density * last);
-            let law = PowerLaw { factor, power, last };
+            let law = PowerLaw {
+                factor,
+                power,
+                last,
+            };
             if step == 0 {
                 continue;
             }

@@ -76,10 +76,14 @@ fn excess(
     }
     for window in WINDOWS {
         let reach = window * width;
-        if let Some((mean, error)) = mean(predicted, explained, residual, boundary, boundary + reach) {
+        if let Some((mean, error)) =
+            mean(predicted, explained, residual, boundary, boundary + reach)
+        {
             most = most.min((-mean + DEVIATIONS * error).floor());
         }
-        if let Some((mean, error)) = mean(predicted, explained, residual, boundary - reach, boundary) {
+        if let Some((mean, error)) =
+            mean(predicted, explained, residual, boundary - reach, boundary)
+        {
             least = least.max((-mean - DEVIATIONS * error).ceil());
         }
     }
@@ -102,7 +106,11 @@ fn mean(
     if from < span.from || to > span.to {
         return None;
     }
-    let inside: Vec<bool> = predicted.points.iter().map(|&k| from <= k && k < to).collect();
+    let inside: Vec<bool> = predicted
+        .points
+        .iter()
+        .map(|&k| from <= k && k < to)
+        .collect();
     let count = inside.iter().filter(|&&inside| inside).count();
     if count < 2 {
         return None;
@@ -112,6 +120,10 @@ fn mean(
         .iter()
         .map(|&inside| if inside { weight } else { 0.0 })
         .collect();
-    let mean = residual.iter().zip(&weights).map(|(value, weight)| value * weight).sum();
+    let mean = residual
+        .iter()
+        .zip(&weights)
+        .map(|(value, weight)| value * weight)
+        .sum();
     Some((mean, explained.whitener.deviation(&weights)))
 }

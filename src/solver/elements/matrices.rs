@@ -1,10 +1,10 @@
 //! Stiffness and mass matrices of single triangles.
 
-use crate::dense::{self, Into, Matrix};
 use super::super::mesh::{Mesh, Triangle};
 use super::basis::Function;
 use super::reference::Reference;
 use crate::billiard::{Vec2, cross};
+use crate::dense::{self, Into, Matrix};
 
 /// The functions of the reference triangle that an element uses: those up to its degree inside and up to the degrees of its
 /// edges there.

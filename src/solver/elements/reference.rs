@@ -1,9 +1,9 @@
 //! What all triangles of one polynomial degree share: functions, quadrature and the matrices of the reference triangle.
 
-use crate::dense::{self, Into, Matrix};
 use super::basis::{Function, evaluate, functions};
 use super::jacobi::gauss;
 use super::matrices::Selection;
+use crate::dense::{self, Into, Matrix};
 
 /// Points per direction beyond the degree: exact for straight triangles, and curved ones add a smooth factor.
 const EXTRA_POINTS: usize = 8;
