@@ -1,8 +1,9 @@
 //! The trial of the audit: faults are planted in true lists of about 300 levels of many shapes, and the audit's reports are compared
 //! with them. Prints a table, one row for every shape and plan, as it goes.
 //!
-//! `cargo bench --bench audit_trial -- [--lists 100] [--out data/audit-trial.csv] [--plan NAME] [SHAPE ...]`. Every list has a seed of
-//! its own, so that fewer lists are the first ones of the whole trial; the table does not depend on the number of threads.
+//! `cargo bench --bench audit_trial -- [--lists 100] [--out data/audit-trial.csv] [--plan NAME] [--remarks] [SHAPE ...]`. With
+//! `--remarks` it tells which faults were lost and which reports are false. Every list has a seed of its own, so that fewer lists
+//! are the first ones of the whole trial; the table does not depend on the number of threads.
 
 #[path = "../tests/common/audit_trial.rs"]
 mod audit_trial;
@@ -40,6 +41,7 @@ struct Asked {
     lists: u64,
     out: Option<PathBuf>,
     plan: Option<String>,
+    remarks: bool,
     shapes: Vec<String>,
 }
 
@@ -49,6 +51,7 @@ impl Asked {
             lists: LISTS,
             out: None,
             plan: None,
+            remarks: false,
             shapes: Vec::new(),
         };
         let known: Vec<&str> = SHAPES.concat();
@@ -57,6 +60,7 @@ impl Asked {
             match word.as_str() {
                 // Cargo's own.
                 "--bench" => {}
+                "--remarks" => asked.remarks = true,
                 "--lists" => {
                     let value = value()?;
                     asked.lists = value
@@ -150,6 +154,9 @@ fn table(asked: &Asked) -> String {
             let row = row(&subject, plan, &tally);
             println!("{row}");
             eprintln!("# {lists} lists in {:.1?}", started.elapsed());
+            for remark in tally.remarks.iter().filter(|_| asked.remarks) {
+                eprintln!("#   {remark}");
+            }
             table.push_str(&row);
             table.push('\n');
         }

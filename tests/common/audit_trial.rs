@@ -38,10 +38,14 @@ pub(crate) fn audited(subject: &Subject, levels: &[f64]) -> Option<Findings> {
 /// Plants the faults of a plan in the list with this number, audits it and compares.
 pub(crate) fn one_list(subject: &Subject, plan: &Plan, number: u64) -> Tally {
     let corrupted = plan.corrupt(subject, number);
-    match audited(subject, &corrupted.levels) {
+    let mut tally = match audited(subject, &corrupted.levels) {
         Some(findings) => Tally::of_list(subject, &corrupted, &findings),
         None => Tally::unaudited(&corrupted),
+    };
+    for remark in &mut tally.remarks {
+        remark.insert_str(0, &format!("list {number}, "));
     }
+    tally
 }
 
 /// The trial of one plan on the first lists of a shape. What comes out does not depend on the number of threads: every list has

@@ -41,6 +41,8 @@ pub(crate) struct Tally {
     /// Runs of removed neighbours, and how many of them were counted right.
     pub(crate) runs: usize,
     pub(crate) runs_right: usize,
+    /// What was lost, and what was reported and is false, in words.
+    pub(crate) remarks: Vec<String>,
 }
 
 impl Tally {
@@ -70,6 +72,7 @@ impl Tally {
             unresolved: usize::from(matches!(findings.verdict, Verdict::Unresolved { .. })),
             trends: usize::from(findings.trend.kind != orbitsum::levels::audit::TrendKind::None),
             runs: corrupted.runs.len(),
+            remarks: remarks(&judged, findings),
             ..Self::default()
         };
         tally.count_lost(corrupted, findings, &judged);
@@ -128,6 +131,7 @@ impl Tally {
         }
         self.runs += other.runs;
         self.runs_right += other.runs_right;
+        self.remarks.extend(other.remarks);
         self
     }
 
@@ -158,6 +162,25 @@ impl Tally {
         let found = self.misplaced.len();
         (found > 0).then(|| self.within_error as f64 / found as f64)
     }
+}
+
+/// Faults that were lost and reports that match nothing.
+fn remarks(judged: &Judged, findings: &Findings) -> Vec<String> {
+    let lost = judged.lost.iter();
+    let lost = lost.map(|planted| format!("lost: {} at {:.4}", planted.kind.word(), planted.k));
+    let wrong = findings.faults.iter().zip(&judged.reports);
+    let wrong = wrong.filter(|(_, (told, right))| told > right);
+    let wrong = wrong.map(|(report, (told, right))| {
+        format!(
+            "not so: {} {} at {:.4} +- {:.4}, confidence {:.4}",
+            told - right,
+            report.kind.word(),
+            report.k,
+            report.k_error,
+            report.confidence
+        )
+    });
+    lost.chain(wrong).collect()
 }
 
 /// Missing less false levels that are reported in and about a run of missing ones.
