@@ -26,6 +26,11 @@ const QUESTIONS: usize = 8;
 /// Mean spacings about a fault within which another of its kind is taken for the same one.
 pub(super) const SAME: f64 = 0.5;
 
+/// Missing levels closer than this many mean spacings are neighbours, of which the number counts; no other is put in within the
+/// second distance to see whether one fewer would do.
+const BESIDE: f64 = 1.75;
+const ABOUT: f64 = 4.0;
+
 /// What the explanation of a record needs besides the levels.
 pub(super) struct Setting<'a> {
     pub(super) prediction: &'a Prediction,
@@ -44,6 +49,8 @@ pub(super) struct Found {
     pub(super) error: f64,
     /// Logarithm of the odds against the best explanation without it.
     pub(super) odds: f64,
+    /// Whether it is one of several neighbours, whose number is known better than their places.
+    pub(super) of_several: bool,
 }
 
 /// A record with its faults and its noise.
@@ -164,7 +171,7 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
             .steps
             .iter()
             .zip(errors.iter().zip(odds))
-            .map(|(&step, (&error, odds))| {
+            .map(|(&step, (&error, (odds, of_several)))| {
                 let k = scene.place(step);
                 // A missing level would be as far from its predicted place as the listed ones are.
                 let own = best.noise.level_error() / density(k);
@@ -173,6 +180,7 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
                     k,
                     error: error.hypot(own),
                     odds,
+                    of_several,
                 }
             })
             .collect(),
@@ -205,7 +213,7 @@ fn questioned(
     scene: &Scene<'_>,
     mut found: Explanation,
     density: &dyn Fn(f64) -> f64,
-) -> (Explanation, Vec<f64>) {
+) -> (Explanation, Vec<(f64, bool)>) {
     let mut odds = Vec::new();
     for _ in 0..QUESTIONS {
         if scene.is_hopeless(&found) {
@@ -219,21 +227,54 @@ fn questioned(
             let ban = Ban {
                 step,
                 reach: SAME / density(scene.place(step)),
+                may_enter: false,
             };
             let without = scene.search(others, Some(ban));
             if without.value > found.value {
                 replaced = Some(without);
                 break;
             }
-            odds.push(found.value - without.value);
+            let single = found.value - without.value;
+            odds.push(match one_of_several(scene, &found.steps, index, density) {
+                Some(counted) => (single.max(found.value - counted), true),
+                None => (single, false),
+            });
         }
         match replaced {
             Some(better) => found = scene.search(better.steps, None),
             None => break,
         }
     }
-    odds.resize(found.steps.len(), 0.0);
+    odds.resize(found.steps.len(), (0.0, false));
     (found, odds)
+}
+
+/// For a missing level with another one beside it, the value of the best explanation with one fewer there: which of several
+/// neighbours is left out means nothing, but their number does.
+fn one_of_several(
+    scene: &Scene<'_>,
+    steps: &[Step],
+    index: usize,
+    density: &dyn Fn(f64) -> f64,
+) -> Option<f64> {
+    let Step::Missing(x) = steps[index] else {
+        return None;
+    };
+    let spacing = 1.0 / density(x);
+    let has_neighbour = steps.iter().enumerate().any(|(other, step)| {
+        other != index && matches!(step, Step::Missing(y) if (x - y).abs() < BESIDE * spacing)
+    });
+    if !has_neighbour {
+        return None;
+    }
+    let mut others = steps.to_vec();
+    others.remove(index);
+    let ban = Ban {
+        step: steps[index],
+        reach: ABOUT * spacing,
+        may_enter: true,
+    };
+    Some(scene.search(others, Some(ban)).value)
 }
 
 /// What a shift of each level by its mean spacing does to the record.

@@ -40,7 +40,8 @@ pub struct Fault {
     pub k_error: f64,
     /// The same in local mean spacings.
     pub spacings_error: f64,
-    /// Probability, under the noise model, that there is such a fault within half a mean spacing.
+    /// Probability, under the noise model, that there is such a fault within half a mean spacing; of several missing neighbours,
+    /// whose number is known better than their places, that there are so many.
     pub confidence: f64,
     /// Number of levels at this place (2: two missing ones that cannot be told apart).
     pub count: usize,

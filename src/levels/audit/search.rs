@@ -60,6 +60,8 @@ pub(super) struct Ban {
     pub(super) step: Step,
     /// Everything of its kind within this distance is banned too.
     pub(super) reach: f64,
+    /// Whether steps that are there already may move into this range.
+    pub(super) may_enter: bool,
 }
 
 /// Everything that the search needs under one noise model.
@@ -327,7 +329,8 @@ impl<'a> Scene<'a> {
             let limit = self.span.smoothing;
             let moved =
                 (x + change[(row, 0)].clamp(-limit, limit)).clamp(self.span.from, self.span.to);
-            if !banned(ban, Step::Missing(moved), self.levels) {
+            let stays_out = ban.filter(|ban| !ban.may_enter);
+            if !banned(stays_out, Step::Missing(moved), self.levels) {
                 largest = largest.max((moved - x).abs());
                 steps[index] = Step::Missing(moved);
             }

@@ -159,6 +159,8 @@ fn fault(
     // Part of a normal distribution within half a spacing.
     let within = match kind {
         FaultKind::False => 1.0,
+        // Of several neighbours the number counts.
+        FaultKind::Missing if found.of_several => 1.0,
         _ => 1.0 - libm::erfc(SAME / (spread * std::f64::consts::SQRT_2)),
     };
     let reach = (WINDOW * found.error).max(spacing);
