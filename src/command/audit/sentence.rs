@@ -20,7 +20,8 @@ pub(super) fn sentence(audited: &Audited<'_>) -> String {
     let findings = audited.findings;
     let mut parts: Vec<String> = audited.fitted.iter().map(Parameter::words).collect();
     if findings.verdict == Verdict::Foreign {
-        parts.push("the list is not one of this shape".to_owned());
+        parts.push("the list is not one of this shape, or not one that its orbits describe: what follows means nothing".to_owned());
+        return parts.join("; ");
     }
     parts.extend(fault_parts(audited));
     if findings.faults.is_empty() && findings.verdict == Verdict::Audited {
@@ -209,8 +210,18 @@ fn trend_words(audited: &Audited<'_>, trend: &Trend) -> String {
                 }
                 None => "levels lie".to_owned(),
             };
+            let lost = trend.at_end.round();
+            let left = if lost >= 1.0 {
+                format!(
+                    ", so that {} of the levels that belong below the last one {} above it, not in the list",
+                    significant(lost, 3),
+                    if lost > 1.0 { "lie" } else { "lies" }
+                )
+            } else {
+                String::new()
+            };
             format!(
-                "drift: {from} too {}, the last one by {} mean spacings (levels times 1 {} {} (k/last)^{})",
+                "drift: {from} too {}, the last one by {} mean spacings{left} (levels times 1 {} {} (k/last)^{})",
                 if trend.at_end >= 0.0 { "high" } else { "low" },
                 significant(trend.at_end.abs(), 2),
                 if trend.factor >= 0.0 { "+" } else { "-" },

@@ -51,7 +51,7 @@ pub(super) fn decode(scene: &Scene<'_>) -> Vec<Step> {
     let mut row = vec![0.0; candidates.len()];
     for (point, &k) in scene.points.iter().enumerate() {
         let last = candidates.partition_point(|candidate| candidate.place <= k + AHEAD * smoothing);
-        for number in next..last {
+        for (number, candidate) in candidates.iter().enumerate().take(last).skip(next) {
             let mut added: Vec<Hypothesis> = hypotheses
                 .iter()
                 .map(|hypothesis| {
@@ -59,7 +59,7 @@ pub(super) fn decode(scene: &Scene<'_>) -> Vec<Step> {
                     faults.push(number as u32);
                     Hypothesis {
                         faults,
-                        cost: hypothesis.cost - candidates[number].prior,
+                        cost: hypothesis.cost - candidate.prior,
                     }
                 })
                 .collect();

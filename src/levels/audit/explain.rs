@@ -104,7 +104,11 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
     for heat in HEATS {
         noise.heat(heat, max_length);
         let whitener = noise.whitener()?;
-        let found = scene(&whitener).search(steps, None);
+        let scene = scene(&whitener);
+        let found = scene.search(steps, None);
+        if best.is_some() && scene.is_hopeless(&found) {
+            break;
+        }
         let evidence = found.value - 0.5 * whitener.log_determinant();
         steps = found.steps;
         if best.as_ref().is_some_and(|best| best.evidence >= evidence) {
@@ -204,6 +208,9 @@ fn questioned(
 ) -> (Explanation, Vec<f64>) {
     let mut odds = Vec::new();
     for _ in 0..QUESTIONS {
+        if scene.is_hopeless(&found) {
+            break;
+        }
         odds.clear();
         let mut replaced = None;
         for (index, &step) in found.steps.iter().enumerate() {

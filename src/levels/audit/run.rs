@@ -41,6 +41,9 @@ const FIRST_PART: f64 = 0.2;
 const TOLERANCE: f64 = 0.03;
 /// Standard deviation, in mean spacings at the end of the list, with which a trend that was found is left open.
 const OPEN: f64 = 0.5;
+/// The shift of a level that a solver does not resolve differs from that of its neighbours by this part of itself (common
+/// practice: the constant of an error estimate depends on the wave).
+const SCATTER: f64 = 0.15;
 /// Rounds of improving a trend.
 const TREND_ROUNDS: usize = 3;
 /// A trend that simplifies the record by more than this, in natural units, needs no comparison with an explanation by faults alone.
@@ -160,7 +163,6 @@ pub(super) struct Case {
     /// The levels without the trend.
     levels: Vec<f64>,
     pub(super) predicted: Predicted,
-    record: Vec<f64>,
     pub(super) explained: Explained,
     /// Columns of area, perimeter and trend, and the variances with which they are part of the noise.
     columns: Vec<Vec<f64>>,
@@ -191,7 +193,8 @@ impl Case {
             .map(|(levels, predicted)| levels - predicted)
             .collect();
         let (columns, allowed) = trends(&predicted, prediction, &law, tolerance);
-        let fixed = fixed(&predicted, list, &levels, &columns, &allowed);
+        let errors = errors(list, &levels, &law);
+        let fixed = fixed(&predicted, &levels, &errors, &columns, &allowed);
         let setting = Setting {
             prediction,
             predicted: &predicted,
@@ -204,7 +207,6 @@ impl Case {
             odds: 0.0,
             below: start.below,
             levels,
-            record,
             explained,
             columns,
             allowed,
@@ -282,7 +284,13 @@ impl Case {
             level_error: self.explained.level_error,
             parts: parts(&self.predicted, &self.explained, &residual, &real),
             points: self.predicted.points.clone(),
-            before: self.record.clone(),
+            before: self
+                .predicted
+                .of_levels(list.levels, self.below)
+                .iter()
+                .zip(&self.predicted.staircase)
+                .map(|(levels, predicted)| levels - predicted)
+                .collect(),
             after: self.explained.rest.clone(),
             noise: self.explained.noise.clone(),
             corrected: corrected(list, &faults),
@@ -424,11 +432,28 @@ fn trends(
     )
 }
 
+/// Standard deviations of the levels: those stated, and the scatter of a drift about its power law.
+fn errors(list: &Listed<'_>, levels: &[f64], law: &PowerLaw) -> Vec<f64> {
+    levels
+        .iter()
+        .enumerate()
+        .map(|(index, level)| {
+            let stated = list.errors.map_or(0.0, |errors| errors[index]);
+            let shift = if law.power > 0.0 {
+                list.levels[index] - level
+            } else {
+                0.0
+            };
+            stated.hypot(SCATTER * shift)
+        })
+        .collect()
+}
+
 /// Covariance of the record that is known beforehand: trends and stated errors of levels.
 fn fixed(
     predicted: &Predicted,
-    list: &Listed<'_>,
     levels: &[f64],
+    errors: &[f64],
     columns: &[Vec<f64>],
     allowed: &[f64],
 ) -> Matrix {
@@ -441,9 +466,6 @@ fn fixed(
             }
         }
     }
-    let Some(errors) = list.errors else {
-        return covariance;
-    };
     for (&level, &error) in levels.iter().zip(errors) {
         if error == 0.0 {
             continue;

@@ -24,6 +24,8 @@ const WORTH: f64 = 1e-6;
 /// Exchanges after which a search is given up, and those that look for an explanation without a fault.
 const MOST_EXCHANGES: usize = 80;
 const MOST_EXCHANGES_WITHOUT: usize = 12;
+/// A list with more faults than this, and than a quarter of its levels, is not one with faults.
+const MOST_FAULTS: usize = 12;
 /// Neighbourhoods in which steps are taken out together, in smoothing widths, and the most that are taken out.
 const REBUILT: [f64; 3] = [3.0, 7.0, 14.0];
 const MOST_REBUILT: usize = 3;
@@ -402,12 +404,20 @@ impl<'a> Scene<'a> {
             MOST_EXCHANGES
         };
         for _ in 0..most {
+            if self.is_hopeless(&best) {
+                break;
+            }
             match self.improved(&best, ban) {
                 Some(better) => best = better,
                 None => break,
             }
         }
         best
+    }
+
+    /// Has an explanation so many faults that it explains nothing?
+    pub(super) fn is_hopeless(&self, explanation: &Explanation) -> bool {
+        explanation.steps.len() > MOST_FAULTS.max(self.levels.len() / 4)
     }
 
     /// A better explanation one exchange away.

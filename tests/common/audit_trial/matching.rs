@@ -56,19 +56,17 @@ pub(crate) fn judge(
     };
     let mut open = planted.to_vec();
     for (index, report) in reports.iter().enumerate() {
-        if report.kind != FaultKind::Shifted {
-            continue;
+        if report.kind == FaultKind::Shifted
+            && let Some(pair) = shifted(subject, corrupted, &open, report)
+        {
+            judged.reports[index].1 = 1;
+            judged.shifted.extend(pair);
+            for half in pair {
+                // Of equal levels only one is told.
+                let place = open.iter().position(|planted| *planted == half);
+                place.map(|place| open.remove(place));
+            }
         }
-        let Some(pair) = shifted(subject, corrupted, &open, report) else {
-            continue;
-        };
-        judged.reports[index].1 = 1;
-        for half in pair {
-            // Of equal levels only one is told.
-            let place = open.iter().position(|planted| *planted == half);
-            place.map(|place| open.remove(place));
-        }
-        judged.shifted.extend(pair);
     }
     for (kind, reach) in [
         (FaultKind::Missing, MISSING_REACH),
