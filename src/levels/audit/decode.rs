@@ -9,16 +9,31 @@
 use super::search::{Scene, Step};
 use std::collections::HashMap;
 
-/// Hypotheses that are kept at every point.
-const KEPT: usize = 600;
+/// Hypotheses that are kept at every point, and places that are tried for missing levels (every how many-th).
+#[derive(Clone, Copy, Debug)]
+pub(super) struct Effort {
+    kept: usize,
+    coarse: usize,
+}
+
+impl Effort {
+    /// Enough where the noise is small.
+    pub(super) const USUAL: Self = Self {
+        kept: 600,
+        coarse: 2,
+    };
+    /// Where the noise leaves many hypotheses open for long.
+    pub(super) const THOROUGH: Self = Self {
+        kept: 3000,
+        coarse: 1,
+    };
+}
 /// A step shows this many smoothing widths ahead: 2e-4 of it lies further away.
 const AHEAD: f64 = 3.5;
 /// Hypotheses that differ only in faults older than this many smoothing widths are taken for one; the best is kept.
 const MEMORY: f64 = 12.0;
 /// Hypotheses that are worse than the best by more than this, in natural units of likelihood, are dropped.
 const HOPELESS: f64 = 60.0;
-/// Every how many-th place is tried for missing levels.
-const COARSE: usize = 2;
 
 /// A fault that may be taken up, in the order in which they show.
 struct Candidate {
@@ -40,8 +55,8 @@ struct Hypothesis {
 }
 
 /// The steps of the best hypothesis.
-pub(super) fn decode(scene: &Scene<'_>) -> Vec<Step> {
-    let candidates = candidates(scene);
+pub(super) fn decode(scene: &Scene<'_>, effort: Effort) -> Vec<Step> {
+    let candidates = candidates(scene, effort.coarse);
     let mut hypotheses = vec![Hypothesis {
         faults: Vec::new(),
         cost: 0.0,
@@ -64,7 +79,7 @@ pub(super) fn decode(scene: &Scene<'_>) -> Vec<Step> {
                 })
                 .collect();
             hypotheses.append(&mut added);
-            prune(&mut hypotheses, 2 * KEPT);
+            prune(&mut hypotheses, 2 * effort.kept);
         }
         next = last;
         for (value, candidate) in row.iter_mut().zip(&candidates).take(last) {
@@ -86,7 +101,7 @@ pub(super) fn decode(scene: &Scene<'_>) -> Vec<Step> {
         }
         let old = candidates.partition_point(|candidate| candidate.place < k - MEMORY * smoothing);
         merge(&mut hypotheses, old as u32, &candidates);
-        prune(&mut hypotheses, KEPT);
+        prune(&mut hypotheses, effort.kept);
     }
     hypotheses.first().map_or_else(Vec::new, |best| {
         best.faults
@@ -96,12 +111,12 @@ pub(super) fn decode(scene: &Scene<'_>) -> Vec<Step> {
     })
 }
 
-fn candidates(scene: &Scene<'_>) -> Vec<Candidate> {
+fn candidates(scene: &Scene<'_>, coarse: usize) -> Vec<Candidate> {
     let missing = scene
         .places
         .iter()
         .enumerate()
-        .filter(|(place, _)| place.is_multiple_of(COARSE))
+        .filter(|(place, _)| place.is_multiple_of(coarse))
         .map(|(place, &x)| Candidate {
             step: Step::Missing(x),
             place: x,

@@ -4,7 +4,7 @@
 //! So both are found in turns: first with all expected errors of the orbit sum enlarged by one factor, from a large one down to
 //! where the record becomes most probable; then with the spectrum of the noise learned from what the faults leave.
 
-use super::decode::decode;
+use super::decode::{Effort, decode};
 use super::noise::{Expected, Noise, Waves};
 use super::prediction::Prediction;
 use super::record::Predicted;
@@ -19,6 +19,8 @@ const ROUNDS: usize = 6;
 const DECODED: usize = 2;
 /// Gain in evidence, in natural units, below which learning has settled.
 const SETTLED: f64 = 1.0;
+/// Noise, in levels, above which decoding has to be thorough.
+const LOUD: f64 = 0.1;
 /// An explanation that is worse than another by more than this, in natural units of likelihood, is not worth a search.
 const PROMISING: f64 = 30.0;
 /// Rounds of questioning single faults, each of which may turn up a better explanation.
@@ -47,6 +49,8 @@ pub(super) struct Found {
     pub(super) k: f64,
     /// Standard deviation of k; of a false level, as if it could be anywhere.
     pub(super) error: f64,
+    /// The same if nothing else were open.
+    pub(super) single_error: f64,
     /// Logarithm of the odds against the best explanation without it.
     pub(super) odds: f64,
     /// Whether it is one of several neighbours, whose number is known better than their places.
@@ -130,13 +134,18 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
     let mut best = best?;
     noise = best.noise.clone();
     steps = best.steps.clone();
+    let effort = if typical(&best.noise.deviations()) > LOUD {
+        Effort::THOROUGH
+    } else {
+        Effort::USUAL
+    };
     let mut in_vain = 0;
     for round in 0..ROUNDS {
         let whitener = noise.whitener()?;
         let scene = scene(&whitener);
         let mut found = scene.search(steps, None);
         if round < DECODED {
-            found = with_decoded(&scene, found);
+            found = with_decoded(&scene, found, effort);
         }
         let evidence = found.value - 0.5 * whitener.log_determinant();
         let rest = scene.rest_of(record, &found.steps);
@@ -160,7 +169,8 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
     }
     let whitener = best.noise.whitener()?;
     let scene = scene(&whitener);
-    let (found, odds) = questioned(&scene, scene.search(best.steps, None), &density);
+    let found = with_decoded(&scene, scene.search(best.steps, None), effort);
+    let (found, odds) = questioned(&scene, found, &density);
     let errors = scene.errors(&found);
     Some(Explained {
         rest: scene.rest_of(record, &found.steps),
@@ -179,6 +189,7 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
                     step,
                     k,
                     error: error.hypot(own),
+                    single_error: scene.place_error(k).hypot(own),
                     odds,
                     of_several,
                 }
@@ -193,10 +204,17 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
     })
 }
 
+/// The median.
+fn typical(values: &[f64]) -> f64 {
+    let mut values = values.to_vec();
+    values.sort_by(f64::total_cmp);
+    values.get(values.len() / 2).copied().unwrap_or(0.0)
+}
+
 /// The better one of an explanation and of what decoding leads to. Decoding tries places on a grid; where the noise is so small that
 /// the grid shows, it explains the record far worse, and is not followed up.
-fn with_decoded(scene: &Scene<'_>, found: Explanation) -> Explanation {
-    let decoded = scene.settled(decode(scene), None);
+fn with_decoded(scene: &Scene<'_>, found: Explanation, effort: Effort) -> Explanation {
+    let decoded = scene.settled(decode(scene, effort), None);
     if decoded.value < found.value - PROMISING {
         return found;
     }

@@ -31,7 +31,7 @@ pub(super) fn told(
 ) -> Told {
     let mut faults = merged(found, density);
     faults.sort_by(|a, b| a.k.total_cmp(&b.k));
-    faults = counted(faults, density);
+    faults = counted(faults, found, density);
     for fault in &mut faults {
         place_in_list(fault, list, law);
     }
@@ -42,7 +42,7 @@ pub(super) fn told(
 }
 
 /// Neighbouring missing levels at one place as one fault with a count.
-fn counted(faults: Vec<Fault>, density: &dyn Fn(f64) -> f64) -> Vec<Fault> {
+fn counted(faults: Vec<Fault>, found: &[Found], density: &dyn Fn(f64) -> f64) -> Vec<Fault> {
     let mut told: Vec<Fault> = Vec::new();
     for fault in faults {
         let joins = told.last().is_some_and(|before| {
@@ -54,6 +54,9 @@ fn counted(faults: Vec<Fault>, density: &dyn Fn(f64) -> f64) -> Vec<Fault> {
             Some(before) if joins => {
                 let (a, b) = (before.count as f64, fault.count as f64);
                 before.k = (a * before.k + b * fault.k) / (a + b);
+                // What is known of several at one place is their centre.
+                before.k_error = single_error(found, before.k) / (a + b);
+                before.spacings_error = before.k_error * density(before.k);
                 before.count += fault.count;
                 before.confidence = before.confidence.min(fault.confidence);
                 before.window[1] = fault.window[1];
@@ -62,6 +65,14 @@ fn counted(faults: Vec<Fault>, density: &dyn Fn(f64) -> f64) -> Vec<Fault> {
         }
     }
     told
+}
+
+/// Error of the place of the fault nearest to k, if nothing else were open.
+fn single_error(found: &[Found], k: f64) -> f64 {
+    found
+        .iter()
+        .min_by(|a, b| (a.k - k).abs().total_cmp(&(b.k - k).abs()))
+        .map_or(f64::INFINITY, |nearest| nearest.single_error)
 }
 
 /// Windows are given on the scale of the list as well, where that has a trend; a missing level within the width of a listed one is
