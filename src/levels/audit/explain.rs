@@ -21,6 +21,10 @@ const DECODED: usize = 2;
 const SETTLED: f64 = 1.0;
 /// Noise, in levels, above which decoding has to be thorough.
 const LOUD: f64 = 0.1;
+/// Where the noise is loud, a fault must also be found from scratch under noise with these factors of its variance; if not, the
+/// logarithm of its odds is no more than the second number (a probability of 0.73).
+const OTHER_NOISE: [f64; 2] = [0.4, 2.5];
+const UNSTABLE: f64 = 1.0;
 /// An explanation that is worse than another by more than this, in natural units of likelihood, is not worth a search.
 const PROMISING: f64 = 30.0;
 /// Rounds of questioning single faults, each of which may turn up a better explanation.
@@ -91,7 +95,7 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
     };
     let single = shifts(predicted, levels, &density);
     let all_steps = Steps::new(span, &predicted.points, levels);
-    let scene = |whitener: &Cholesky| {
+    let all_scene = |whitener: &Cholesky| {
         Scene::new(
             span,
             &predicted.points,
@@ -115,7 +119,7 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
     for heat in HEATS {
         noise.heat(heat, max_length);
         let whitener = noise.whitener()?;
-        let scene = scene(&whitener);
+        let scene = all_scene(&whitener);
         let found = scene.search(steps, None);
         if best.is_some() && scene.is_hopeless(&found) {
             break;
@@ -142,7 +146,7 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
     let mut in_vain = 0;
     for round in 0..ROUNDS {
         let whitener = noise.whitener()?;
-        let scene = scene(&whitener);
+        let scene = all_scene(&whitener);
         let mut found = scene.search(steps, None);
         if round < DECODED {
             found = with_decoded(&scene, found, effort);
@@ -168,10 +172,25 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
         noise.learn(&whitener, &rest);
     }
     let whitener = best.noise.whitener()?;
-    let scene = scene(&whitener);
+    let scene = all_scene(&whitener);
     let found = with_decoded(&scene, scene.search(best.steps, None), effort);
     let (found, odds) = questioned(&scene, found, &density);
     let errors = scene.errors(&found);
+    let stable: Vec<bool> = if typical(&best.noise.deviations()) > LOUD {
+        let mut stable = vec![true; found.steps.len()];
+        for factor in OTHER_NOISE {
+            let whitener = best.noise.scaled(factor).whitener()?;
+            let other = all_scene(&whitener);
+            let start = other.search(Vec::new(), None);
+            let again = with_decoded(&other, start, effort);
+            for (stable, &step) in stable.iter_mut().zip(&found.steps) {
+                *stable &= has_counterpart(&scene, step, &again.steps, &density);
+            }
+        }
+        stable
+    } else {
+        vec![true; found.steps.len()]
+    };
     Some(Explained {
         rest: scene.rest_of(record, &found.steps),
         noise: best.noise.deviations(),
@@ -181,7 +200,9 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
             .steps
             .iter()
             .zip(errors.iter().zip(odds))
-            .map(|(&step, (&error, (odds, of_several)))| {
+            .zip(stable)
+            .map(|((&step, (&error, (odds, of_several))), stable)| {
+                let odds = if stable { odds } else { odds.min(UNSTABLE) };
                 let k = scene.place(step);
                 // A missing level would be as far from its predicted place as the listed ones are.
                 let own = best.noise.level_error() / density(k);
@@ -201,6 +222,20 @@ pub(super) fn explain(setting: &Setting<'_>, levels: &[f64], record: &[f64]) -> 
             .map(|&k| scene.place_error(k))
             .collect(),
         whitener,
+    })
+}
+
+/// Is there a fault of the same kind within half a mean spacing among other steps?
+fn has_counterpart(
+    scene: &Scene<'_>,
+    step: Step,
+    steps: &[Step],
+    density: &dyn Fn(f64) -> f64,
+) -> bool {
+    let place = scene.place(step);
+    steps.iter().any(|&other| {
+        matches!(step, Step::Missing(_)) == matches!(other, Step::Missing(_))
+            && (scene.place(other) - place).abs() * density(place) < SAME
     })
 }
 

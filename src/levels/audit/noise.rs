@@ -361,6 +361,16 @@ impl<'a> Noise<'a> {
         }
     }
 
+    /// The same model with all variances of waves times a factor.
+    pub(super) fn scaled(&self, factor: f64) -> Self {
+        let mut scaled = self.clone();
+        scaled
+            .variances
+            .iter_mut()
+            .for_each(|variance| *variance *= factor);
+        scaled
+    }
+
     /// Standard deviation of single levels, in mean spacings.
     pub(super) fn level_error(&self) -> f64 {
         self.single_variance.sqrt()
