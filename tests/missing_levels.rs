@@ -4,39 +4,14 @@
 //! semicircle.
 
 use orbitsum::levels::statistics::{
-    Fit, LevelStatistics, MissingEstimates, MissingFraction, Reference, level_statistics,
+    Fit, LevelStatistics, MissingEstimates, MissingFraction, Reference,
 };
 use orbitsum::trace::{ClassDensity, Statistics};
 
 #[path = "common/random_levels.rs"]
 mod random_levels;
 
-use random_levels::{Random, orthogonal, superposed, thinned};
-
-/// Size of the random matrices and the inner share of their levels that is used: 300 levels, as many as the lists of shapes hold.
-const SIZE: usize = 400;
-const INNER: f64 = 0.75;
-
-fn measure(positions: &[f64], expected: &Reference) -> LevelStatistics {
-    level_statistics(positions, expected, None).expect("a list with statistics")
-}
-
-/// Mean and its standard error.
-fn mean(values: impl IntoIterator<Item = f64>) -> (f64, f64) {
-    let values: Vec<f64> = values.into_iter().collect();
-    let count = values.len() as f64;
-    let mean = values.iter().sum::<f64>() / count;
-    let square: f64 = values.iter().map(|value| (value - mean).powi(2)).sum();
-    (mean, (square / (count * (count - 1.0))).sqrt())
-}
-
-fn assert_mean(values: impl IntoIterator<Item = f64>, expected: f64, what: &str) {
-    let (mean, error) = mean(values);
-    assert!(
-        (mean - expected).abs() < 3.0 * error,
-        "{what}: {mean} +- {error}, expected {expected}"
-    );
-}
+use random_levels::{INNER, Random, SIZE, assert_mean, measure, orthogonal, superposed, thinned};
 
 /// Names, values and errors of the three estimates over many lists.
 fn estimates(all: &[LevelStatistics]) -> [(&'static str, Vec<Fit>); 3] {

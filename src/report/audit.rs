@@ -1,16 +1,13 @@
 //! Audit of a level list: the residual before and after correction, with its findings marked.
 
 use super::axis::{Axis, rounded};
-use super::canvas::{Anchor, BORDER, Canvas, Lettering, Stroke, TEXT, WIDTH, palette, polyline};
-use super::legend::{Entry, Mark, Sample, legend};
+use super::canvas::{Anchor, Canvas, Lettering, Stroke, TEXT, palette, polyline};
+use super::legend::{Entry, Mark, Sample};
 use super::panel::Panel;
+use super::stack::{finish, legend_above, named, panel_at};
 use super::thinning::thinned;
 use crate::billiard::Vec2;
 
-/// Room for names and labels of the y axes, points.
-const LEFT: f64 = 68.0;
-/// Room to the right of the panels for half a label, points.
-const RIGHT: f64 = 18.0;
 /// Heights of the panels, points.
 const BEFORE_HEIGHT: f64 = 190.0;
 const AFTER_HEIGHT: f64 = 110.0;
@@ -119,31 +116,8 @@ pub fn audit_picture(curves: &AuditCurves<'_>) -> String {
     let top = canvas.heading() + 2.0;
     let top = before_panel(&mut canvas, curves, x, top);
     let bottom = after_panel(&mut canvas, curves, x, top);
-    let name = match curves.unit {
-        Some(unit) => format!("{} ({unit})", curves.variable),
-        None => curves.variable.to_owned(),
-    };
-    let axis = panel_at(bottom, TEXT, x, Axis::new(0.0, 1.0));
-    let mut bottom = axis.name_x(&mut canvas, &name, bottom) + 3.0;
-    for caption in curves.captions {
-        bottom = canvas.paragraph(caption, bottom, Lettering::plain(Anchor::Start));
-    }
-    canvas.finish(bottom + BORDER)
-}
-
-/// A panel over the whole width, its upper edge at a height.
-fn panel_at(top: f64, height: f64, x: Axis, y: Axis) -> Panel {
-    Panel {
-        corner: Vec2::new(LEFT, top),
-        size: Vec2::new(WIDTH - LEFT - RIGHT, height),
-        x,
-        y,
-    }
-}
-
-/// Writes a legend above a panel, returns where the panel begins.
-fn legend_above(canvas: &mut Canvas, entries: &[Entry], top: f64) -> f64 {
-    legend(canvas, entries, LEFT, WIDTH - BORDER, top) + 3.0
+    let name = named(curves.variable, curves.unit);
+    finish(canvas, x, &name, curves.captions, bottom)
 }
 
 fn before_panel(canvas: &mut Canvas, curves: &AuditCurves<'_>, x: Axis, top: f64) -> f64 {

@@ -1,15 +1,11 @@
 //! Density and staircase: smooth part, orbit sum, levels, and what is left over.
 
 use super::axis::{Axis, rounded};
-use super::canvas::{Anchor, BORDER, Canvas, Lettering, Stroke, TEXT, WIDTH, palette};
-use super::legend::{Entry, Sample, legend};
+use super::canvas::{Canvas, Stroke, palette};
+use super::legend::Sample;
 use super::panel::{Panel, RUG_STROKE};
-use crate::billiard::Vec2;
+use super::stack::{PANEL_WIDTH, finish, legend_above, named, panel_at};
 
-/// Room for names and labels of the y axes, points.
-const LEFT: f64 = 68.0;
-/// Room to the right of the panels for half a label, points.
-const RIGHT: f64 = 18.0;
 /// Heights of the panels, points: with legends and captions the picture fills about two thirds of a page.
 const DENSITY_HEIGHT: f64 = 130.0;
 const STAIRCASE_HEIGHT: f64 = 130.0;
@@ -75,26 +71,8 @@ pub fn density_picture(curves: &DensityCurves<'_>) -> String {
     let top = density_panel(&mut canvas, curves, x, top);
     let top = staircase_panel(&mut canvas, curves, x, top);
     let bottom = residual_panel(&mut canvas, curves, x, top);
-    let mut bottom = name_variable(&mut canvas, curves, x, bottom) + 3.0;
-    for caption in curves.captions {
-        bottom = canvas.paragraph(caption, bottom, Lettering::plain(Anchor::Start));
-    }
-    canvas.finish(bottom + BORDER)
-}
-
-/// A panel over the whole width, its upper edge at a height.
-fn panel_at(top: f64, height: f64, x: Axis, y: Axis) -> Panel {
-    Panel {
-        corner: Vec2::new(LEFT, top),
-        size: Vec2::new(WIDTH - LEFT - RIGHT, height),
-        x,
-        y,
-    }
-}
-
-/// Writes a legend above a panel, returns where the panel begins.
-fn legend_above(canvas: &mut Canvas, entries: &[Entry], top: f64) -> f64 {
-    legend(canvas, entries, LEFT, WIDTH - BORDER, top) + 3.0
+    let name = named(curves.variable, curves.unit);
+    finish(canvas, x, &name, curves.captions, bottom)
 }
 
 /// Draws curves and axes of one panel over what is already in it.
@@ -167,7 +145,7 @@ fn staircase_panel(canvas: &mut Canvas, curves: &DensityCurves<'_>, x: Axis, top
         .copied()
         .filter(|level| (x.low..=x.high).contains(level))
         .collect();
-    let sparse = inside.len() as f64 * SPARSE <= WIDTH - LEFT - RIGHT;
+    let sparse = inside.len() as f64 * SPARSE <= PANEL_WIDTH;
     let marked = sparse && !inside.is_empty();
     if marked {
         entries.push((Sample::Rug(RUG_STROKE), counted(inside.len())));
@@ -236,23 +214,6 @@ fn residual_panel(canvas: &mut Canvas, curves: &DensityCurves<'_>, x: Axis, top:
         &["residual".into(), "(levels)".into()],
         true,
     )
-}
-
-/// Writes the name of the shared axis below its labels.
-fn name_variable(canvas: &mut Canvas, curves: &DensityCurves<'_>, x: Axis, top: f64) -> f64 {
-    let name = curves.unit.map_or(curves.variable.to_owned(), |unit| {
-        format!("{} ({unit})", curves.variable)
-    });
-    panel_at(
-        top,
-        TEXT,
-        x,
-        Axis {
-            low: 0.0,
-            high: 1.0,
-        },
-    )
-    .name_x(canvas, &name, top)
 }
 
 fn description(curves: &DensityCurves<'_>) -> String {

@@ -1,15 +1,12 @@
 //! Length spectra: levels upwards, orbits mirrored downwards, and their difference.
 
 use super::axis::{Axis, rounded};
-use super::canvas::{Anchor, BORDER, Canvas, Lettering, Stroke, TEXT, WIDTH, palette};
-use super::legend::{Entry, Sample, legend};
+use super::canvas::{Anchor, Canvas, Lettering, Stroke, TEXT, palette};
+use super::legend::Sample;
 use super::panel::Panel;
+use super::stack::{finish, legend_above, named, panel_at};
 use crate::billiard::Vec2;
 
-/// Room for names and labels of the y axes, points.
-const LEFT: f64 = 68.0;
-/// Room to the right of the panels for half a label, points.
-const RIGHT: f64 = 18.0;
 /// Heights of the panels, points.
 const SPECTRUM_HEIGHT: f64 = 220.0;
 const DIFFERENCE_HEIGHT: f64 = 120.0;
@@ -79,30 +76,8 @@ pub fn lengths_picture(curves: &LengthCurves<'_>) -> String {
     let top = canvas.heading() + 2.0;
     let top = spectrum_panel(&mut canvas, curves, x, top);
     let bottom = difference_panel(&mut canvas, curves, x, top);
-    let name = curves
-        .unit
-        .map_or("length".to_owned(), |unit| format!("length ({unit})"));
-    let axis = panel_at(bottom, TEXT, x, Axis::new(0.0, 1.0));
-    let mut bottom = axis.name_x(&mut canvas, &name, bottom) + 3.0;
-    for caption in curves.captions {
-        bottom = canvas.paragraph(caption, bottom, Lettering::plain(Anchor::Start));
-    }
-    canvas.finish(bottom + BORDER)
-}
-
-/// A panel over the whole width, its upper edge at a height.
-fn panel_at(top: f64, height: f64, x: Axis, y: Axis) -> Panel {
-    Panel {
-        corner: Vec2::new(LEFT, top),
-        size: Vec2::new(WIDTH - LEFT - RIGHT, height),
-        x,
-        y,
-    }
-}
-
-/// Writes a legend above a panel, returns where the panel begins.
-fn legend_above(canvas: &mut Canvas, entries: &[Entry], top: f64) -> f64 {
-    legend(canvas, entries, LEFT, WIDTH - BORDER, top) + 3.0
+    let name = named("length", curves.unit);
+    finish(canvas, x, &name, curves.captions, bottom)
 }
 
 fn largest(values: &[f64]) -> f64 {

@@ -19,6 +19,7 @@ mod orbits;
 mod outline;
 mod panel;
 mod shape;
+mod stack;
 mod statistics;
 #[cfg(test)]
 mod testing;

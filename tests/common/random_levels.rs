@@ -2,6 +2,7 @@
 #![allow(dead_code)]
 
 use faer::{Mat, Side};
+use orbitsum::levels::statistics::{LevelStatistics, Reference, level_statistics};
 use std::f64::consts::{PI, TAU};
 
 /// Xorshift with a multiplier (Vigna, ACM Trans. Math. Softw. 42 (2016)).
@@ -89,4 +90,31 @@ pub(crate) fn superposed(sequences: &[Vec<f64>], shares: &[f64]) -> Vec<f64> {
         .fold(f64::INFINITY, f64::min);
     all.retain(|level| *level <= last);
     all
+}
+
+/// Size of the random matrices and the inner share of their levels that is used: 300 levels, as many as the lists of shapes hold.
+pub(crate) const SIZE: usize = 400;
+pub(crate) const INNER: f64 = 0.75;
+
+/// Statistics of unfolded levels without orbits.
+pub(crate) fn measure(positions: &[f64], expected: &Reference) -> LevelStatistics {
+    level_statistics(positions, expected, None).expect("a list with statistics")
+}
+
+/// Mean and its standard error.
+pub(crate) fn mean(values: impl IntoIterator<Item = f64>) -> (f64, f64) {
+    let values: Vec<f64> = values.into_iter().collect();
+    let count = values.len() as f64;
+    let mean = values.iter().sum::<f64>() / count;
+    let square: f64 = values.iter().map(|value| (value - mean).powi(2)).sum();
+    (mean, (square / (count * (count - 1.0))).sqrt())
+}
+
+/// The mean is the expected one within three standard errors.
+pub(crate) fn assert_mean(values: impl IntoIterator<Item = f64>, expected: f64, what: &str) {
+    let (mean, error) = mean(values);
+    assert!(
+        (mean - expected).abs() < 3.0 * error,
+        "{what}: {mean} +- {error}, expected {expected}"
+    );
 }
