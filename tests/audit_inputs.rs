@@ -78,6 +78,19 @@ fn the_audit_reaches_no_other_levels_and_no_file() {
     }
 }
 
+/// The command hands it no other levels.
+#[test]
+fn the_command_computes_no_levels() {
+    let files = sources("src/command/audit");
+    assert!(files.len() >= 5, "{files:?}");
+    for path in &files {
+        mentions_none(
+            path,
+            &["solver", "ebk", "direct::", "::compute", "data/levels"],
+        );
+    }
+}
+
 /// What the audit uses leads to no other levels either.
 #[test]
 fn its_parts_reach_no_other_levels() {
