@@ -314,5 +314,3 @@ fn an_audit_needs_no_other_file() {
     assert!(output.status.success());
     assert!(string(&output.stdout).contains("2 of 60 levels are missing"));
 }
-
-/// What judges a list must not know its levels: no source file of the audit names what computes or quantises any.
