@@ -6,7 +6,7 @@
 //! the best few thousand hypotheses are kept. What is found does not depend on how conspicuous a fault is in the whole record, which
 //! misleads a search that takes the largest step first.
 
-use super::search::{Scene, Step};
+use super::scene::{Scene, Step};
 use std::collections::HashMap;
 
 /// Hypotheses that are kept at every point, and places that are tried for missing levels (every how many-th).

@@ -8,7 +8,7 @@ use super::decode::{Effort, decode};
 use super::noise::{Expected, Noise, Waves};
 use super::prediction::Prediction;
 use super::record::Predicted;
-use super::search::{Ban, Explanation, Scene, Step, Steps};
+use super::scene::{Ban, Explanation, Scene, Step, Steps};
 use crate::dense::{Cholesky, Matrix};
 
 /// Factors of the expected variances that are tried, in descending order.

@@ -13,6 +13,7 @@ mod noise;
 mod prediction;
 mod record;
 mod run;
+mod scene;
 mod search;
 mod told;
 mod trend;

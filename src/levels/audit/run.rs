@@ -6,7 +6,7 @@ use super::least_squares::fit;
 use super::noise::Waves;
 use super::prediction::Prediction;
 use super::record::{Predicted, Span};
-use super::search::Step;
+use super::scene::Step;
 use super::told::{corrected, told};
 use super::trend::{PowerLaw, coarse};
 use super::turing::parts;

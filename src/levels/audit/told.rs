@@ -3,7 +3,7 @@
 use super::explain::{Found, SAME};
 use super::findings::{Corrected, Fault, FaultKind};
 use super::run::Listed;
-use super::search::Step;
+use super::scene::Step;
 use super::trend::PowerLaw;
 
 /// Confidence from which on a suspicion is a finding.
